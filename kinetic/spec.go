@@ -1,0 +1,57 @@
+package kinetic
+
+import (
+	"sojourn/kinetic/bath"
+	"sojourn/kinetic/lattice"
+	"sojourn/kinetic/pauli"
+)
+
+// Spec is a thermal generator before compilation: a commuting Hamiltonian, its
+// tracked operators, and the bath.
+type Spec struct {
+	Lattice  lattice.Lattice
+	Levels   int // q, levels of a site
+	Sites    int // sites per cell
+	Families []FamilySpec
+	Tracked  []TrackedSpec
+	Bath     []BathOperator
+	Beta     float64 // inverse temperature, >= 0
+}
+
+// Cut says what becomes of a term that would leave the lattice at an open edge.
+type Cut string
+
+// The two cuts. Drop is the default ("").
+const (
+	Drop     Cut = "drop"     // the term is absent
+	Truncate Cut = "truncate" // the term keeps the factors inside
+)
+
+// FamilySpec is one term of the Hamiltonian per cell:
+// E(s) = -Coupling*(-1)^s for q = 2, in general -Coupling*Shape[s].
+type FamilySpec struct {
+	Name     string // "bond-x"
+	Group    string // families summed under one name: "bond"; "" for none
+	Operator pauli.Operator
+	Coupling float64   // J; a family with J = 0 is dropped by the compiler
+	Shape    []float64 // for q > 2: E(s) = -J*Shape[s]; nil for q = 2
+	Cut      Cut
+}
+
+// TrackedSpec is a product operator without energy whose value is followed. It
+// must commute with every family.
+type TrackedSpec struct {
+	Name     string
+	Operator pauli.Operator
+	// Order marks the operator whose lattice sum is the magnetization.
+	Order bool
+}
+
+// BathOperator couples one site to the bath: on each listed site of every cell
+// the operator X^X Z^Z fires at the rate of Law.
+type BathOperator struct {
+	Name  string // "X", "Y", "Z"
+	X, Z  int    // powers
+	Sites []int  // sites of the cell; nil for all
+	Law   bath.Law
+}
