@@ -19,12 +19,15 @@ type Study struct {
 	// Defaults lists every default that was filled in, dotted name and value,
 	// for plan.
 	Defaults []Setting
+	// Notes are things that are allowed but worth a word, with their place.
+	Notes []Fault
 }
 
 // Setting is one parameter and its value, printed as in a study file.
 type Setting struct {
-	Name  string
-	Value string
+	Name    string
+	Value   string
+	Numbers []float64 // of a scanned parameter: its value; one per axis for lattice.size
 }
 
 // Point is one combination of the scanned parameters: everything that its
@@ -32,6 +35,8 @@ type Setting struct {
 type Point struct {
 	Scan        []Setting // value of each of Study.Scanned
 	Model       string
+	Parameters  []Setting // of a built-in model, defaults filled in
+	MaxRate     float64   // the largest rate of one bath operator
 	Spec        kinetic.Spec
 	Trajectory  Trajectory
 	Observables []Observable
@@ -55,6 +60,8 @@ type Trajectory struct {
 	Step   float64
 	Seed   int64
 	Engine string // as asked: auto, classes
+	// EngineName is the engine that runs the point: "classes" for auto.
+	EngineName string
 }
 
 // Observable is a requested observable, not yet bound to a generator.
