@@ -4,6 +4,9 @@ package analysis
 // The first index is always the unit (in increasing unit number), the second
 // the segment.
 type Point struct {
+	Beta  float64 // inverse temperature
+	Group string  // names and values of all other scanned physical parameters, for trends; "" for none
+
 	Step     float64  // time between samples
 	Span     float64  // recorded time of one trajectory
 	Lanes    int      // trajectories per unit
@@ -13,6 +16,8 @@ type Point struct {
 	Open     []bool   // axes with edges
 	Sites    int      // sites of the lattice
 	LnStates float64  // ln of the number of states in the class of the reference, 0 if unknown
+	Jumps    float64  // executed jumps of all trajectories while recorded, 0 if unknown
+	Seconds  float64  // processor time spent on them, 0 if unknown
 
 	Observables []Observable
 	Pairs       []Pair // f <= g; every observable with itself, scalars with each other

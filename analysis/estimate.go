@@ -1,0 +1,72 @@
+package analysis
+
+import (
+	"math"
+
+	"gonum.org/v1/gonum/stat/distuv"
+)
+
+// Estimate is a number with its error, or the reason why there is none.
+type Estimate struct {
+	Value float64
+	Err   float64 // one standard error
+	Low   float64 // 95 % interval (Student t; relaxation times on the scale of their logarithm)
+	High  float64
+	Units int  // blocks that were resampled; degrees of freedom are one fewer
+	OK    bool // false: all numbers are zero, and Code and Reason say why
+	Code  string
+	// Reason is a clause that continues "there is no tau_int: ".
+	Reason string
+}
+
+// Bound is a one-sided limit at the stated confidence, or the reason why there
+// is none.
+type Bound struct {
+	Value      float64
+	Confidence float64 // 0.95
+	OK         bool
+	Code       string
+	Reason     string
+}
+
+// Interval is a two-sided interval that rests on an assumption, without a best
+// value inside it. High is +Inf where the data give no upper limit.
+type Interval struct {
+	Low, High  float64
+	Confidence float64 // 0.95
+	OK         bool
+	Code       string
+	Reason     string
+}
+
+func missing(code, reason string) Estimate {
+	return Estimate{Code: known(code), Reason: reason}
+}
+
+func noBound(code, reason string) Bound {
+	return Bound{Code: known(code), Reason: reason}
+}
+
+func noInterval(code, reason string) Interval {
+	return Interval{Code: known(code), Reason: reason}
+}
+
+// studentT returns the quantile of Student's t that is exceeded with
+// probability tail.
+func studentT(tail float64, dof int) float64 {
+	return distuv.StudentsT{Mu: 0, Sigma: 1, Nu: float64(dof)}.Quantile(1 - tail)
+}
+
+// symmetric returns value +- t SE with units-1 degrees of freedom.
+func symmetric(value, se float64, units int) Estimate {
+	t := studentT(0.025, units-1)
+	return Estimate{Value: value, Err: se, Low: value - t*se, High: value + t*se, Units: units, OK: true}
+}
+
+// logarithmic returns a positive quantity whose logarithm and its standard
+// error are given; the interval is exp(ln +- t SE).
+func logarithmic(ln, se float64, units int) Estimate {
+	t := studentT(0.025, units-1)
+	v := math.Exp(ln)
+	return Estimate{Value: v, Err: v * se, Low: v * math.Exp(-t*se), High: v * math.Exp(t*se), Units: units, OK: true}
+}

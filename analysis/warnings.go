@@ -1,0 +1,93 @@
+package analysis
+
+import "fmt"
+
+// WarningKind describes one warning code. Codes are stable.
+type WarningKind struct {
+	Code      string
+	Meaning   string
+	Threshold string // "" where there is none
+}
+
+// Codes of warnings, and of the reasons why estimates are missing.
+const (
+	codeFewUnits      = "few_units"
+	codeShortTotal    = "short_total"
+	codeShortSpan     = "short_span"
+	codeCoarseStep    = "coarse_step"
+	codeWindow        = "window_not_reached"
+	codeNoise         = "noise"
+	codeConstant      = "constant"
+	codeNoData        = "no_data"
+	codeErrorsDiffer  = "errors_differ"
+	codeChain         = "chain_violated"
+	codeDrift         = "drift"
+	codeStarts        = "starts_disagree"
+	codeStartsUnknown = "starts_not_compared"
+	codeInhomogeneous = "inhomogeneous"
+	codeSingle        = "not_single"
+	codePlateau       = "plateau_not_reached"
+	codeBarelySeen    = "slow_mode_barely_seen"
+	codeCloseRates    = "close_rates"
+	codeReduced       = "observables_reduced"
+	codeNoDecay       = "no_decay_in_lattice"
+	codeSmallLattice  = "small_lattice"
+	codeWeightFloor   = "weight_floor"
+	codeNotMeaningful = "not_meaningful"
+	codeNotReached    = "equilibrium_not_reached"
+	codeLowerBound    = "lower_bound"
+	codeFrozen        = "frozen"
+)
+
+// WarningKinds lists every warning code that results can carry.
+var WarningKinds = []WarningKind{
+	{codeFewUnits, "too few resampling blocks for an error that can be trusted", "refused below 4; fit-based values refused below 8, doubtful below 16"},
+	{codeShortTotal, "the total time of all trajectories is short against the relaxation time", "doubtful below 160 tau, refused below 40 tau"},
+	{codeShortSpan, "one trajectory is short against the relaxation time", "doubtful below 20 tau, refused below 10 tau"},
+	{codeCoarseStep, "the time between samples is long against the initial relaxation time", "doubtful above 0.5 tau_initial, refused above 1.6 tau_initial"},
+	{codeWindow, "the covariance was not recorded to lags long enough for the summation window", "last lag below the window and below 4 tau_int"},
+	{codeNoise, "the covariance cannot be told from noise", ""},
+	{codeConstant, "the observable did not change", ""},
+	{codeNoData, "nothing was recorded that the estimate could be made from", ""},
+	{codeErrorsDiffer, "resampling and Wolff's formula give different errors of tau_int", "a factor above 1.5 with at least 16 blocks"},
+	{codeChain, "tau_initial <= tau_int <= tau_slowest does not hold within errors", "3 standard errors"},
+	{codeDrift, "the mean drifts along the recorded span", "5 % over the study (Holm)"},
+	{codeStarts, "trajectories from different starts disagree", "5 % over the study (Holm)"},
+	{codeStartsUnknown, "trajectories from different starts could not be compared", "fewer than 2 units of one start"},
+	{codeInhomogeneous, "an average over positions was taken where positions are not equivalent", "open axes"},
+	{codeSingle, "declared a single exponential, but the data contradict it", "5 %"},
+	{codePlateau, "no plateau: the slow mode's time still grows at the last usable lag", "fewer than 3 valid points, or a rise above 2 standard errors"},
+	{codeBarelySeen, "the observables hardly overlap with the slow mode", "largest share below 0.2"},
+	{codeCloseRates, "two slow rates lie close together and may not be resolved: the time is a lower bound", "within a factor of 2"},
+	{codeReduced, "observables were left out of the slow mode", "constant, or a correlation-matrix eigenvalue below 0.05"},
+	{codeNoDecay, "the covariance in space does not decay within the lattice", "fitted length above half the lattice"},
+	{codeSmallLattice, "the lattice is small against the correlation length", "L below 6 xi"},
+	{codeWeightFloor, "the interval of tau_slowest assumes that the slowest mode carries a stated share of the variance", ""},
+	{codeNotMeaningful, "the quantity has no meaning here", ""},
+	{codeNotReached, "the mean did not come close to its limit within the recorded time", ""},
+	{codeLowerBound, "the value is a lower bound on 1/gap", ""},
+	{codeFrozen, "no jumps happened in a trajectory", ""},
+}
+
+var warningKinds = func() map[string]bool {
+	m := make(map[string]bool, len(WarningKinds))
+	for _, k := range WarningKinds {
+		if m[k.Code] {
+			panic("analysis: warning code listed twice: " + k.Code)
+		}
+		m[k.Code] = true
+	}
+	return m
+}()
+
+// known returns code, which must be in the table.
+func known(code string) string {
+	if !warningKinds[code] {
+		panic("analysis: warning code not listed: " + code)
+	}
+	return code
+}
+
+func warn(code, format string, args ...any) Warning {
+	return Warning{Code: known(code), Text: fmt.Sprintf(format, args...)}
+}
