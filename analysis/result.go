@@ -236,3 +236,12 @@ type Parameter struct {
 	Name       string
 	Value, Err float64
 }
+
+// Shape compares forms of the decay of C(t)/C(0) at the recorded lags.
+type Shape struct {
+	OK     bool
+	Reason string
+	// Prefers is exponential (one or a sum), stretched or power.
+	Prefers string
+	Forms   []TrendModel // by decreasing weight
+}
