@@ -32,16 +32,18 @@ type Generator struct {
 	Places []Place
 	Moves  []Move  // Places[p].Moves consecutive entries from Places[p].First
 	Touch  []Touch // Moves[m].First .. Energy .. Last
+	Hits   []Hit   // Moves[m].FirstHit .. LastHit: lines that a move changes
 
 	// Tables holds one transition table after another, 1<<Bits entries each:
-	// entry (table<<Bits | old pattern) is new pattern | old class<<16 | new class<<24.
+	// entry table + old pattern is new pattern | old class<<16 | new class<<24.
 	Tables []uint32
 	// Rates is the total rate of a seat by class, increasing; class 0 has rate 0.
 	Rates []float64
 
 	// Reference gives, per family, the level of each term in the reference
-	// state; nil means 0 everywhere.
-	Reference [][]uint8
+	// state; nil means 0 everywhere. ReferenceLines does so per line.
+	Reference      [][]uint8
+	ReferenceLines [][]uint8
 }
 
 // Family is a compiled set of terms, one per cell.
@@ -54,6 +56,8 @@ type Family struct {
 	// Slots lists where the terms can be read: slot Slot of seat Seat in the
 	// cell at Offset from the term's own. Empty if no move touches the family.
 	Slots []SlotRef
+
+	terms family
 }
 
 // SlotRef locates a term in a seat's pattern.
@@ -67,8 +71,8 @@ type SlotRef struct {
 // transverse position.
 type Line struct {
 	Name      string
-	Positions int
-	Hits      []Hit // all hits of all moves; Move.Lines spans index this
+	Positions int    // transverse positions, existing or not
+	Exists    []bool // by position; nil if all do
 }
 
 // Hit tells where a move meets a line: at transverse position
@@ -107,10 +111,10 @@ type Shape struct {
 	Seat    int
 	Present uint16 // bit b set if slot b exists
 	Class   []uint8
-	// Rate[m][p] is the rate of move m at pattern p, and Split[m][p] the
-	// cumulative share of moves 0..m in the total, scaled to 2^32-1.
+	// Rate[m][p] is the rate of move m at pattern p. Split[p*moves+m] is the
+	// cumulative share of moves 0..m in the total, scaled to 2^64-1.
 	Rate  [][]float64
-	Split [][]uint32
+	Split []uint64
 	// Delta[(m<<Bits|p)*len(Families)+f] is the change of the sum of family f:
 	// of eigenvalues (-1)^s for q = 2.
 	Delta []int8
@@ -126,18 +130,20 @@ type Place struct {
 	Cell  int32  // a cell that represents the zone
 }
 
-// Move is a move at a place. Touches First..Energy change terms with energy
-// and so perhaps the class of the seat; Energy..Last change tracked slots only.
+// Move is a move at a place. Touches First..Energy change terms with energy,
+// and so perhaps the class of the seat; Energy..Last change tracked slots only
+// and leave the class. In each part the seat itself comes first, if it changes,
+// and the others follow by address, so that trajectories depend neither on
+// what is tracked nor on how the families were listed.
 type Move struct {
 	First, Energy, Last uint32
-	Self                uint16 // table of the seat itself
-	Hits                []*Hit // lines that it changes; nil for most models
+	FirstHit, LastHit   uint32 // in Generator.Hits
 }
 
 // Touch is one seat that a move changes.
 type Touch struct {
-	Delta int32 // address difference
-	Table uint16
+	Delta int32  // address difference
+	Table uint32 // first entry of its transition table in Generator.Tables
 }
 
 // Cells returns the number of cells.

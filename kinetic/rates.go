@@ -1,0 +1,127 @@
+package kinetic
+
+import (
+	"fmt"
+	"math"
+	"math/big"
+	"sort"
+
+	"sojourn/kinetic/bath"
+)
+
+// energies turns changes of levels into exact energies and rates. Energies are
+// sums of integers times couplings, each coupling being the rational number
+// that its shortest decimal denotes, so that equal energies give equal rates in
+// whatever order they are summed.
+type energies struct {
+	beta   float64
+	laws   []bath.Law
+	level  [][]*big.Rat // family, level; nil for tracked families
+	known  map[string]*big.Rat
+	rates  []map[string]float64 // law, energy
+	met    map[string]*big.Rat  // every energy asked for, by its text
+	counts []int8
+}
+
+func newEnergies(spec Spec, families []family) *energies {
+	e := &energies{beta: spec.Beta, known: map[string]*big.Rat{}, met: map[string]*big.Rat{}}
+	for _, b := range spec.Bath {
+		e.laws = append(e.laws, b.Law)
+		e.rates = append(e.rates, map[string]float64{})
+	}
+	for _, f := range families {
+		e.level = append(e.level, f.energy)
+	}
+	e.counts = make([]int8, len(families)*spec.Levels)
+	return e
+}
+
+// rate returns the rate under a law of the jump that takes before[b] to
+// after[b] in each listed slot, where family[b] is the slot's family.
+func (e *energies) rate(law int, family []int, before, after []int) (float64, error) {
+	q := len(e.counts) / len(e.level)
+	clear(e.counts)
+	for b, f := range family {
+		if e.level[f] != nil {
+			e.counts[f*q+before[b]]++
+			e.counts[f*q+after[b]]--
+		}
+	}
+	key := make([]byte, len(e.counts))
+	for i, n := range e.counts {
+		key[i] = byte(n)
+	}
+	w, ok := e.known[string(key)]
+	if !ok {
+		w = new(big.Rat)
+		for f, levels := range e.level {
+			for s, energy := range levels {
+				if n := e.counts[f*q+s]; n != 0 {
+					w.Add(w, new(big.Rat).Mul(big.NewRat(int64(n), 1), energy))
+				}
+			}
+		}
+		text := w.RatString()
+		if same, ok := e.met[text]; ok {
+			w = same
+		} else {
+			e.met[text] = w
+		}
+		e.known[string(key)] = w
+	}
+	text := w.RatString()
+	if r, ok := e.rates[law][text]; ok {
+		return r, nil
+	}
+	r, err := e.laws[law].At(w, e.beta)
+	if err != nil {
+		return 0, err
+	}
+	if math.IsNaN(r) || math.IsInf(r, 0) || r < 0 {
+		return 0, fmt.Errorf("the rate at energy %s is %v", text, r)
+	}
+	e.rates[law][text] = r
+	return r, nil
+}
+
+// all lists every energy met so far, increasing.
+func (e *energies) all() []*big.Rat {
+	out := make([]*big.Rat, 0, len(e.met))
+	for _, w := range e.met {
+		out = append(out, w)
+	}
+	sort.Slice(out, func(i, j int) bool { return out[i].Cmp(out[j]) < 0 })
+	return out
+}
+
+// total sums rates in increasing order, so that seats with the same rates share
+// a class whatever the order of their moves.
+func total(rates []float64) float64 {
+	sorted := append([]float64(nil), rates...)
+	sort.Float64s(sorted)
+	sum := 0.0
+	for _, r := range sorted {
+		sum += r
+	}
+	return sum
+}
+
+// levelEnergies returns E(s) = -J shape(s), or -J (-1)^s for q = 2, exactly.
+func levelEnergies(f FamilySpec, q int) ([]*big.Rat, error) {
+	shape := f.Shape
+	if shape == nil {
+		if q != 2 {
+			return nil, fmt.Errorf("family %q gives no energies for %d levels", f.Name, q)
+		}
+		shape = []float64{1, -1}
+	}
+	if len(shape) != q {
+		return nil, fmt.Errorf("family %q gives %d energies for %d levels", f.Name, len(shape), q)
+	}
+	out := make([]*big.Rat, q)
+	j := bath.Exact(f.Coupling)
+	for s, v := range shape {
+		out[s] = new(big.Rat).Mul(bath.Exact(-v), j)
+	}
+	return out, nil
+}

@@ -1,0 +1,212 @@
+package kinetic
+
+import (
+	"errors"
+	"fmt"
+
+	"sojourn/kinetic/lattice"
+)
+
+// state is a configuration: the pattern of every seat, and the levels of the
+// lines. Engines build it, then take from it what they keep.
+type state struct {
+	patterns []uint16
+	lines    [][]uint8
+}
+
+// ErrNoSpins says that a start needs spins and the model has none.
+var ErrNoSpins = errors.New("starts up and down need a model with spins; use reference or random")
+
+// newState returns the state in which a trajectory begins.
+func newState(g *Generator, start Start, src *source) (*state, error) {
+	s := &state{patterns: make([]uint16, g.Addresses())}
+	for l, line := range g.Lines {
+		s.lines = append(s.lines, make([]uint8, line.Positions))
+		if g.ReferenceLines != nil {
+			copy(s.lines[l], g.ReferenceLines[l])
+		}
+	}
+	if g.Reference != nil {
+		s.setReference(g)
+	}
+	switch start {
+	case StartReference:
+	case StartRandom:
+		s.randomise(g, src)
+	case StartUp, StartDown:
+		return s, s.align(g, start)
+	default:
+		return nil, fmt.Errorf("start %q is not one of reference, random, up, down", start)
+	}
+	return s, nil
+}
+
+func (s *state) setReference(g *Generator) {
+	for a := range s.patterns {
+		c := g.Lattice.Coord(a / len(g.Seats))
+		shape := &g.Shapes[g.Places[g.PlaceOf(a)].Shape]
+		for b, slot := range g.Seats[shape.Seat].Slots {
+			if shape.Present>>b&1 == 0 || g.Reference[slot.Family] == nil {
+				continue
+			}
+			t, _ := g.Lattice.Wrap(c, slot.Offset)
+			s.patterns[a] |= uint16(g.Reference[slot.Family][g.Lattice.Index(t)]) << (b * g.SlotBits)
+		}
+	}
+}
+
+// randomise applies every move a random number of times, which makes every
+// state that the moves connect to the reference equally likely.
+func (s *state) randomise(g *Generator, src *source) {
+	bits, left := uint64(0), 0
+	for a := range s.patterns {
+		p := g.Places[g.PlaceOf(a)]
+		for m := range g.Seats[p.Seat].Moves {
+			times := 0
+			if g.Levels == 2 {
+				if left == 0 {
+					bits, left = src.next(), 64
+				}
+				times = int(bits & 1)
+				bits >>= 1
+				left--
+			} else {
+				n, _ := src.below(uint64(g.Levels))
+				times = int(n)
+			}
+			for range times {
+				s.apply(g, a, m)
+			}
+		}
+	}
+}
+
+// align turns every spin to the given side.
+func (s *state) align(g *Generator, start Start) error {
+	order := -1
+	for f := range g.Families {
+		if g.Families[f].Order {
+			order = f
+		}
+	}
+	if order < 0 {
+		return ErrNoSpins
+	}
+	want := uint8(0)
+	if start == StartDown {
+		want = uint8(g.Levels / 2)
+	}
+	for a := range s.patterns {
+		shape := &g.Shapes[g.Places[g.PlaceOf(a)].Shape]
+		b, m := orderMove(g, shape, order)
+		if b < 0 {
+			continue
+		}
+		for n := 0; s.level(g, a, b) != want; n++ {
+			if n == g.Levels {
+				return fmt.Errorf("the bath operators cannot turn the spins to start %s; use reference or random", start)
+			}
+			s.apply(g, a, m)
+		}
+	}
+	return nil
+}
+
+// orderMove returns the slot of the seat's own spin and a move that turns it.
+func orderMove(g *Generator, shape *Shape, order int) (slot, move int) {
+	for b, sl := range g.Seats[shape.Seat].Slots {
+		if sl.Family != order || sl.Offset != (lattice.Offset{}) || shape.Present>>b&1 == 0 {
+			continue
+		}
+		for m, mv := range g.Seats[shape.Seat].Moves {
+			if mv.Change[b] != 0 {
+				return b, m
+			}
+		}
+	}
+	return -1, -1
+}
+
+func (s *state) level(g *Generator, a, slot int) uint8 {
+	return uint8(s.patterns[a] >> (slot * g.SlotBits) & (1<<g.SlotBits - 1))
+}
+
+// apply executes move m of the seat at address a.
+func (s *state) apply(g *Generator, a, m int) {
+	mv := &g.Moves[g.Places[g.PlaceOf(a)].First+uint32(m)]
+	for _, t := range g.Touch[mv.First:mv.Last] {
+		p := &s.patterns[a+int(t.Delta)]
+		*p = uint16(g.Tables[t.Table+uint32(*p)])
+	}
+	row, col := a/len(g.Col), a%len(g.Col)
+	for i := mv.FirstHit; i < mv.LastHit; i++ {
+		h := &g.Hits[i]
+		if at := h.Col[col] + h.Row[row]; int(at) < len(s.lines[h.Line]) {
+			v := &s.lines[h.Line][at]
+			*v = uint8((int(*v) + int(h.Change)) % g.Levels)
+		}
+	}
+}
+
+// terms writes the levels of a family's terms by cell; pattern returns the
+// pattern of an address.
+func (g *Generator) terms(f int, pattern func(a int) uint16, dst []uint8) {
+	for i := range dst {
+		dst[i] = Absent
+	}
+	fam := &g.Families[f]
+	left := fam.Terms
+	for _, ref := range fam.Slots {
+		if left == 0 {
+			break
+		}
+		left -= g.readSlot(ref, pattern, dst)
+	}
+	if left == 0 {
+		return
+	}
+	// What no move changes stands as in the reference state.
+	for c := range dst {
+		if dst[c] == Absent && g.TermExists(f, c) {
+			dst[c] = 0
+			if g.Reference != nil && g.Reference[f] != nil {
+				dst[c] = g.Reference[f][c]
+			}
+		}
+	}
+}
+
+// readSlot fills in the terms that one slot shows, where still Absent, and
+// returns how many.
+func (g *Generator) readSlot(ref SlotRef, pattern func(a int) uint16, dst []uint8) int {
+	n := 0
+	lx := g.Lattice.Size[0]
+	mask := uint16(1<<g.SlotBits - 1)
+	shift := ref.Slot * g.SlotBits
+	for row := range g.Row {
+		from := g.Lattice.Coord(row * lx)
+		for x := range lx {
+			from[0] = x
+			to, ok := g.Lattice.Wrap(from, ref.Offset)
+			if !ok {
+				continue
+			}
+			c := row*lx + x
+			if dst[c] != Absent {
+				continue
+			}
+			a := g.Lattice.Index(to)*len(g.Seats) + ref.Seat
+			if g.Shapes[g.Places[g.PlaceOf(a)].Shape].Present>>ref.Slot&1 == 0 {
+				continue
+			}
+			dst[c] = uint8(pattern(a) >> shift & mask)
+			n++
+		}
+	}
+	return n
+}
+
+// TermExists reports whether the lattice has the term of family f at a cell.
+func (g *Generator) TermExists(f, cell int) bool {
+	return g.Families[f].terms.exists(g.Lattice, g.Lattice.Coord(cell))
+}
