@@ -1,0 +1,180 @@
+package exact
+
+import (
+	"fmt"
+	"math/big"
+	"slices"
+
+	"sojourn/kinetic"
+	"sojourn/kinetic/bath"
+	"sojourn/kinetic/lattice"
+	"sojourn/kinetic/pauli"
+)
+
+// Kind is a family of terms or a tracked operator: a set of instances, one per
+// cell or, for an operator with an extent, one per transverse position.
+type Kind struct {
+	Name  string
+	Group string
+	// Energy is the energy of an instance by level; nil for a tracked operator.
+	Energy []float64
+	exact  []*big.Rat
+	Order  bool // its sum is the magnetization
+	// Line tells an operator with an extent from one that is local to a cell.
+	Line bool
+	// Index counts families (energy families with J != 0, then local tracked
+	// operators) or, for a line, lines, as kinetic.Generator does.
+	Index     int
+	Positions int // cells, or transverse positions
+	First     int // its instances are First .. First+Count-1
+	Count     int // how many exist on this lattice
+	extent    [lattice.MaxAxes]bool
+}
+
+// Instance is one term of the Hamiltonian or one tracked operator.
+type Instance struct {
+	Kind     int // index into System.Kinds
+	Position int // cell, or transverse position
+	Factors  []Factor
+}
+
+// Factor is X^X Z^Z on one site of the lattice; site = cell*Sites + site of the
+// cell.
+type Factor struct {
+	Site, X, Z int
+}
+
+// enumerate lists the kinds and their instances: energy families with a
+// coupling, local tracked operators, lines.
+func (s *System) enumerate() error {
+	add := func(k Kind, op pauli.Operator, truncate bool) {
+		k.First, k.extent = len(s.Instances), op.Extent
+		positions := transverse(s.Spec.Lattice, op.Extent)
+		k.Positions = len(positions)
+		for p, at := range positions {
+			if f, ok := s.fold(op, at, truncate); ok {
+				s.Instances = append(s.Instances, Instance{Kind: len(s.Kinds), Position: p, Factors: f})
+			}
+		}
+		k.Count = len(s.Instances) - k.First
+		s.Kinds = append(s.Kinds, k)
+	}
+	families := 0
+	for i, f := range s.Spec.Families {
+		if f.Coupling == 0 {
+			continue
+		}
+		k := Kind{Name: f.Name, Group: f.Group, Index: families}
+		families++
+		levels, err := levelEnergies(f, s.Spec.Levels)
+		if err != nil {
+			return fmt.Errorf("family %d (%s): %w", i, f.Name, err)
+		}
+		k.exact = levels
+		for _, e := range levels {
+			x, _ := e.Float64()
+			k.Energy = append(k.Energy, x)
+		}
+		add(k, f.Operator, f.Cut == kinetic.Truncate)
+	}
+	for _, t := range s.Spec.Tracked {
+		if !t.Operator.Extended() {
+			add(Kind{Name: t.Name, Order: t.Order, Index: families}, t.Operator, false)
+			families++
+		}
+	}
+	lines := 0
+	for _, t := range s.Spec.Tracked {
+		if t.Operator.Extended() {
+			add(Kind{Name: t.Name, Order: t.Order, Index: lines, Line: true}, t.Operator, false)
+			lines++
+		}
+	}
+	return nil
+}
+
+// levelEnergies returns E(s), s = 0..q-1, as exact rationals.
+func levelEnergies(f kinetic.FamilySpec, q int) ([]*big.Rat, error) {
+	j := bath.Exact(f.Coupling)
+	if f.Shape == nil {
+		if q != 2 {
+			return nil, fmt.Errorf("%d levels need a shape", q)
+		}
+		return []*big.Rat{new(big.Rat).Neg(j), j}, nil
+	}
+	if len(f.Shape) != q {
+		return nil, fmt.Errorf("a shape of %d entries for %d levels", len(f.Shape), q)
+	}
+	out := make([]*big.Rat, q)
+	for l, x := range f.Shape {
+		out[l] = new(big.Rat).Mul(j, bath.Exact(x))
+		out[l].Neg(out[l])
+	}
+	return out, nil
+}
+
+// transverse lists the positions of an operator with the given extent: the
+// cells whose coordinates along extended axes are 0, axis 0 fastest.
+func transverse(l lattice.Lattice, extent [lattice.MaxAxes]bool) []lattice.Offset {
+	var out []lattice.Offset
+	for i := range l.Cells() {
+		c := l.Coord(i)
+		inside := true
+		for a, e := range extent {
+			inside = inside && !(e && c[a] != 0)
+		}
+		if inside {
+			out = append(out, c)
+		}
+	}
+	return out
+}
+
+// fold places an operator at a cell: factors that fall on one site multiply,
+// and an operator with an extent is the product of its translates along it. ok
+// is false for an operator that the lattice does not have: one that would
+// leave it at an open edge and is not truncated, or of which truncation leaves
+// nothing.
+func (s *System) fold(op pauli.Operator, at lattice.Offset, truncate bool) (f []Factor, ok bool) {
+	l, q := s.Spec.Lattice, s.Spec.Levels
+	factors := op.Factors()
+	if len(factors) == 0 {
+		return nil, true // the constant 1
+	}
+	powers := map[int]Factor{}
+	for i := range l.Cells() {
+		shift := l.Coord(i)
+		skip := false
+		for a, e := range op.Extent {
+			skip = skip || !e && shift[a] != 0
+		}
+		if skip {
+			continue
+		}
+		for _, m := range factors {
+			cell, inside := l.Wrap(at.Add(shift), m.Exp)
+			if !inside {
+				if truncate {
+					continue
+				}
+				return nil, false
+			}
+			n := l.Index(cell)*s.Spec.Sites + m.Site
+			p := powers[n]
+			powers[n] = Factor{Site: n, X: p.X + m.X, Z: p.Z + m.Z}
+		}
+	}
+	if len(powers) == 0 {
+		return nil, false
+	}
+	for _, p := range powers {
+		p.X, p.Z = mod(p.X, q), mod(p.Z, q)
+		if p.X != 0 || p.Z != 0 {
+			f = append(f, p)
+		}
+	}
+	slices.SortFunc(f, func(a, b Factor) int { return a.Site - b.Site })
+	return f, true
+}
+
+func mod(a, q int) int { return ((a % q) + q) % q }
