@@ -16,23 +16,45 @@ type Model struct {
 	MaxAxes    int         // most axes
 	Parameters []Parameter // beyond the lattice
 	Classical  bool        // every term is diagonal; the bath acts by X
-	Build      func(l lattice.Lattice, p Values) (Hamiltonian, error)
+	// Build returns the Hamiltonian. l has MinAxes to MaxAxes axes. A parameter
+	// that p lacks has its default.
+	Build func(l lattice.Lattice, p Values) (Hamiltonian, error)
 }
 
 // Parameter is a number that a model takes.
 type Parameter struct {
 	Name    string // as in the study file: "coupling", "field"
 	Default float64
+	// Follows names the parameter whose value this one takes if it is not
+	// given; Default is then not used.
+	Follows string
 	Doc     string
 }
 
-// Values are a model's parameters by name, defaults filled in.
+// Values are a model's parameters by name.
 type Values map[string]float64
+
+// Resolve returns v with every parameter of the model filled in.
+func (m Model) Resolve(v Values) Values {
+	out := make(Values, len(m.Parameters))
+	for _, p := range m.Parameters {
+		x, given := v[p.Name]
+		switch {
+		case given:
+		case p.Follows != "":
+			x = out[p.Follows]
+		default:
+			x = p.Default
+		}
+		out[p.Name] = x
+	}
+	return out
+}
 
 // Hamiltonian is what a model contributes to a kinetic.Spec.
 type Hamiltonian struct {
 	Levels   int
-	Sites    int
+	Sites    int // per cell
 	Families []kinetic.FamilySpec
 	Tracked  []kinetic.TrackedSpec
 }

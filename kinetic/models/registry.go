@@ -1,7 +1,19 @@
 package models
 
+import (
+	"fmt"
+
+	"sojourn/kinetic/lattice"
+)
+
 // All returns the built-in Hamiltonians in the order in which they are listed.
-func All() []Model { return nil }
+func All() []Model {
+	list := []Model{ising, toricCode}
+	for i := range list {
+		list[i].Build = list[i].checked
+	}
+	return list
+}
 
 // Find returns the model of the given name.
 func Find(name string) (Model, bool) {
@@ -11,4 +23,16 @@ func Find(name string) (Model, bool) {
 		}
 	}
 	return Model{}, false
+}
+
+// checked is Build with parameters filled in and the lattice looked at.
+func (m Model) checked(l lattice.Lattice, p Values) (Hamiltonian, error) {
+	if l.Axes < m.MinAxes || l.Axes > m.MaxAxes {
+		want := fmt.Sprintf("%d to %d axes", m.MinAxes, m.MaxAxes)
+		if m.MinAxes == m.MaxAxes {
+			want = fmt.Sprintf("%d axes", m.MinAxes)
+		}
+		return Hamiltonian{}, fmt.Errorf("the %s model needs a lattice of %s, not %d", m.Name, want, l.Axes)
+	}
+	return m.Build(l, m.Resolve(p))
 }

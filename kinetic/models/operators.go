@@ -1,0 +1,59 @@
+package models
+
+import (
+	"fmt"
+
+	"sojourn/kinetic/lattice"
+	"sojourn/kinetic/pauli"
+)
+
+// axes are the names of the axes, and the variables of polynomials.
+var axes = [lattice.MaxAxes]string{"x", "y", "z", "w"}
+
+// planes are the pairs of axes of a lattice with n axes: xy, yz, xz first.
+func planes(n int) [][2]int {
+	all := [][2]int{{0, 1}, {1, 2}, {0, 2}, {0, 3}, {1, 3}, {2, 3}}
+	var out [][2]int
+	for _, p := range all {
+		if p[1] < n {
+			out = append(out, p)
+		}
+	}
+	return out
+}
+
+// xs returns the X-type operator of one part per site of the cell, over Z_2.
+func xs(parts ...string) pauli.Operator {
+	p, extent := parse(parts)
+	return pauli.Operator{X: p, Extent: extent}
+}
+
+// zs returns the Z-type operator of one part per site of the cell, over Z_2.
+func zs(parts ...string) pauli.Operator {
+	p, extent := parse(parts)
+	return pauli.Operator{Z: p, Extent: extent}
+}
+
+func parse(parts []string) (list []pauli.Polynomial, extent [lattice.MaxAxes]bool) {
+	for _, src := range parts {
+		p, e, err := pauli.ParsePart(src, 2, lattice.MaxAxes)
+		if err != nil {
+			panic(fmt.Sprintf("models: %q: %v", src, err))
+		}
+		if e != ([lattice.MaxAxes]bool{}) {
+			extent = e
+		}
+		list = append(list, p)
+	}
+	return list, extent
+}
+
+// only returns one part per site: part on the given site, nothing on others.
+func only(sites, site int, part string) []string {
+	out := make([]string, sites)
+	for i := range out {
+		out[i] = "0"
+	}
+	out[site] = part
+	return out
+}
