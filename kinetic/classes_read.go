@@ -1,0 +1,155 @@
+package kinetic
+
+import (
+	"fmt"
+	"slices"
+)
+
+func (e *classes[T]) initSums() {
+	g := e.g
+	e.packed = make([]int64, e.hot.words)
+	e.sums = g.familySums(e.pattern)
+	e.lineSums = g.lineSums(e.lines)
+}
+
+// familySums sums the eigenvalues of every family over the lattice (q = 2).
+func (g *Generator) familySums(pattern func(a int) uint16) []int64 {
+	sums := make([]int64, len(g.Families))
+	levels := make([]uint8, g.Cells())
+	for f := range sums {
+		g.terms(f, pattern, levels)
+		sums[f] = signSum(levels)
+	}
+	return sums
+}
+
+func (g *Generator) lineSums(lines [][]uint8) []int64 {
+	sums := make([]int64, len(lines))
+	for l, levels := range lines {
+		for p, s := range levels {
+			if ex := g.Lines[l].Exists; ex == nil || ex[p] {
+				sums[l] += 1 - 2*int64(s)
+			}
+		}
+	}
+	return sums
+}
+
+// signSum sums (-1)^s over the levels that are not Absent.
+func signSum(levels []uint8) int64 {
+	n := int64(0)
+	for _, s := range levels {
+		if s != Absent {
+			n += 1 - 2*int64(s)
+		}
+	}
+	return n
+}
+
+func (e *classes[T]) pattern(a int) uint16 { return uint16(uint32(e.tags[a]) & e.hot.mask) }
+
+func (e *classes[T]) Time() float64 { return e.now }
+func (e *classes[T]) Lanes() int    { return 1 }
+func (e *classes[T]) Jumps() uint64 { return e.jumps }
+
+func (e *classes[T]) Sums(dst []int64) []int64 {
+	e.unpack()
+	return append(append(dst, e.sums...), e.lineSums...)
+}
+
+func (e *classes[T]) Energy(int) float64 {
+	e.unpack()
+	sum := 0.0
+	for f, fam := range e.g.Families {
+		if fam.Energy != nil {
+			sum += fam.Energy[0] * float64(e.sums[f])
+		}
+	}
+	return sum
+}
+
+func (e *classes[T]) Census(dst []int64) {
+	g := e.g
+	mask := int(e.hot.mask)
+	a := 0
+	for _, first := range g.Row {
+		for _, col := range g.Col {
+			shape := int(e.hot.places[first+uint32(col)].shape)
+			dst[shape<<g.Bits|int(e.tags[a])&mask]++
+			a++
+		}
+	}
+}
+
+func (e *classes[T]) Terms(family, _ int, dst []uint8) {
+	if l := family - len(e.g.Families); l >= 0 {
+		copy(dst, e.lines[l])
+		for p, ok := range e.g.Lines[l].Exists {
+			if !ok {
+				dst[p] = Absent
+			}
+		}
+		return
+	}
+	e.g.terms(family, e.pattern, dst)
+}
+
+func (e *classes[T]) Patterns(_ int, dst []uint16) {
+	for a, tag := range e.tags {
+		dst[a] = uint16(uint32(tag) & e.hot.mask)
+	}
+}
+
+// Audit checks that the lists and tags point at each other, that the seats
+// around each term agree on its level, and that the sums are what the levels
+// add up to.
+func (e *classes[T]) Audit() error {
+	g := e.g
+	listed := uint64(0)
+	for k := range g.Rates {
+		listed += uint64(e.n[k])
+	}
+	if listed != uint64(len(e.tags)) {
+		return fmt.Errorf("the classes list %d of %d seats", listed, len(e.tags))
+	}
+	for a := range e.tags {
+		k := g.Shapes[g.Places[g.PlaceOf(a)].Shape].Class[e.pattern(a)]
+		i := uint64(e.tags[a] >> e.hot.bits)
+		if i >= uint64(e.n[k]) || e.lists[k][i] != uint32(a) {
+			return fmt.Errorf("seat %d is not where its tag says, at %d of class %d", a, i, k)
+		}
+	}
+	if err := g.agree(e.pattern); err != nil {
+		return err
+	}
+	e.unpack()
+	if want := g.familySums(e.pattern); !slices.Equal(want, e.sums) {
+		return fmt.Errorf("the sums of the families are %v, the levels add up to %v", e.sums, want)
+	}
+	if want := g.lineSums(e.lines); !slices.Equal(want, e.lineSums) {
+		return fmt.Errorf("the sums of the lines are %v, the levels add up to %v", e.lineSums, want)
+	}
+	return nil
+}
+
+// agree checks that all seats around a term hold the same level of it.
+func (g *Generator) agree(pattern func(a int) uint16) error {
+	levels := make([]uint8, g.Cells())
+	for f := range g.Families {
+		g.terms(f, pattern, levels)
+		for a := range g.Addresses() {
+			shape := &g.Shapes[g.Places[g.PlaceOf(a)].Shape]
+			for b, slot := range g.Seats[shape.Seat].Slots {
+				if slot.Family != f || shape.Present>>b&1 == 0 {
+					continue
+				}
+				t, _ := g.Lattice.Wrap(g.Lattice.Coord(a/len(g.Seats)), slot.Offset)
+				s := pattern(a) >> (b * g.SlotBits) & (1<<g.SlotBits - 1)
+				if want := levels[g.Lattice.Index(t)]; uint16(want) != s {
+					return fmt.Errorf("seat %d holds level %d for the term of %q at cell %v, another seat %d", a, s, g.Families[f].Name, t, want)
+				}
+			}
+		}
+	}
+	return nil
+}
