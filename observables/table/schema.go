@@ -2,6 +2,7 @@ package table
 
 import (
 	"fmt"
+	"strings"
 )
 
 // Type is the type of a column.
@@ -18,11 +19,11 @@ const (
 
 // Column is one column of a table.
 type Column struct {
-	Name     string
-	Type     Type
-	Unit     string // "" for counts, names and pure numbers
-	Meaning  string // one phrase, for metadata and tables of documentation
-	Optional bool   // values may be missing (null); not for lists
+	Name     string `json:"name"`
+	Type     Type   `json:"type"`
+	Unit     string `json:"unit,omitempty"`     // "" for counts, names and pure numbers
+	Meaning  string `json:"meaning,omitempty"`  // one phrase, for metadata and documentation
+	Optional bool   `json:"optional,omitempty"` // values may be missing (null); not for lists
 }
 
 // Pair is one key and value of a file's metadata.
@@ -40,7 +41,7 @@ type Schema struct {
 }
 
 // Keys of a file's metadata. The columns are a JSON array of objects with the
-// keys name, type, unit, meaning and optional.
+// keys name, type, unit, meaning and optional, as in Column.
 const (
 	KeyTable   = "sojourn.table"
 	KeyFormat  = "sojourn.format"
@@ -48,69 +49,31 @@ const (
 	KeyColumns = "sojourn.columns"
 )
 
-// Block is rows column by column: one slice per column of the schema, in its
-// order and all of one length. The slices have the Go type of their column, or
-// are a Missing for an optional one.
-type Block []any
-
-// Missing is a column with missing values: Values as for a required column, of
-// which those with Valid false are ignored and stored as null.
-type Missing struct {
-	Values any
-	Valid  []bool
-}
-
-// Rows returns the number of rows, from the first column.
-func (b Block) Rows() int {
-	if len(b) == 0 {
-		return 0
-	}
-	n, _ := length(b[0])
-	return n
-}
-
-// length returns the number of rows in a column of a block.
-func length(column any) (n int, ok bool) {
-	switch c := column.(type) {
-	case []float64:
-		return len(c), true
-	case []int64:
-		return len(c), true
-	case []int32:
-		return len(c), true
-	case []string:
-		return len(c), true
-	case [][]int32:
-		return len(c), true
-	case Missing:
-		n, ok = length(c.Values)
-		return n, ok && n == len(c.Valid)
-	}
-	return 0, false
-}
-
-// Builder gathers rows one by one into a Block, for small tables.
-type Builder struct {
-	schema Schema
-	block  Block
-}
-
-// NewBuilder returns a Builder without rows.
-func NewBuilder(s Schema) *Builder {
-	panic("table: not written")
-}
-
-// Row adds a row: one value per column in the schema's order, nil where an
-// optional value is missing. An int is taken for int32 and int64 columns. It
-// panics if a value does not suit its column.
-func (b *Builder) Row(values ...any) {
-	panic("table: not written")
-}
-
-// Block returns the rows gathered.
-func (b *Builder) Block() Block { return b.block }
-
-// validate reports what is wrong with a schema.
+// validate reports the first thing wrong with a schema.
 func (s Schema) validate() error {
-	return fmt.Errorf("table: not written")
+	if len(s.Columns) == 0 {
+		return fmt.Errorf("table %s: the schema has no columns", s.Name)
+	}
+	seen := make(map[string]bool, len(s.Columns))
+	for _, c := range s.Columns {
+		switch c.Type {
+		case Double, Int64, Int32, String:
+		case Int32List:
+			if c.Optional {
+				return fmt.Errorf("table %s: column %s: a list cannot be optional", s.Name, c.Name)
+			}
+		default:
+			return fmt.Errorf("table %s: column %s: unknown type %q", s.Name, c.Name, c.Type)
+		}
+		if c.Name == "" || seen[c.Name] {
+			return fmt.Errorf("table %s: column name %q is empty or used twice", s.Name, c.Name)
+		}
+		seen[c.Name] = true
+	}
+	for _, p := range s.Metadata {
+		if strings.HasPrefix(p.Key, "sojourn.") {
+			return fmt.Errorf("table %s: metadata key %q is taken", s.Name, p.Key)
+		}
+	}
+	return nil
 }
