@@ -12,36 +12,38 @@ const ClassEngine = "classes"
 // window is how many tokens are drawn ahead.
 const window = 16
 
-// token is an attempted jump drawn ahead: seat number index of a class, and 64
-// random bits that choose among the seat's moves.
+// token is an attempted jump drawn ahead: a position in the arena, within the
+// bound of a class, and 64 random bits that choose among the seat's moves.
 type token struct {
 	class uint32
-	index uint32
+	at    uint32
 	rest  uint64
 }
 
 // classes draws trajectories by classes of equal rate (A. B. Bortz, M. H. Kalos,
 // J. L. Lebowitz, J. Comput. Phys. 17, 10 (1975)).
 //
-// Each class k keeps a list of its n[k] seats. For a stretch of events, bounds
-// bound[k] >= n[k] stand in for the counts: events come at rate
-// sum_k bound[k]*rate[k], each is an index below a bound, and an index at or
-// above n[k] is a null event (thinning: P. A. W. Lewis, G. S. Shedler, Nav. Res.
-// Logist. Q. 26, 403 (1979)), which is exact. So tokens do not depend on the
-// state and are drawn ahead. When a count passes its bound, or the stretch is
-// long, the unused tokens are dropped and new bounds set; exponential waiting
-// times have no memory, so that is exact too.
+// The seats of class k are listed in the arena from first[k] up to end[k]. For a
+// stretch of events, bounds at or above the ends stand in for them: events come
+// at rate sum_k (bound[k]-first[k])*rate[k], each is a position below a bound,
+// and a position at or above the end is a null event (thinning: P. A. W. Lewis,
+// G. S. Shedler, Nav. Res. Logist. Q. 26, 403 (1979)), which is exact. So tokens
+// do not depend on the state and are drawn ahead. When an end passes its bound,
+// or the stretch is long, the unused tokens are dropped and new bounds set;
+// exponential waiting times have no memory, so that is exact too.
 //
-// A tag is a seat's index in its class list, shifted, and its pattern.
+// A tag is a seat's position in the arena, shifted, and its pattern.
 type classes[T uint32 | uint64] struct {
 	g     *Generator
 	hot   hot
 	src   source
 	tags  []T
-	lists [256][]uint32
-	n     [256]uint32
+	arena []uint32
+	first [256]uint32
+	end   [256]uint32
 	bound [256]uint32
-	draw  classDraw
+	room  [256]uint32 // end of the class's share of the arena
+	draw  aliases
 
 	queue [window]token
 	head  uint32  // of the next token
@@ -118,16 +120,25 @@ func NewClasses(g *Generator, seed [32]byte, unit int, start Start) (Engine, err
 }
 
 // narrow reports whether a tag fits 32 bits.
-func (g *Generator) narrow() bool { return bits.Len(uint(g.Addresses()-1))+g.Bits <= 32 }
+func (g *Generator) narrow() bool {
+	return bits.Len64(uint64(share32(g.Addresses())+len(g.Rates)*(spare+maxTouches)))+g.Bits <= 32
+}
 
-// ClassBytes estimates the memory of one class engine, lists grown to twice
-// their need.
+// A class's share of the arena is its count and an eighth, and a few more.
+const (
+	spare      = 256
+	maxTouches = 1 << 10
+)
+
+func share32(n int) int { return n + n/8 }
+
+// ClassBytes estimates the memory of one class engine.
 func ClassBytes(g *Generator) int64 {
 	tag := int64(8)
 	if g.narrow() {
 		tag = 4
 	}
-	return int64(g.Addresses())*(tag+8) + g.tableBytes()
+	return int64(g.Addresses())*tag + 4*int64(share32(g.Addresses())) + g.tableBytes()
 }
 
 func newClasses[T uint32 | uint64](g *Generator, s *state, src source) *classes[T] {
@@ -135,32 +146,61 @@ func newClasses[T uint32 | uint64](g *Generator, s *state, src source) *classes[
 	for a, p := range s.patterns {
 		e.tags[a] = T(p)
 	}
-	e.fillLists()
+	e.fill()
 	e.initSums()
 	e.refresh()
 	e.next = e.src.exponential() * e.scale
 	return e
 }
 
-// fillLists lists the seats of each class by address, and tags them.
-func (e *classes[T]) fillLists() {
-	g := e.g
+// class returns the class of the seat at an address.
+func (e *classes[T]) class(a int) uint8 {
+	return e.g.Shapes[e.g.Places[e.g.PlaceOf(a)].Shape].Class[uint32(e.tags[a])&e.hot.mask]
+}
+
+// fill lists the seats of each class by address, and tags them.
+func (e *classes[T]) fill() {
 	var counts [256]int
-	class := func(a int) uint8 {
-		return g.Shapes[g.Places[g.PlaceOf(a)].Shape].Class[uint32(e.tags[a])&e.hot.mask]
-	}
 	for a := range e.tags {
-		counts[class(a)]++
+		counts[e.class(a)]++
 	}
-	for k, n := range counts {
-		e.n[k] = 0
-		e.lists[k] = make([]uint32, n, n+n/16)
-	}
+	e.layOut(counts)
 	for a := range e.tags {
-		k := class(a)
-		e.lists[k][e.n[k]] = uint32(a)
-		e.tags[a] = T(e.n[k])<<e.hot.bits | e.tags[a]&T(e.hot.mask)
-		e.n[k]++
+		k := e.class(a)
+		e.arena[e.end[k]] = uint32(a)
+		e.tags[a] = T(e.end[k])<<e.hot.bits | e.tags[a]&T(e.hot.mask)
+		e.end[k]++
+	}
+}
+
+// layOut makes an arena with room for the given counts and more. Classes are
+// empty then.
+func (e *classes[T]) layOut(counts [256]int) {
+	at := uint32(0)
+	for k := range e.g.Rates {
+		e.first[k], e.end[k] = at, at
+		at += uint32(share32(counts[k]) + spare + e.hot.touches)
+		e.room[k] = at
+	}
+	e.arena = make([]uint32, at)
+}
+
+// makeRoom moves the classes apart when one has outgrown its share, keeping
+// the order within each.
+func (e *classes[T]) makeRoom() {
+	old, first, end := e.arena, e.first, e.end
+	var counts [256]int
+	for k := range e.g.Rates {
+		counts[k] = int(end[k] - first[k])
+	}
+	e.layOut(counts)
+	for k := range e.g.Rates {
+		e.end[k] += uint32(copy(e.arena[e.first[k]:], old[first[k]:end[k]]))
+	}
+	mask := T(e.hot.mask)
+	for a, tag := range e.tags {
+		k := e.class(a)
+		e.tags[a] = (tag>>e.hot.bits+T(e.first[k])-T(first[k]))<<e.hot.bits | tag&mask
 	}
 }
 
@@ -169,7 +209,7 @@ func newHot(g *Generator) hot {
 		bits:   uint(g.Bits),
 		mask:   1<<g.Bits - 1,
 		rowLen: uint32(len(g.Col)),
-		words:  uint32((len(g.Families) + fields - 1) / fields),
+		words:  uint32(max(1, (len(g.Families)+fields-1)/fields)),
 	}
 	if h.rowLen == 1 {
 		h.single = math.MaxUint32
@@ -226,36 +266,43 @@ func (e *classes[T]) unpack() {
 // refresh sets new bounds from the present counts and draws the tokens anew.
 // The slack over a count is a few of its own fluctuations in a stretch.
 func (e *classes[T]) refresh() {
-	weights := e.draw.weights[:0]
-	for k := range e.g.Rates {
-		n := e.n[k]
-		n += n/256 + 2 + uint32(math.Sqrt(float64(n)))
-		e.bound[k] = min(n, uint32(len(e.tags)))
-		if need := int(e.bound[k]) + e.hot.touches; need > len(e.lists[k]) {
-			grown := make([]uint32, need+need/8)
-			copy(grown, e.lists[k])
-			e.lists[k] = grown
-		}
-		weights = append(weights, float64(e.bound[k])*e.g.Rates[k])
+	for !e.setBounds() {
+		e.makeRoom()
 	}
-	sum := e.draw.set(weights)
 	e.left = min(max(len(e.tags), 4096), 100000)
 	e.scale = math.Inf(1)
-	if sum == 0 {
+	if e.draw.sum == 0 {
 		return
 	}
-	e.scale = 1 / sum
+	e.scale = 1 / e.draw.sum
 	e.head = 0
 	for i := range e.queue {
 		e.queue[i] = e.token()
 	}
 }
 
+// setBounds sets the bounds and the weights of the classes; it returns false
+// if a class has no room for its bound.
+func (e *classes[T]) setBounds() bool {
+	weights := e.draw.weights[:0]
+	for k, rate := range e.g.Rates {
+		n := e.end[k] - e.first[k]
+		n = min(n+n/256+2+uint32(math.Sqrt(float64(n))), uint32(len(e.tags)))
+		e.bound[k] = e.first[k] + n
+		if e.bound[k]+uint32(e.hot.touches) > e.room[k] {
+			return false
+		}
+		weights = append(weights, float64(n)*rate)
+	}
+	e.draw.set(weights)
+	return true
+}
+
 // token draws one attempt of the present stretch.
 func (e *classes[T]) token() token {
-	k := e.draw.class(e.src.next())
-	i, rest := e.src.below(uint64(e.bound[k]))
-	return token{k, uint32(i), rest}
+	k := e.draw.draw(e.src.next())
+	i, rest := e.src.below(uint64(e.bound[k] - e.first[k]))
+	return token{k, e.first[k] + uint32(i), rest}
 }
 
 // Advance runs the trajectory to time t.
@@ -276,20 +323,27 @@ func (e *classes[T]) Advance(t float64) {
 // events executes events up to time t. It returns true if the stretch ended at
 // the event at e.next, which has been executed, and false if e.next is the
 // first event after t.
+//
+// The function is long because it is the inner loop: one jump is 5 to 15 seats
+// that change class, each a dozen instructions and two accesses to memory that
+// wait for none before them.
 func (e *classes[T]) events(t float64) bool {
 	h := &e.hot
 	tags, touches, tables := e.tags, e.g.Touch, e.g.Tables
-	n, lists := &e.n, &e.lists
+	arena, end, src := e.arena, &e.end, e.src
 	next, scale, head, left := e.next, e.scale, e.head, e.left
 	width, mask := h.bits&63, T(h.mask)
 	over := false
+	packed := int64(0) // the single word of sums, while it is in use
 	for next <= t {
 		tk := e.queue[head%window]
-		e.queue[head%window] = e.token()
+		k := e.draw.draw(src.next())
+		i, rest := src.below(uint64(e.bound[k&255] - e.first[k&255]))
+		e.queue[head%window] = token{k, e.first[k&255] + uint32(i), rest}
 		head++
 		left--
-		if tk.index < n[tk.class&255] {
-			j := lists[tk.class&255][tk.index]
+		if tk.at < end[tk.class&255] {
+			j := arena[tk.at]
 			hi, _ := bits.Mul64(uint64(j), h.magic)
 			row := uint32(hi) + j&h.single
 			col := j - row*h.rowLen
@@ -307,8 +361,12 @@ func (e *classes[T]) events(t float64) bool {
 				}
 			}
 			mv := &h.moves[move]
-			for w := range h.words {
-				e.packed[w] += h.delta[mv.delta+pattern*h.words+w]
+			if h.words == 1 {
+				packed += h.delta[mv.delta+pattern]
+			} else {
+				for w := range h.words {
+					e.packed[w] += h.delta[mv.delta+pattern*h.words+w]
+				}
 			}
 			for i := mv.first; i < mv.energy; i++ {
 				touch := &touches[i]
@@ -316,16 +374,14 @@ func (e *classes[T]) events(t float64) bool {
 				tag := tags[a]
 				v := tables[touch.Table+uint32(tag&mask)]
 				from, to := v>>16&255, v>>24
-				last := n[from] - 1
-				n[from] = last
-				list := lists[from]
-				moved := list[last]
-				place := tag >> width
-				list[place] = moved
+				last := end[from] - 1
+				end[from] = last
+				moved := arena[last]
+				arena[tag>>width] = moved
 				tags[moved] = tags[moved]&mask | tag&^mask
-				at := n[to]
-				lists[to][at] = a
-				n[to] = at + 1
+				at := end[to]
+				arena[at] = a
+				end[to] = at + 1
 				tags[a] = T(at)<<width | T(v&0xffff)
 				over = over || at >= e.bound[to]
 			}
@@ -340,19 +396,22 @@ func (e *classes[T]) events(t float64) bool {
 			}
 			e.jumps++
 			if e.since++; e.since == unpackEvery {
+				e.packed[0] += packed
+				packed = 0
 				e.unpack()
 			}
 		} else {
 			e.nulls++
 		}
 		if over || left == 0 {
-			e.next, e.head, e.left = next, head, left
-			return true
+			break
 		}
-		next += e.src.exponential() * scale
+		next += src.exponential() * scale
 	}
+	e.src = src
+	e.packed[0] += packed
 	e.next, e.head, e.left = next, head, left
-	return false
+	return over || left == 0
 }
 
 // hitLines changes the lines that a move meets, and their sums.

@@ -107,15 +107,15 @@ func (e *classes[T]) Audit() error {
 	g := e.g
 	listed := uint64(0)
 	for k := range g.Rates {
-		listed += uint64(e.n[k])
+		listed += uint64(e.end[k] - e.first[k])
 	}
 	if listed != uint64(len(e.tags)) {
 		return fmt.Errorf("the classes list %d of %d seats", listed, len(e.tags))
 	}
 	for a := range e.tags {
-		k := g.Shapes[g.Places[g.PlaceOf(a)].Shape].Class[e.pattern(a)]
+		k := e.class(a)
 		i := uint64(e.tags[a] >> e.hot.bits)
-		if i >= uint64(e.n[k]) || e.lists[k][i] != uint32(a) {
+		if i < uint64(e.first[k]) || i >= uint64(e.end[k]) || e.arena[i] != uint32(a) {
 			return fmt.Errorf("seat %d is not where its tag says, at %d of class %d", a, i, k)
 		}
 	}

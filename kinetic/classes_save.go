@@ -16,8 +16,8 @@ var ErrSaved = errors.New("not a saved state of this engine and generator")
 const savedClasses = "classes 1\n"
 
 // Save appends what the trajectory depends on: tags, stream, times, pending
-// event, bounds and unused tokens. The lists follow from the tags, the sums
-// from the levels.
+// event, bounds and unused tokens. The arena follows from the tags, the sums from
+// the levels.
 func (e *classes[T]) Save(dst []byte) []byte {
 	start := len(dst)
 	dst = append(dst, savedClasses...)
@@ -37,11 +37,13 @@ func (e *classes[T]) Save(dst []byte) []byte {
 	u64(uint64(e.head))
 	u64(uint64(e.left))
 	for k := range e.g.Rates {
-		dst = le.AppendUint32(dst, e.bound[k])
+		for _, v := range []uint32{e.first[k], e.end[k], e.bound[k], e.room[k]} {
+			dst = le.AppendUint32(dst, v)
+		}
 	}
 	for _, t := range e.queue {
 		dst = le.AppendUint32(dst, t.class)
-		dst = le.AppendUint32(dst, t.index)
+		dst = le.AppendUint32(dst, t.at)
 		u64(t.rest)
 	}
 	for _, l := range e.lines {
@@ -76,11 +78,14 @@ func (e *classes[T]) Restore(src []byte) error {
 	e.jumps, e.nulls = r.u64(), r.u64()
 	e.head, e.left = uint32(r.u64()), int(r.u64())
 	weights := e.draw.weights[:0]
-	for k := range e.g.Rates {
-		e.bound[k] = r.u32()
-		weights = append(weights, float64(e.bound[k])*e.g.Rates[k])
+	top := uint32(0)
+	for k, rate := range e.g.Rates {
+		e.first[k], e.end[k], e.bound[k], e.room[k] = r.u32(), r.u32(), r.u32(), r.u32()
+		weights = append(weights, float64(e.bound[k]-e.first[k])*rate)
+		top = e.room[k]
 	}
-	e.scale = 1 / e.draw.set(weights)
+	e.draw.set(weights)
+	e.scale = 1 / e.draw.sum
 	for i := range e.queue {
 		e.queue[i] = token{r.u32(), r.u32(), r.u64()}
 	}
@@ -90,27 +95,12 @@ func (e *classes[T]) Restore(src []byte) error {
 	for a := range e.tags {
 		e.tags[a] = T(r.u64())
 	}
-	e.relist()
+	e.arena = make([]uint32, top)
+	for a, tag := range e.tags {
+		e.arena[tag>>e.hot.bits] = uint32(a)
+	}
 	e.initSums()
 	return nil
-}
-
-// relist rebuilds the lists from the tags.
-func (e *classes[T]) relist() {
-	g := e.g
-	clear(e.n[:])
-	for a := range e.tags {
-		e.n[g.Shapes[g.Places[g.PlaceOf(a)].Shape].Class[e.pattern(a)]]++
-	}
-	for k := range g.Rates {
-		if need := max(int(e.n[k]), int(e.bound[k])) + e.hot.touches; need > len(e.lists[k]) {
-			e.lists[k] = make([]uint32, need+need/8)
-		}
-	}
-	for a := range e.tags {
-		k := g.Shapes[g.Places[g.PlaceOf(a)].Shape].Class[e.pattern(a)]
-		e.lists[k][e.tags[a]>>e.hot.bits] = uint32(a)
-	}
 }
 
 // fingerprint identifies the tables that a saved state belongs to.
