@@ -121,16 +121,22 @@ func NewClasses(g *Generator, seed [32]byte, unit int, start Start) (Engine, err
 
 // narrow reports whether a tag fits 32 bits.
 func (g *Generator) narrow() bool {
-	return bits.Len64(uint64(share32(g.Addresses())+len(g.Rates)*(spare+maxTouches)))+g.Bits <= 32
+	return bits.Len64(uint64(arenaSize(g.Addresses(), len(g.Rates))))+g.Bits <= 32
 }
 
-// A class's share of the arena is its count and an eighth, and a few more.
-const (
-	spare      = 256
-	maxTouches = 1 << 10
-)
+// arenaSize is the length of the arena for n seats in the given number of
+// classes: every class has room for its count, for an equal part of n/4 more,
+// and for what a stretch and a jump add.
+func arenaSize(n, classes int) int {
+	return n + n/4 + n/256 + classes*(2+int(math.Sqrt(float64(n)))+maxTouches)
+}
 
-func share32(n int) int { return n + n/8 }
+// maxTouches bounds how many seats a jump changes, for estimates.
+const maxTouches = 1 << 10
+
+// slack is how far the bound of a stretch lies above the count n: a few of its
+// fluctuations in a stretch.
+func slack(n uint32) uint32 { return n/256 + 2 + uint32(math.Sqrt(float64(n))) }
 
 // ClassBytes estimates the memory of one class engine.
 func ClassBytes(g *Generator) int64 {
@@ -138,7 +144,7 @@ func ClassBytes(g *Generator) int64 {
 	if g.narrow() {
 		tag = 4
 	}
-	return int64(g.Addresses())*tag + 4*int64(share32(g.Addresses())) + g.tableBytes()
+	return int64(g.Addresses())*tag + 4*int64(arenaSize(g.Addresses(), len(g.Rates))) + g.tableBytes()
 }
 
 func newClasses[T uint32 | uint64](g *Generator, s *state, src source) *classes[T] {
@@ -179,7 +185,7 @@ func (e *classes[T]) layOut(counts [256]int) {
 	at := uint32(0)
 	for k := range e.g.Rates {
 		e.first[k], e.end[k] = at, at
-		at += uint32(share32(counts[k]) + spare + e.hot.touches)
+		at += uint32(counts[k]+len(e.tags)/4/len(e.g.Rates)+e.hot.touches) + slack(uint32(counts[k]))
 		e.room[k] = at
 	}
 	e.arena = make([]uint32, at)
@@ -264,7 +270,6 @@ func (e *classes[T]) unpack() {
 }
 
 // refresh sets new bounds from the present counts and draws the tokens anew.
-// The slack over a count is a few of its own fluctuations in a stretch.
 func (e *classes[T]) refresh() {
 	for !e.setBounds() {
 		e.makeRoom()
@@ -287,7 +292,7 @@ func (e *classes[T]) setBounds() bool {
 	weights := e.draw.weights[:0]
 	for k, rate := range e.g.Rates {
 		n := e.end[k] - e.first[k]
-		n = min(n+n/256+2+uint32(math.Sqrt(float64(n))), uint32(len(e.tags)))
+		n = min(n+slack(n), uint32(len(e.tags)))
 		e.bound[k] = e.first[k] + n
 		if e.bound[k]+uint32(e.hot.touches) > e.room[k] {
 			return false

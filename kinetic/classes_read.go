@@ -8,16 +8,16 @@ import (
 func (e *classes[T]) initSums() {
 	g := e.g
 	e.packed = make([]int64, e.hot.words)
-	e.sums = g.familySums(e.pattern)
+	e.sums = familySums(g, e.tags)
 	e.lineSums = g.lineSums(e.lines)
 }
 
 // familySums sums the eigenvalues of every family over the lattice (q = 2).
-func (g *Generator) familySums(pattern func(a int) uint16) []int64 {
+func familySums[T tag](g *Generator, tags []T) []int64 {
 	sums := make([]int64, len(g.Families))
 	levels := make([]uint8, g.Cells())
 	for f := range sums {
-		g.terms(f, pattern, levels)
+		readTerms(g, f, tags, levels)
 		sums[f] = signSum(levels)
 	}
 	return sums
@@ -91,7 +91,7 @@ func (e *classes[T]) Terms(family, _ int, dst []uint8) {
 		}
 		return
 	}
-	e.g.terms(family, e.pattern, dst)
+	readTerms(e.g, family, e.tags, dst)
 }
 
 func (e *classes[T]) Patterns(_ int, dst []uint16) {
@@ -119,11 +119,11 @@ func (e *classes[T]) Audit() error {
 			return fmt.Errorf("seat %d is not where its tag says, at %d of class %d", a, i, k)
 		}
 	}
-	if err := g.agree(e.pattern); err != nil {
+	if err := agree(g, e.tags); err != nil {
 		return err
 	}
 	e.unpack()
-	if want := g.familySums(e.pattern); !slices.Equal(want, e.sums) {
+	if want := familySums(g, e.tags); !slices.Equal(want, e.sums) {
 		return fmt.Errorf("the sums of the families are %v, the levels add up to %v", e.sums, want)
 	}
 	if want := g.lineSums(e.lines); !slices.Equal(want, e.lineSums) {
@@ -133,10 +133,10 @@ func (e *classes[T]) Audit() error {
 }
 
 // agree checks that all seats around a term hold the same level of it.
-func (g *Generator) agree(pattern func(a int) uint16) error {
+func agree[T tag](g *Generator, tags []T) error {
 	levels := make([]uint8, g.Cells())
 	for f := range g.Families {
-		g.terms(f, pattern, levels)
+		readTerms(g, f, tags, levels)
 		for a := range g.Addresses() {
 			shape := &g.Shapes[g.Places[g.PlaceOf(a)].Shape]
 			for b, slot := range g.Seats[shape.Seat].Slots {
@@ -144,8 +144,8 @@ func (g *Generator) agree(pattern func(a int) uint16) error {
 					continue
 				}
 				t, _ := g.Lattice.Wrap(g.Lattice.Coord(a/len(g.Seats)), slot.Offset)
-				s := pattern(a) >> (b * g.SlotBits) & (1<<g.SlotBits - 1)
-				if want := levels[g.Lattice.Index(t)]; uint16(want) != s {
+				s := tags[a] >> (b * g.SlotBits) & (1<<g.SlotBits - 1)
+				if want := levels[g.Lattice.Index(t)]; T(want) != s {
 					return fmt.Errorf("seat %d holds level %d for the term of %q at cell %v, another seat %d", a, s, g.Families[f].Name, t, want)
 				}
 			}

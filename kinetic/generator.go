@@ -40,6 +40,8 @@ type Generator struct {
 	// Rates is the total rate of a seat by class, increasing; class 0 has rate 0.
 	Rates []float64
 
+	everywhere uint16 // slots that every shape has, whatever its seat
+
 	// Reference gives, per family, the level of each term in the reference
 	// state; nil means 0 everywhere. ReferenceLines does so per line.
 	Reference      [][]uint8

@@ -119,8 +119,10 @@ func (k *compiler) classify() error {
 	distinct := map[float64]bool{0: true}
 	totals := make([][]float64, len(g.Shapes))
 	var rates []float64
+	g.everywhere = 1<<MaxBits - 1
 	for i := range g.Shapes {
 		s := &g.Shapes[i]
+		g.everywhere &= s.Present
 		totals[i] = make([]float64, 1<<g.Bits)
 		for p := range totals[i] {
 			rates = rates[:0]
