@@ -1,0 +1,35 @@
+package main
+
+import "sojourn/analysis"
+
+// findings is everything that a fit has to say, before it is laid out for people
+// or for programs.
+type findings struct {
+	dir        string
+	title      string
+	complete   bool
+	missing    int // units that the study asks for and nobody has run
+	points     []finding
+	comparison analysis.Comparison
+}
+
+// finding is one point of the study: what it is, what was run of it, what was
+// inferred.
+type finding struct {
+	point        int // by first appearance in the study
+	key          string
+	model        string
+	beta         float64
+	size         []int
+	scan         []setting // scanned parameters other than beta and size
+	start        string
+	engine       string
+	units        int
+	trajectories int
+	jumps        float64
+	seconds      float64 // in trajectories, summed over workers; 0 if unknown
+	result       analysis.Result
+}
+
+// setting is a parameter and its value, as printed.
+type setting struct{ name, value string }

@@ -1,0 +1,49 @@
+package main
+
+import (
+	"errors"
+	"fmt"
+
+	"sojourn/observables/archive"
+)
+
+// fit infers from a results directory alone.
+func (c *console) fit(o *options, args []string) error {
+	d, err := archive.Open(args[0])
+	if err != nil {
+		return directoryError(err)
+	}
+	f, err := infer(d, o.partial)
+	if err != nil {
+		return err
+	}
+	c.keepFits(d, f)
+	if o.json {
+		return c.writeJSON(jsonOfFindings(f))
+	}
+	return writeReport(c.stdout, f)
+}
+
+// keepFits writes fits/ and says so if it cannot: what was found is printed all
+// the same.
+func (c *console) keepFits(d *archive.Dir, f *findings) {
+	if err := writeFits(d, f); err != nil {
+		c.warn("the fits could not be written: %v", err)
+	}
+}
+
+// warn tells of something that does not stop the work.
+func (c *console) warn(format string, a ...any) {
+	fmt.Fprintf(c.stderr, "sojourn: warning: %s\n", fmt.Sprintf(format, a...))
+}
+
+// directoryError gives errors that say that the directory is not the one meant
+// the status of a wrong request.
+func directoryError(err error) error {
+	for _, wrong := range []error{archive.ErrOtherStudy, archive.ErrNotResults, archive.ErrFormat, archive.ErrAbsent} {
+		if errors.Is(err, wrong) {
+			return &failure{exitBadRequest, err}
+		}
+	}
+	return err
+}

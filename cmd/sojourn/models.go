@@ -1,0 +1,93 @@
+package main
+
+import (
+	"fmt"
+	"strings"
+
+	"sojourn/kinetic/models"
+)
+
+type modelJSON struct {
+	Name       string          `json:"name"`
+	Summary    string          `json:"summary"`
+	Formula    string          `json:"formula"`
+	Ground     string          `json:"ground_states"`
+	Paper      string          `json:"paper"`
+	MinAxes    int             `json:"min_axes"`
+	MaxAxes    int             `json:"max_axes"`
+	Classical  bool            `json:"classical"`
+	Parameters []parameterJSON `json:"parameters"`
+}
+
+type parameterJSON struct {
+	Name    string  `json:"name"`
+	Default float64 `json:"default"`
+	Doc     string  `json:"doc"`
+}
+
+// models lists the built-in Hamiltonians, or describes one.
+func (c *console) models(o *options, args []string) error {
+	list := models.All()
+	if len(args) > 0 {
+		m, ok := models.Find(args[0])
+		if !ok {
+			names := make([]string, len(list))
+			for i := range list {
+				names[i] = list[i].Name
+			}
+			return badRequest("models: unknown model %q; one of %s", args[0], strings.Join(names, ", "))
+		}
+		list = []models.Model{m}
+	}
+	if o.json {
+		out := struct {
+			Models []modelJSON `json:"models"`
+		}{make([]modelJSON, len(list))}
+		for i, m := range list {
+			out.Models[i] = modelJSON{m.Name, m.Summary, m.Formula, m.Ground, m.Paper, m.MinAxes, m.MaxAxes, m.Classical, []parameterJSON{}}
+			for _, p := range m.Parameters {
+				out.Models[i].Parameters = append(out.Models[i].Parameters, parameterJSON{p.Name, p.Default, p.Doc})
+			}
+		}
+		return c.writeJSON(out)
+	}
+	var b strings.Builder
+	for i, m := range list {
+		if i > 0 {
+			b.WriteByte('\n')
+		}
+		describeModel(&b, m)
+	}
+	if len(args) == 0 {
+		b.WriteString("\nAny other commuting Hamiltonian is written out in the study, as model = \"custom\".\n")
+	}
+	_, err := fmt.Fprint(c.stdout, b.String())
+	return err
+}
+
+func describeModel(b *strings.Builder, m models.Model) {
+	fmt.Fprintf(b, "%s: %s\n", m.Name, m.Summary)
+	axes := fmt.Sprintf("%d", m.MinAxes)
+	if m.MaxAxes > m.MinAxes {
+		axes = fmt.Sprintf("%d to %d", m.MinAxes, m.MaxAxes)
+	}
+	field := func(name, text string) {
+		for i, line := range wrap(text, 82, "") {
+			if i > 0 {
+				name = ""
+			}
+			fmt.Fprintf(b, "  %-12s %s\n", name, line)
+		}
+	}
+	field("terms", m.Formula)
+	field("axes", axes)
+	for i, p := range m.Parameters {
+		name := "parameters"
+		if i > 0 {
+			name = ""
+		}
+		field(name, fmt.Sprintf("%s = %s  %s", p.Name, shortest(p.Default), p.Doc))
+	}
+	field("ground", m.Ground)
+	field("source", m.Paper)
+}

@@ -1,0 +1,426 @@
+package main
+
+import (
+	"context"
+	"fmt"
+	"io"
+	"math"
+	"strings"
+	"time"
+
+	"sojourn/configs"
+	"sojourn/kinetic"
+	"sojourn/kinetic/exact"
+	"sojourn/observables"
+
+	"sojourn/cmd/sojourn/internal/sharing"
+)
+
+type planJSON struct {
+	Study    string          `json:"study"`
+	Title    string          `json:"title,omitempty"`
+	Points   []planPointJSON `json:"points"`
+	Defaults []settingJSON   `json:"defaults"`
+	Jumps    float64         `json:"jumps"`
+	Seconds  float64         `json:"seconds"` // of one processor
+}
+
+type settingJSON struct {
+	Name  string `json:"name"`
+	Value string `json:"value"`
+}
+
+type planPointJSON struct {
+	Point         int            `json:"point"`
+	Key           string         `json:"key"`
+	Model         string         `json:"model"`
+	Beta          float64        `json:"beta"`
+	Length        int            `json:"length"`
+	Size          []int          `json:"size"`
+	Sites         int            `json:"sites"`
+	Terms         map[string]int `json:"terms"`
+	EncodedQubits *int           `json:"encoded_qubits,omitempty"`
+	GroundStates  *float64       `json:"ln_ground_states,omitempty"`
+	Classical     *bool          `json:"classical,omitempty"`
+	Reference     *bool          `json:"reference_is_ground_state,omitempty"`
+	Closed        *int           `json:"closed_classes,omitempty"`
+	Frozen        []frozenJSON   `json:"frozen,omitempty"`
+	Engine        string         `json:"engine"`
+	Why           string         `json:"why"`
+	Units         int            `json:"units"`
+	Samples       int64          `json:"samples"`
+	Lags          []int64        `json:"lags"`
+	Step          float64        `json:"step"`
+	Bytes         int64          `json:"bytes"`      // of memory, one trajectory
+	DiskBytes     int64          `json:"disk_bytes"` // of tables, all trajectories, roughly
+	Jumps         float64        `json:"jumps"`
+	Seconds       float64        `json:"seconds"` // of one processor
+}
+
+type frozenJSON struct {
+	Bath     string `json:"bath"`
+	Frozen   int    `json:"frozen"`
+	Possible int    `json:"possible"`
+}
+
+// planned is a point with what plan finds out about it.
+type planned struct {
+	*prepared
+	ground kinetic.Ground
+	closed *int
+	load   load
+}
+
+// plan checks a study and says what it would do.
+func (c *console) plan(o *options, args []string) error {
+	study, err := configs.Load(args[0])
+	if err != nil {
+		return err
+	}
+	c.notes(study)
+	points, err := prepareAll(study, memory())
+	if err != nil {
+		return err
+	}
+	list := make([]planned, len(points))
+	for i, q := range points {
+		p := planned{prepared: q, closed: q.closedClasses()}
+		if p.ground, err = kinetic.GroundStates(q.config.Spec); err != nil {
+			return badRequest("%s: %w", pointText(q.config), err)
+		}
+		if p.load, err = q.calibrate(); err != nil {
+			return fmt.Errorf("%s: %w", pointText(q.config), err)
+		}
+		list[i] = p
+	}
+	if o.json {
+		return c.writeJSON(jsonOfPlan(study, list))
+	}
+	_, err = io.WriteString(c.stdout, planText(study, list, sharing.Workers(c.getenv)))
+	return err
+}
+
+// load is what the trajectories of a point would take.
+type load struct {
+	jumps, seconds float64
+}
+
+// calibrate runs one trajectory for a fraction of a second and extrapolates.
+// Nothing depends on what it finds.
+func (q *prepared) calibrate() (load, error) {
+	const patience = 100 * time.Millisecond // for settling, and again for recording
+	e, err := q.engine(0)
+	if err != nil {
+		return load{}, err
+	}
+	t := &q.config.Trajectory
+	whole := t.Settle + t.Span
+	// Grow a stretch of time until it takes long enough to be timed.
+	stretch := math.Min(whole, t.Step)
+	begin, at, jumps := time.Now(), 0.0, uint64(0)
+	for {
+		from, before := time.Now(), e.Jumps()
+		at += stretch
+		e.Advance(at)
+		jumps = e.Jumps() - before
+		if time.Since(from) > patience/3 || time.Since(begin) > patience || at >= whole {
+			break
+		}
+		stretch *= 2
+	}
+	rate := float64(jumps) / stretch
+	// Record over a short span, on the lags of the whole one.
+	short := q.plan
+	short.Settle = 0
+	steps := 64.0
+	for {
+		short.Span = math.Min(q.plan.Span, steps*t.Step)
+		fresh, err := q.engine(0)
+		if err != nil {
+			return load{}, err
+		}
+		from := time.Now()
+		if _, err := observables.Record(context.Background(), fresh, q.generator, q.observables, q.config.Pairs, short,
+			observables.Label{Start: string(q.start(0)), Engine: t.EngineName}, nil); err != nil {
+			return load{}, err
+		}
+		gone := time.Since(from)
+		if gone > patience/2 || short.Span >= q.plan.Span {
+			count := float64(t.Count)
+			return load{jumps: rate * whole * count, seconds: gone.Seconds() / short.Span * whole * count}, nil
+		}
+		steps *= 2
+	}
+}
+
+// countable is the largest number of states that plan lists to count closed
+// classes.
+const countable = 1 << 16
+
+// closedClasses counts the sets of states that jumps do not leave, on lattices
+// small enough to enumerate.
+func (q *prepared) closedClasses() *int {
+	if q.sites() > enumerated {
+		return nil
+	}
+	system, err := exact.NewSystem(q.config.Spec)
+	if err != nil {
+		return nil
+	}
+	classes, err := system.ClosedClasses(countable)
+	if err != nil {
+		return nil
+	}
+	n := len(classes)
+	return &n
+}
+
+func (q *prepared) why() string {
+	return fmt.Sprintf("%s; jumps are drawn by class of equal rate", plural(len(q.generator.Rates)-1, "distinct rate"))
+}
+
+// diskBytes is roughly what the tables of all trajectories take.
+func (q *prepared) diskBytes() int64 {
+	const perRow = 30 // bytes, compressed, as found on the bundled studies
+	lags := len(observables.Lags(q.plan.Samples()))
+	rows := len(q.observables)*observables.MomentSegments + len(q.config.Pairs)*observables.PairSegments*(lags+1) +
+		len(q.observables)*len(observables.TransientTimes(q.plan.Settle, q.plan.Span, q.plan.Step)) + 1
+	if q.plan.Covariance != "" {
+		displacements := 1
+		for _, n := range q.generator.Lattice.Lengths() {
+			displacements *= min(n, 2*q.plan.Limit+1)
+			rows += n/2 + 1
+		}
+		rows += displacements/2 + 1
+	}
+	return int64(rows) * perRow * int64(q.config.Trajectory.Count)
+}
+
+func planText(s *configs.Study, list []planned, workers int) string {
+	var b strings.Builder
+	head := s.Name
+	if s.Title != "" {
+		head += ": " + s.Title
+	}
+	var total load
+	units, disk := 0, int64(0)
+	for i := range list {
+		total.jumps += list[i].load.jumps
+		total.seconds += list[i].load.seconds
+		units += list[i].config.Trajectory.Count
+		disk += list[i].diskBytes()
+	}
+	fmt.Fprintf(&b, "%s\n%s, %s, about %s jumps; about %s on one processor, %s on %d here; about %s of tables\n\n",
+		head, plural(len(list), "point"), plural(units, "trajectory"), count(total.jumps), duration(total.seconds),
+		duration(total.seconds/float64(min(workers, units))), workers, bytesOf(disk))
+	t := newSheet("point", "beta", "size", "", "sites", "trajectories", "settle", "span", "samples", "lags", "jumps", "time", "memory").text(2, 3)
+	for i := range list {
+		p := &list[i]
+		x := &p.config.Trajectory
+		var others []string
+		for _, v := range p.config.Scan {
+			if v.Name != "bath.beta" && v.Name != "lattice.size" && !strings.HasPrefix(v.Name, "trajectory.") {
+				others = append(others, v.Name+" "+v.Value)
+			}
+		}
+		t.add(fmt.Sprint(i), shortest(p.config.Spec.Beta), sizeText(p.generator.Lattice.Lengths()), strings.Join(others, ", "),
+			fmt.Sprint(p.sites()), fmt.Sprint(x.Count), shortest(x.Settle), shortest(x.Span), count(float64(p.plan.Samples())),
+			fmt.Sprint(len(observables.Lags(p.plan.Samples()))), count(p.load.jumps), duration(p.load.seconds), bytesOf(p.bytes()))
+	}
+	t.write(&b, "  ")
+	b.WriteString("\n")
+	for _, say := range []func(p *planned) (label, text string){
+		(*planned).saysModel, (*planned).saysTerms, (*planned).saysGround, (*planned).saysReference, (*planned).saysClasses,
+		(*planned).saysFrozen, (*planned).saysEngine, (*planned).saysLags, (*planned).saysObservables,
+	} {
+		writeShared(&b, list, say)
+	}
+	if len(s.Defaults) > 0 {
+		b.WriteString("\nFilled in, since the study does not say:\n")
+		for _, d := range s.Defaults {
+			fmt.Fprintf(&b, "  %s = %s\n", d.Name, d.Value)
+		}
+	}
+	return b.String()
+}
+
+// writeShared prints what points say of themselves, once for all points that
+// say the same.
+func writeShared(b *strings.Builder, list []planned, say func(p *planned) (label, text string)) {
+	var texts []string
+	who := map[string][]int{}
+	label := ""
+	for i := range list {
+		l, text := say(&list[i])
+		if text == "" {
+			continue
+		}
+		label = l
+		if who[text] == nil {
+			texts = append(texts, text)
+		}
+		who[text] = append(who[text], i)
+	}
+	for i, text := range texts {
+		if len(who[text]) < len(list) {
+			text = ranges(who[text]) + ": " + text
+		}
+		if i > 0 {
+			label = ""
+		}
+		writeNote(b, label, text)
+	}
+}
+
+// ranges names points: "point 3", "points 0-2, 5".
+func ranges(points []int) string {
+	var parts []string
+	for i := 0; i < len(points); {
+		j := i
+		for j+1 < len(points) && points[j+1] == points[j]+1 {
+			j++
+		}
+		if j > i {
+			parts = append(parts, fmt.Sprintf("%d-%d", points[i], points[j]))
+		} else {
+			parts = append(parts, fmt.Sprint(points[i]))
+		}
+		i = j + 1
+	}
+	if len(points) == 1 {
+		return "point " + parts[0]
+	}
+	return "points " + strings.Join(parts, ", ")
+}
+
+func (p *planned) saysModel() (string, string) {
+	text := p.config.Model
+	for _, x := range p.config.Parameters {
+		text += fmt.Sprintf(", %s %s", x.Name, x.Value)
+	}
+	for _, b := range p.config.Spec.Bath {
+		text += fmt.Sprintf("; bath %s: %s, rate %s", b.Name, b.Law.Kind, shortest(b.Law.Rate))
+	}
+	return "model", text
+}
+
+func (p *planned) saysTerms() (string, string) {
+	var parts []string
+	for _, f := range p.generator.Families {
+		if f.Energy != nil {
+			parts = append(parts, fmt.Sprintf("%s %d", f.Name, f.Terms))
+		}
+	}
+	return "terms", strings.Join(parts, ", ")
+}
+
+func (p *planned) saysGround() (string, string) {
+	g := &p.ground
+	switch {
+	case !g.Known:
+		return "ground", "states not counted: " + g.Reason
+	case g.Classical && g.Satisfied:
+		return "ground", fmt.Sprintf("log2 of the number of ground states: %s", shortest(g.Encoded))
+	case g.Classical:
+		return "ground", fmt.Sprintf("terms compete, so ground states were not counted; log2 of the states per set of term values: %s", shortest(g.Encoded))
+	case !g.Satisfied:
+		return "ground", fmt.Sprintf("terms compete; each set of term values encodes %s qubits", shortest(g.Encoded))
+	}
+	return "ground", fmt.Sprintf("%s encoded qubits", shortest(g.Encoded))
+}
+
+func (p *planned) saysReference() (string, string) {
+	switch {
+	case !p.ground.Known:
+		return "", ""
+	case p.ground.Reference:
+		return "reference", "the reference state is a ground state"
+	}
+	return "reference", "the reference state is not a ground state"
+}
+
+func (p *planned) saysClasses() (string, string) {
+	switch {
+	case p.closed == nil:
+		return "", ""
+	case *p.closed == 1:
+		return "classes", "the jumps connect all states"
+	}
+	return "classes", fmt.Sprintf("the jumps fall into %d closed classes: no trajectory leaves the one that it starts in", *p.closed)
+}
+
+func (p *planned) saysFrozen() (string, string) {
+	var parts []string
+	for _, f := range p.generator.Frozen() {
+		parts = append(parts, fmt.Sprintf("%s %d of %d", p.config.Spec.Bath[f.Bath].Name, f.Frozen, f.Possible))
+	}
+	if len(parts) == 0 {
+		return "", ""
+	}
+	return "frozen", "jumps that never happen, by bath operator and surroundings: " + strings.Join(parts, ", ")
+}
+
+func (p *planned) saysEngine() (string, string) {
+	return "engine", fmt.Sprintf("%s: %s", p.config.Trajectory.EngineName, p.why())
+}
+
+func (p *planned) saysLags() (string, string) {
+	lags := observables.Lags(p.plan.Samples())
+	if len(lags) == 0 {
+		return "lags", "none"
+	}
+	last := lags[len(lags)-1]
+	return "lags", fmt.Sprintf("%d, dense near 0 and then 8 per octave, to %d steps of %s: a time of %s",
+		len(lags), last, shortest(p.plan.Step), shortest(float64(last)*p.plan.Step))
+}
+
+func (p *planned) saysObservables() (string, string) {
+	names := make([]string, len(p.observables))
+	for i, o := range p.observables {
+		names[i] = o.Name
+	}
+	text := strings.Join(names, ", ")
+	if p.plan.Covariance != "" {
+		text += fmt.Sprintf("; covariance in space of %s every %s", p.plan.Covariance, shortest(p.plan.Every))
+	}
+	return "records", text
+}
+
+func jsonOfPlan(s *configs.Study, list []planned) planJSON {
+	out := planJSON{Study: s.Name, Title: s.Title, Defaults: []settingJSON{}}
+	for _, d := range s.Defaults {
+		out.Defaults = append(out.Defaults, settingJSON{d.Name, d.Value})
+	}
+	for i := range list {
+		p := &list[i]
+		size := p.generator.Lattice.Lengths()
+		j := planPointJSON{
+			Point: i, Key: p.config.Key, Model: p.config.Model, Beta: p.config.Spec.Beta, Length: size[0], Size: size,
+			Sites: p.sites(), Terms: map[string]int{}, Closed: p.closed, Engine: p.config.Trajectory.EngineName, Why: p.why(),
+			Units: p.config.Trajectory.Count, Samples: p.plan.Samples(), Lags: observables.Lags(p.plan.Samples()), Step: p.plan.Step,
+			Bytes: p.bytes(), DiskBytes: p.diskBytes(), Jumps: math.Round(p.load.jumps), Seconds: p.load.seconds,
+		}
+		for _, f := range p.generator.Families {
+			if f.Energy != nil {
+				j.Terms[f.Name] = f.Terms
+			}
+		}
+		if g := p.ground; g.Known {
+			j.Classical, j.Reference = &g.Classical, &g.Reference
+			if n := int(math.Round(g.Encoded)); float64(n) == g.Encoded && !g.Classical {
+				j.EncodedQubits = &n
+			}
+			if g.Satisfied {
+				ln := g.Encoded * math.Log(float64(p.generator.Levels))
+				j.GroundStates = &ln
+			}
+		}
+		for _, f := range p.generator.Frozen() {
+			j.Frozen = append(j.Frozen, frozenJSON{p.config.Spec.Bath[f.Bath].Name, f.Frozen, f.Possible})
+		}
+		out.Points = append(out.Points, j)
+		out.Jumps += j.Jumps
+		out.Seconds += j.Seconds
+	}
+	return out
+}
