@@ -13,13 +13,30 @@ type Class struct {
 	Weight float64 // Gibbs weight among all states
 }
 
-// ClosedClasses lists the closed communicating classes of all states that
-// products of X and Z on the sites reach from the reference state, the class of
-// the reference state first, the others by decreasing weight, then size. By
-// detailed balance every class is closed. More than limit states are refused
-// with a *TooManyStatesError.
-func (s *System) ClosedClasses(limit int) ([]Class, error) {
-	total := s.TotalSize()
+// Scope says among which states closed classes are counted.
+type Scope int
+
+const (
+	// Moved is what the moves of the bath reach from the reference state,
+	// whether or not a rate is 0 there.
+	Moved Scope = iota
+	// Everything is what products of X and Z on the sites reach: all values
+	// that terms and tracked operators can have together.
+	Everything
+)
+
+// ClosedClasses lists the closed communicating classes of the states in scope,
+// the class of the reference state first, the others by decreasing weight, then
+// size. By detailed balance every class is closed. More than limit states are
+// refused with a *TooManyStatesError.
+func (s *System) ClosedClasses(scope Scope, limit int) ([]Class, error) {
+	total, steps := s.TotalSize(), s.elementary()
+	if scope == Moved {
+		total, steps = s.OrbitSize(), nil
+		for _, m := range s.Moves {
+			steps = append(steps, m.Changes)
+		}
+	}
 	if total.Cmp(big.NewInt(int64(limit))) > 0 {
 		return nil, &TooManyStatesError{Limit: limit, Total: total}
 	}
@@ -28,7 +45,6 @@ func (s *System) ClosedClasses(limit int) ([]Class, error) {
 	w := make([]uint64, st.code.words)
 	st.code.pack(w, s.Reference)
 	st.insert(w)
-	steps := s.elementary()
 	for i := 0; i < st.Len(); i++ {
 		for _, c := range steps {
 			copy(w, st.state(i))

@@ -4,6 +4,7 @@ import (
 	"fmt"
 	"math"
 	"math/big"
+	"slices"
 
 	"sojourn/kinetic/bath"
 )
@@ -118,4 +119,19 @@ func (s *System) Frozen() bool {
 		}
 	}
 	return false
+}
+
+// Energies lists, increasing, the energies w that jumps of bath operator b can
+// hand to the bath, whatever the levels around.
+func (s *System) Energies(b int) []*big.Rat {
+	var out []*big.Rat
+	seen := map[*rateTable]bool{}
+	for _, m := range s.Moves {
+		if m.Bath == b && !seen[m.rates] {
+			seen[m.rates] = true
+			out = append(out, m.rates.gain...)
+		}
+	}
+	slices.SortFunc(out, (*big.Rat).Cmp)
+	return slices.CompactFunc(out, func(a, b *big.Rat) bool { return a.Cmp(b) == 0 })
 }

@@ -183,25 +183,40 @@ func (st *States) applyTo(changes []Change, w []uint64) {
 
 // Explore lists the states that jumps of positive rate reach from the
 // reference state, at most limit (which must be below 2^31) of them. Beyond
-// that it returns a *TooManyStatesError. Detailed balance is verified on every
-// rate.
+// that it returns a *TooManyStatesError.
 func (s *System) Explore(limit int) (*States, error) {
 	total := s.OrbitSize()
 	if !s.Frozen() && total.Cmp(big.NewInt(int64(limit))) > 0 {
 		return nil, &TooManyStatesError{Limit: limit, Total: total}
 	}
-	st := &States{}
+	return s.list(limit, total, false)
+}
+
+// Orbit lists the states that the moves reach from the reference state whether
+// or not they have a rate there: a random start draws from these. Where jumps
+// are frozen they may fall into several classes, and Weight then averages over
+// classes that no trajectory connects.
+func (s *System) Orbit(limit int) (*States, error) {
+	total := s.OrbitSize()
+	if total.Cmp(big.NewInt(int64(limit))) > 0 {
+		return nil, &TooManyStatesError{Limit: limit, Total: total}
+	}
+	return s.list(limit, total, true)
+}
+
+// list lists states breadth first, with the rates between them.
+func (s *System) list(limit int, total *big.Int, frozen bool) (*States, error) {
+	st := &States{matrix: &Matrix{}}
 	st.init(s)
 	w := make([]uint64, st.code.words)
 	st.code.pack(w, s.Reference)
 	st.insert(w)
-	m := &Matrix{}
-	m.begin()
+	st.matrix.begin()
 	for i := 0; i < st.Len(); i++ {
 		for k := range s.Moves {
 			move := &s.Moves[k]
 			p := st.patternOf(move, st.state(i))
-			if move.rates.rate[p] == 0 {
+			if move.rates.rate[p] == 0 && !frozen {
 				continue
 			}
 			copy(w, st.state(i))
@@ -210,11 +225,12 @@ func (s *System) Explore(limit int) (*States, error) {
 			if j >= limit {
 				return nil, &TooManyStatesError{Limit: limit, Reached: limit, Total: total}
 			}
-			m.add(j, move.rates.rate[p], move.rates.symmetric[p])
+			if move.rates.rate[p] > 0 {
+				st.matrix.add(j, move.rates.rate[p], move.rates.symmetric[p])
+			}
 		}
-		m.endRow()
+		st.matrix.endRow()
 	}
-	st.matrix = m
 	st.weigh()
 	return st, nil
 }
