@@ -1,45 +1,192 @@
 package kinetic
 
+import (
+	"fmt"
+
+	"sojourn/kinetic/internal/stabilizer"
+	"sojourn/kinetic/pauli"
+)
+
+// Limits of GroundStates and of the reference state: terms and their factors
+// that are listed, and words that elimination touches. Each stands for about a
+// second.
+const (
+	maxRelationFactors = 1 << 24
+	relationBudget     = 1 << 30
+)
+
 // Ground says how degenerate the levels of a Hamiltonian are.
 type Ground struct {
-	// Known is false if the lattice is too large to find out; Reason says so.
+	// Known is false if the lattice is too large to find out; Reason says so,
+	// and the other fields but Classical mean nothing.
 	Known  bool
 	Reason string
 	// Encoded is log_q of the number of states in which every term has a given
-	// value, for values that can occur: the number of encoded qubits (q = 2). It
-	// is a whole number if q is prime.
+	// value, for values that can occur together: the number of encoded qubits
+	// (q = 2). It is a whole number if q is prime.
 	Encoded float64
-	// Classical says that every term is diagonal, so that the states are
+	// Classical says that every term is diagonal, so that states are
 	// configurations and not codewords.
 	Classical bool
 	// Satisfied says that all terms can have their lowest energy at once: there
-	// are then q^Encoded ground states, else Encoded counts the states of a
-	// level only.
+	// are then q^Encoded ground states. Otherwise Encoded counts the states of
+	// a level, and the number of ground states is not known.
 	Satisfied bool
-	// Reference says that the reference state (every term at s = 0, as far as
-	// relations between the terms allow) is a ground state.
+	// Reference says that the reference state is a ground state because every
+	// term has its lowest energy there.
 	Reference bool
 }
 
-// GroundStates counts the states that share the values of all terms with a
-// coupling. It does not check that the terms commute.
+// GroundStates counts the states that share the values of all terms that have
+// a coupling: q to the number of sites less the rank of the terms (D.
+// Gottesman, arXiv:quant-ph/9705052, section 3.2). It fails if it comes upon
+// terms that do not commute, which it does not look for.
 func GroundStates(s Spec) (Ground, error) {
-	return Ground{Reason: "not determined"}, nil
+	s = withoutZeroCouplings(s)
+	g := Ground{Classical: true}
+	for _, f := range s.Families {
+		for _, factor := range f.Operator.Factors() {
+			g.Classical = g.Classical && factor.X == 0
+		}
+	}
+	if n := s.factors(s.Families); n > maxRelationFactors {
+		g.Reason = fmt.Sprintf("not determined: the terms have more than %d factors", maxRelationFactors)
+		return g, nil
+	}
+	r := newRelations(s)
+	lowest := true    // one level of every term is lower than its others
+	reference := true // and it is 0
+	for _, f := range s.Families {
+		level, unique := lowestLevel(f, s.Levels)
+		lowest = lowest && unique
+		reference = reference && level == 0 && unique
+		r.add(f.Operator, f.Cut, level)
+	}
+	want := r.want
+	if !lowest {
+		want = nil
+	}
+	sol, ok := r.system.Solve(want, relationBudget)
+	if !ok {
+		g.Reason = "not determined: too many relations between the terms"
+		return g, nil
+	}
+	if sol.Clash {
+		return g, fmt.Errorf("terms do not commute")
+	}
+	g.Known = true
+	g.Encoded = float64(s.Lattice.Cells()*s.Sites) - sol.Rank
+	g.Satisfied = lowest && sol.Consistent
+	g.Reference = g.Satisfied && reference
+	return g, nil
 }
 
-// ReferenceLevels returns the levels of the reference state: by energy family
-// and cell, or nil if every term is at s = 0. See referenceLevels.
+// ReferenceLevels returns the levels of the reference state by family with a
+// coupling and by cell, or nil if every term is at level 0: see Generator.
 func ReferenceLevels(s Spec) ([][]uint8, error) {
 	families, _, err := referenceLevels(s)
+	if families != nil {
+		families = families[:len(withoutZeroCouplings(s).Families)]
+	}
 	return families, err
 }
 
-// referenceLevels returns the levels of the terms in the reference state, in
-// which every level is 0 as far as the relations between the terms allow (the
-// product of XX, ZZ and YY on two sites is -1). families is indexed like
-// Generator.Families (energy families with nonzero coupling in the order of
-// Spec, then local tracked operators) and by cell; lines like Generator.Lines
-// (extended tracked operators) and by position. Both are nil if all are 0.
-func referenceLevels(s Spec) (families, lines [][]uint8, err error) {
-	return nil, nil, nil
+func withoutZeroCouplings(s Spec) Spec {
+	all := s.Families
+	s.Families = nil
+	for _, f := range all {
+		if f.Coupling != 0 {
+			s.Families = append(s.Families, f)
+		}
+	}
+	return s
+}
+
+// factors returns how many factors the terms of the families have in all.
+func (s Spec) factors(families []FamilySpec) int {
+	n := 0
+	for _, f := range families {
+		n += len(f.Operator.Factors()) * s.Lattice.Cells()
+	}
+	return n
+}
+
+// lowestLevel returns the level of lowest energy and whether it is the only one.
+func lowestLevel(f FamilySpec, q int) (level uint8, unique bool) {
+	shape := f.Shape
+	if shape == nil {
+		shape = []float64{1, -1}
+	}
+	unique = true
+	for s := 1; s < q && s < len(shape); s++ {
+		switch a, b := -f.Coupling*shape[s], -f.Coupling*shape[level]; {
+		case a < b:
+			level, unique = uint8(s), true
+		case a == b:
+			unique = false
+		}
+	}
+	return level, unique
+}
+
+// relations collects the terms of a Spec as rows of a system.
+type relations struct {
+	spec   Spec
+	system *stabilizer.System
+	want   []uint8
+	number []int // site -> number under which the system knows it
+	buffer []SiteFactor
+}
+
+func newRelations(s Spec) *relations {
+	return &relations{spec: s, system: stabilizer.New(s.Levels, s.Lattice.Cells()*s.Sites), number: eliminationNumbers(s)}
+}
+
+// add appends the instances of an operator that exist, each wanted at level.
+func (r *relations) add(o pauli.Operator, cut Cut, level uint8) {
+	for p := range r.spec.Positions(o) {
+		var ok bool
+		if r.buffer, ok = r.spec.AppendTerm(r.buffer[:0], o, cut, r.spec.PositionCell(o, p)); !ok {
+			continue
+		}
+		for _, f := range r.buffer {
+			r.system.Append(r.number[f.Site], f.X, f.Z)
+		}
+		r.system.EndRow()
+		r.want = append(r.want, level)
+	}
+}
+
+// eliminationNumbers numbers the sites layer by layer along the longest axis.
+// A periodic axis is folded flat, from one layer alternately to both sides, so
+// that neighbours around the wrap stay close.
+func eliminationNumbers(s Spec) []int {
+	l := s.Lattice
+	long := 0
+	for a, n := range l.Size {
+		if n > l.Size[long] {
+			long = a
+		}
+	}
+	layer := l.Cells() / l.Size[long]
+	stride := 1
+	for a := range long {
+		stride *= l.Size[a]
+	}
+	out := make([]int, l.Cells()*s.Sites)
+	for cell := range l.Cells() {
+		x := cell / stride % l.Size[long]
+		if !l.Open[long] {
+			if 2*x < l.Size[long] {
+				x = 2 * x
+			} else {
+				x = 2*(l.Size[long]-1-x) + 1
+			}
+		}
+		within := cell/(stride*l.Size[long])*stride + cell%stride
+		for site := range s.Sites {
+			out[cell*s.Sites+site] = (x*layer+within)*s.Sites + site
+		}
+	}
+	return out
 }
