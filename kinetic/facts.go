@@ -10,11 +10,15 @@ func (g *Generator) MaxRate() float64 {
 	return best
 }
 
-// eachRate calls f for every shape, move and pattern that can occur.
+// eachRate calls f for every shape, move and pattern that can occur. Moves that
+// change nothing are left out.
 func (g *Generator) eachRate(f func(s *Shape, move, pattern int, rate float64)) {
 	for i := range g.Shapes {
 		s := &g.Shapes[i]
 		for m := range s.Rate {
+			if !s.acts[m] {
+				continue
+			}
 			for p, r := range s.Rate[m] {
 				if s.possible(g, p) {
 					f(s, m, p, r)

@@ -113,7 +113,8 @@ type Shape struct {
 	Seat    int
 	Present uint16 // bit b set if slot b exists
 	Class   []uint8
-	// Rate[m][p] is the rate of move m at pattern p. Split[p*moves+m] is the
+	// Rate[m][p] is the rate of move m at pattern p, 0 if the move changes
+	// nothing here. Split[p*moves+m] is the
 	// cumulative share of moves 0..m in the total, scaled to 2^64-1.
 	Rate  [][]float64
 	Split []uint64
@@ -122,6 +123,8 @@ type Shape struct {
 	Delta []int8
 	// LineHits[m][l] is how many positions of line l the move changes.
 	LineHits [][]int
+
+	acts []bool // by move: whether it changes any term or line
 }
 
 // Place is a seat in a zone.

@@ -18,7 +18,7 @@ func (k *compiler) shapeOf(c lattice.Offset, seat int) (int, error) {
 		return id, nil
 	}
 	g := k.g
-	s := Shape{Seat: seat, LineHits: hits}
+	s := Shape{Seat: seat, LineHits: hits, acts: actingMoves(n, hits)}
 	for b, ok := range n.exists {
 		if ok {
 			s.Present |= 1 << b
@@ -103,6 +103,9 @@ func (k *compiler) compileMove(s *Shape, n *neighbourhood, m, p int, before []in
 			delta[slot.Family] += int8(2*before[b] - 2*after)
 		}
 	}
+	if !s.acts[m] {
+		return nil // a jump that changes nothing is no jump
+	}
 	move := g.Seats[s.Seat].Moves[m]
 	r, err := k.energies.rate(move.Bath, family, from, to)
 	if err != nil {
@@ -110,6 +113,20 @@ func (k *compiler) compileMove(s *Shape, n *neighbourhood, m, p int, before []in
 	}
 	s.Rate[m][p] = r
 	return nil
+}
+
+// actingMoves tells which moves change any term or line.
+func actingMoves(n *neighbourhood, hits [][]int) []bool {
+	acts := make([]bool, len(hits))
+	for m := range acts {
+		for b, d := range n.change[m] {
+			acts[m] = acts[m] || d != 0 && n.exists[b]
+		}
+		for _, h := range hits[m] {
+			acts[m] = acts[m] || h > 0
+		}
+	}
+	return acts
 }
 
 // classify numbers the distinct total rates in increasing order, 0 first, and
