@@ -1,0 +1,110 @@
+package observables
+
+import (
+	"sojourn/kinetic"
+	"sojourn/kinetic/lattice"
+)
+
+// MaxLocal is the largest number of terms that a Local observable reads.
+const MaxLocal = 4096
+
+// sublattice chooses the cells whose terms a Local observable reads: a grid of
+// at most MaxLocal/len(families) cells for each family, spread evenly. Along an
+// axis with open edges only the middle layer of the existing terms is read:
+// terms at different distances from an edge have different means, and the mean
+// over the lattice of their covariances could not be had from their mean value.
+// All chosen terms of a family are images of each other under translations.
+func sublattice(g *kinetic.Generator, families []int) []chosenTerm {
+	var out []chosenTerm
+	for _, f := range families {
+		loc := newLocator(g, f)
+		lo, hi := extent(g, f)
+		var count lattice.Offset
+		for a, n := range g.Lattice.Size {
+			count[a] = min(n, MaxLocal)
+			if g.Lattice.Open[a] {
+				count[a] = 1
+			}
+		}
+		for product(count) > MaxLocal/len(families) {
+			largest := 0
+			for a := range count {
+				if count[a] > count[largest] {
+					largest = a
+				}
+			}
+			count[largest]--
+		}
+		for i := range product(count) {
+			var at lattice.Offset
+			for a, n := range count {
+				at[a] = i % n * g.Lattice.Size[a] / n
+				if g.Lattice.Open[a] {
+					at[a] = (lo[a] + hi[a]) / 2
+				}
+				i /= n
+			}
+			cell := g.Lattice.Index(at)
+			if s, ok := loc.find(cell); ok {
+				out = append(out, chosenTerm{s, loc, cell})
+			}
+		}
+	}
+	return out
+}
+
+// chosenTerm is one term of a Local observable.
+type chosenTerm struct {
+	spot
+	loc  *locator
+	cell int
+}
+
+func product(o lattice.Offset) int { return o[0] * o[1] * o[2] * o[3] }
+
+// extent returns the smallest and the largest coordinates of a family's terms
+// along open axes, and the whole lattice along periodic ones.
+func extent(g *kinetic.Generator, f int) (lo, hi lattice.Offset) {
+	for a, n := range g.Lattice.Size {
+		hi[a] = n - 1
+	}
+	if g.Lattice.Periodic() || g.Families[f].Terms == g.Cells() {
+		return lo, hi
+	}
+	lo, hi = hi, lo
+	for c := range g.Cells() {
+		if g.TermExists(f, c) {
+			at := g.Lattice.Coord(c)
+			for a := range at {
+				lo[a] = min(lo[a], at[a])
+				hi[a] = max(hi[a], at[a])
+			}
+		}
+	}
+	return lo, hi
+}
+
+// localTrack gathers the chosen terms into a bit vector.
+type localTrack struct{ terms []spot }
+
+func newLocalTrack(chosen []chosenTerm) localTrack {
+	t := localTrack{terms: make([]spot, len(chosen))}
+	for i := range chosen {
+		t.terms[i] = chosen[i].spot
+	}
+	return t
+}
+
+// gather writes the levels into dst, 64 to a word.
+func (t localTrack) gather(dst []uint64, patterns []uint16) {
+	terms := t.terms
+	for w := range dst {
+		n := min(64, len(terms))
+		var word uint64
+		for i, s := range terms[:n] {
+			word |= s.level(patterns) << (i & 63)
+		}
+		dst[w] = word
+		terms = terms[n:]
+	}
+}
