@@ -378,7 +378,7 @@ func (k *compiler) changesEnergy(seat int, change []int) bool {
 
 func (k *compiler) checkKMS() error {
 	for i, op := range k.spec.Bath {
-		if err := bath.CheckKMS(op.Law, k.spec.Beta, k.energies.all()); err != nil {
+		if err := bath.CheckKMS(op.Law, k.spec.Beta, k.energies.of(i)); err != nil {
 			return fmt.Errorf("bath operator %s: %w", k.spec.Bath[i].Name, err)
 		}
 	}

@@ -84,11 +84,11 @@ func (e *energies) rate(law int, family []int, before, after []int) (float64, er
 	return r, nil
 }
 
-// all lists every energy met so far, increasing.
-func (e *energies) all() []*big.Rat {
-	out := make([]*big.Rat, 0, len(e.met))
-	for _, w := range e.met {
-		out = append(out, w)
+// of lists the energies at which a law was asked for a rate, increasing.
+func (e *energies) of(law int) []*big.Rat {
+	out := make([]*big.Rat, 0, len(e.rates[law]))
+	for text := range e.rates[law] {
+		out = append(out, e.met[text])
 	}
 	sort.Slice(out, func(i, j int) bool { return out[i].Cmp(out[j]) < 0 })
 	return out
