@@ -1,72 +1,13 @@
 package kinetic
 
-import (
-	"fmt"
-	"slices"
-)
-
-func (e *classes[T]) initSums() {
-	g := e.g
-	e.packed = make([]int64, e.hot.words)
-	e.sums = familySums(g, e.tags)
-	e.lineSums = g.lineSums(e.lines)
-}
-
-// familySums sums the eigenvalues of every family over the lattice (q = 2).
-func familySums[T tag](g *Generator, tags []T) []int64 {
-	sums := make([]int64, len(g.Families))
-	levels := make([]uint8, g.Cells())
-	for f := range sums {
-		readTerms(g, f, tags, levels)
-		sums[f] = signSum(levels)
-	}
-	return sums
-}
-
-func (g *Generator) lineSums(lines [][]uint8) []int64 {
-	sums := make([]int64, len(lines))
-	for l, levels := range lines {
-		for p, s := range levels {
-			if ex := g.Lines[l].Exists; ex == nil || ex[p] {
-				sums[l] += 1 - 2*int64(s)
-			}
-		}
-	}
-	return sums
-}
-
-// signSum sums (-1)^s over the levels that are not Absent.
-func signSum(levels []uint8) int64 {
-	n := int64(0)
-	for _, s := range levels {
-		if s != Absent {
-			n += 1 - 2*int64(s)
-		}
-	}
-	return n
-}
+import "fmt"
 
 func (e *classes[T]) pattern(a int) uint16 { return uint16(uint32(e.tags[a]) & e.hot.mask) }
 
-func (e *classes[T]) Time() float64 { return e.now }
-func (e *classes[T]) Lanes() int    { return 1 }
-func (e *classes[T]) Jumps() uint64 { return e.jumps }
 
-func (e *classes[T]) Sums(dst []int64) []int64 {
-	e.unpack()
-	return append(append(dst, e.sums...), e.lineSums...)
-}
+func (e *classes[T]) Sums(dst []int64) []int64 { return e.appendSums(dst) }
 
-func (e *classes[T]) Energy(int) float64 {
-	e.unpack()
-	sum := 0.0
-	for f, fam := range e.g.Families {
-		if fam.Energy != nil {
-			sum += fam.Energy[0] * float64(e.sums[f])
-		}
-	}
-	return sum
-}
+func (e *classes[T]) Energy(int) float64 { return e.energy() }
 
 func (e *classes[T]) Census(dst []int64) {
 	g := e.g
@@ -83,12 +24,7 @@ func (e *classes[T]) Census(dst []int64) {
 
 func (e *classes[T]) Terms(family, _ int, dst []uint8) {
 	if l := family - len(e.g.Families); l >= 0 {
-		copy(dst, e.lines[l])
-		for p, ok := range e.g.Lines[l].Exists {
-			if !ok {
-				dst[p] = Absent
-			}
-		}
+		e.readLine(l, dst)
 		return
 	}
 	readTerms(e.g, family, e.tags, dst)
@@ -122,14 +58,7 @@ func (e *classes[T]) Audit() error {
 	if err := agree(g, e.tags); err != nil {
 		return err
 	}
-	e.unpack()
-	if want := familySums(g, e.tags); !slices.Equal(want, e.sums) {
-		return fmt.Errorf("the sums of the families are %v, the levels add up to %v", e.sums, want)
-	}
-	if want := g.lineSums(e.lines); !slices.Equal(want, e.lineSums) {
-		return fmt.Errorf("the sums of the lines are %v, the levels add up to %v", e.lineSums, want)
-	}
-	return nil
+	return auditTally(&e.tally, e.tags)
 }
 
 // agree checks that all seats around a term hold the same level of it.

@@ -85,7 +85,7 @@ func (e *classes[T]) Restore(src []byte) error {
 		top = e.room[k]
 	}
 	e.draw.set(weights)
-	e.scale = 1 / e.draw.sum
+	e.setScale()
 	for i := range e.queue {
 		e.queue[i] = token{r.u32(), r.u32(), r.u64()}
 	}
@@ -99,7 +99,7 @@ func (e *classes[T]) Restore(src []byte) error {
 	for a, tag := range e.tags {
 		e.arena[tag>>e.hot.bits] = uint32(a)
 	}
-	e.initSums()
+	e.tally = newTally(e.g, e.tags, e.lines, e.hot.words)
 	return nil
 }
 

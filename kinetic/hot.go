@@ -1,0 +1,66 @@
+package kinetic
+
+import "math"
+
+// hot is what the inner loop reads of a generator.
+type hot struct {
+	bits    uint
+	mask    uint32
+	rowLen  uint32
+	magic   uint64 // row = high half of address*magic, + address if rowLen is 1
+	single  uint32
+	places  []hotPlace
+	moves   []hotMove
+	splits  [][]uint64
+	delta   []int64 // words per (move of a shape, pattern)
+	words   uint32
+	touches int // most seats that one jump changes
+}
+
+type hotPlace struct {
+	first uint32 // move
+	shape uint16
+	moves uint16
+}
+
+type hotMove struct {
+	first, energy, last uint32
+	firstHit, lastHit   uint32
+	delta               uint32 // of its shape, in delta
+}
+
+func newHot(g *Generator) hot {
+	h := hot{
+		bits:   uint(g.Bits),
+		mask:   1<<g.Bits - 1,
+		rowLen: uint32(len(g.Col)),
+		words:  uint32(max(1, (len(g.Families)+fields-1)/fields)),
+	}
+	if h.rowLen == 1 {
+		h.single = math.MaxUint32
+	} else {
+		h.magic = math.MaxUint64/uint64(h.rowLen) + 1
+	}
+	deltaOf := make([]uint32, len(g.Shapes))
+	for i := range g.Shapes {
+		s := &g.Shapes[i]
+		deltaOf[i] = uint32(len(h.delta))
+		for e := 0; e < len(s.Delta); e += len(g.Families) {
+			h.delta = append(h.delta, pack(s.Delta[e:e+len(g.Families)])...)
+		}
+		h.splits = append(h.splits, s.Split)
+	}
+	for _, p := range g.Places {
+		h.places = append(h.places, hotPlace{p.First, p.Shape, uint16(len(g.Seats[p.Seat].Moves))})
+		moves := len(g.Seats[p.Seat].Moves)
+		for m := range moves {
+			mv := g.Moves[int(p.First)+m]
+			h.touches = max(h.touches, int(mv.Last-mv.First))
+			h.moves = append(h.moves, hotMove{
+				mv.First, mv.Energy, mv.Last, mv.FirstHit, mv.LastHit,
+				deltaOf[p.Shape] + uint32(m)<<g.Bits*h.words,
+			})
+		}
+	}
+	return h
+}

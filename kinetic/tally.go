@@ -1,0 +1,143 @@
+package kinetic
+
+import (
+	"fmt"
+	"slices"
+)
+
+// tally keeps the sums of eigenvalues of families and lines (q = 2) while a
+// trajectory runs. Changes of the families' sums are added in packed words.
+type tally struct {
+	g        *Generator
+	sums     []int64 // by family
+	packed   []int64 // changes of the sums since they were last unpacked
+	since    int     // jumps since then
+	lines    [][]uint8
+	lineSums []int64
+}
+
+// fields is how many sums are packed in a word, and unpackEvery how many jumps
+// may pass before a field could overflow: a jump changes a sum by at most
+// 2*MaxBits.
+const (
+	fields      = 4
+	unpackEvery = 1<<15/(2*MaxBits) - 1
+)
+
+func newTally[T tag](g *Generator, tags []T, lines [][]uint8, words uint32) tally {
+	return tally{
+		g: g, sums: familySums(g, tags), packed: make([]int64, words),
+		lines: lines, lineSums: g.lineSums(lines),
+	}
+}
+
+// pack adds small numbers into words of 16-bit fields; sums of such words are
+// the words of the sums.
+func pack(delta []int8) []int64 {
+	words := make([]int64, (len(delta)+fields-1)/fields)
+	for f, d := range delta {
+		words[f/fields] += int64(d) << (16 * (f % fields))
+	}
+	return words
+}
+
+// unpack moves the packed changes to the sums.
+func (e *tally) unpack() {
+	for w, word := range e.packed {
+		for f := w * fields; f < min((w+1)*fields, len(e.sums)); f++ {
+			d := int64(int16(word))
+			e.sums[f] += d
+			word = (word - d) >> 16
+		}
+		e.packed[w] = 0
+	}
+	e.since = 0
+}
+
+// hitLines changes the lines that a move meets, and their sums.
+func (e *tally) hitLines(mv *hotMove, row, col uint32) {
+	for i := mv.firstHit; i < mv.lastHit; i++ {
+		hit := &e.g.Hits[i]
+		at := hit.Col[col] + hit.Row[row]
+		line := e.lines[hit.Line]
+		if int(at) >= len(line) {
+			continue
+		}
+		line[at] ^= hit.Change
+		e.lineSums[hit.Line] += 2 - 4*int64(line[at])
+	}
+}
+
+// familySums sums the eigenvalues of every family over the lattice (q = 2).
+func familySums[T tag](g *Generator, tags []T) []int64 {
+	sums := make([]int64, len(g.Families))
+	levels := make([]uint8, g.Cells())
+	for f := range sums {
+		readTerms(g, f, tags, levels)
+		sums[f] = signSum(levels)
+	}
+	return sums
+}
+
+func (g *Generator) lineSums(lines [][]uint8) []int64 {
+	sums := make([]int64, len(lines))
+	for l, levels := range lines {
+		for p, s := range levels {
+			if ex := g.Lines[l].Exists; ex == nil || ex[p] {
+				sums[l] += 1 - 2*int64(s)
+			}
+		}
+	}
+	return sums
+}
+
+// signSum sums (-1)^s over the levels that are not Absent.
+func signSum(levels []uint8) int64 {
+	n := int64(0)
+	for _, s := range levels {
+		if s != Absent {
+			n += 1 - 2*int64(s)
+		}
+	}
+	return n
+}
+
+// appendSums appends the sums of families, then of lines.
+func (e *tally) appendSums(dst []int64) []int64 {
+	e.unpack()
+	return append(append(dst, e.sums...), e.lineSums...)
+}
+
+// energy is the energy of families whose couplings do not vary.
+func (e *tally) energy() float64 {
+	e.unpack()
+	sum := 0.0
+	for f, fam := range e.g.Families {
+		if fam.Energy != nil {
+			sum += fam.Energy[0] * float64(e.sums[f])
+		}
+	}
+	return sum
+}
+
+// readLine writes the levels of a line by position.
+func (e *tally) readLine(l int, dst []uint8) {
+	copy(dst, e.lines[l])
+	for p, ok := range e.g.Lines[l].Exists {
+		if !ok {
+			dst[p] = Absent
+		}
+	}
+}
+
+// auditTally checks the sums against the levels.
+func auditTally[T tag](e *tally, tags []T) error {
+	e.unpack()
+	if want := familySums(e.g, tags); !slices.Equal(want, e.sums) {
+		return fmt.Errorf("the sums of the families are %v, the levels add up to %v", e.sums, want)
+	}
+	if want := e.g.lineSums(e.lines); !slices.Equal(want, e.lineSums) {
+		return fmt.Errorf("the sums of the lines are %v, the levels add up to %v", e.lineSums, want)
+	}
+	return nil
+}
