@@ -35,4 +35,11 @@ func Bundled() []Bundle {
 func bundledPath(name string) string { return "bundled/" + name + ".toml" }
 
 // titleOf reads the title alone, so that a list of studies costs no compiling.
-func titleOf(src []byte) string { return "" }
+func titleOf(src []byte) string {
+	d := newDecoder(newSource("", src))
+	root, _ := d.parse()
+	if e := root.get("title"); e != nil {
+		return e.value.text
+	}
+	return ""
+}

@@ -1,0 +1,183 @@
+package configs
+
+import (
+	"errors"
+	"strconv"
+	"strings"
+
+	"sojourn/kinetic"
+	"sojourn/kinetic/bath"
+	"sojourn/kinetic/lattice"
+	"sojourn/kinetic/pauli"
+)
+
+// point reads the study with one combination in place. ok is false if anything
+// is wrong; the faults are with the decoder.
+func (r *reading) point() (p Point, ok bool) {
+	l, hasLattice := r.lattice()
+	var h *hamiltonian
+	hasModel := false
+	sites := 1 << 30 // any site, if the cell is not known
+	if hasLattice {
+		if h, hasModel = r.hamiltonian(l); hasModel {
+			sites = h.Sites
+		}
+	}
+	beta, operators := r.bath(sites)
+	if !hasModel {
+		h = nil
+	}
+	p.Trajectory = r.trajectory(h)
+	p.Covariance = r.covariance(h)
+	var list []requested
+	if hasModel {
+		list = r.observables(h, l, operators)
+		p.Pairs = r.pairs(list)
+		p.Model, p.Parameters = h.model, h.parameters
+		p.Spec = kinetic.Spec{
+			Lattice: l, Levels: h.Levels, Sites: h.Sites, Families: h.Families, Tracked: h.Tracked, Bath: operators, Beta: beta,
+		}
+	}
+	if !r.failed && len(r.d.faults) == 0 {
+		r.compile(&p, h)
+	}
+	r.times(&p.Trajectory, p.MaxRate)
+	if p.Covariance != nil {
+		r.snapshots(p.Covariance, p.Trajectory, p.MaxRate)
+	}
+	if r.failed || len(r.d.faults) > 0 {
+		return p, false
+	}
+	for _, o := range list {
+		p.Observables = append(p.Observables, o.Observable)
+	}
+	p.identify(list, h)
+	return p, true
+}
+
+// compile checks the point by compiling it, on a lattice that is no larger than
+// needed for every kind of neighbourhood to occur, and finds the largest rate.
+func (r *reading) compile(p *Point, h *hamiltonian) {
+	changes := false
+	for _, b := range p.Spec.Bath {
+		if idle(b, h) {
+			r.d.note(r.section("bath").at, "bath", "%s changes no term and no tracked operator", b.Name)
+		} else {
+			changes = true
+		}
+	}
+	if !changes {
+		v := r.section("bath")
+		v.fault("couples", "no bath operator changes any term or tracked operator: nothing would ever happen")
+		return
+	}
+	small := p.Spec
+	small.Lattice = shortened(p.Spec)
+	g, err := kinetic.Compile(small)
+	if err != nil {
+		r.refused(err, h)
+		return
+	}
+	if p.MaxRate = g.MaxRate(); p.MaxRate == 0 {
+		r.section("bath").fault("law", "all rates are 0 here: nothing would ever happen")
+	}
+}
+
+// idle reports whether a bath operator commutes with everything.
+func idle(b kinetic.BathOperator, h *hamiltonian) bool {
+	one := []kinetic.BathOperator{b}
+	for _, f := range h.Families {
+		if f.Coupling != 0 && changedBy(f.Operator, one) {
+			return false
+		}
+	}
+	for _, t := range h.Tracked {
+		if changedBy(t.Operator, one) {
+			return false
+		}
+	}
+	return true
+}
+
+// shortened returns a lattice on which the same operators meet in the same ways
+// as on that of the spec: long axes are cut to a length at which nothing that
+// reaches one end of an operator's neighbourhood reaches the other, parity
+// kept.
+func shortened(s kinetic.Spec) lattice.Lattice {
+	l := s.Lattice
+	operators := []pauli.Operator{}
+	for _, f := range s.Families {
+		operators = append(operators, f.Operator)
+	}
+	for _, t := range s.Tracked {
+		operators = append(operators, t.Operator)
+	}
+	for a, n := range l.Size {
+		low, high := 0, 0
+		for _, op := range operators {
+			for _, f := range op.Factors() {
+				low, high = min(low, f.Exp[a]), max(high, f.Exp[a])
+			}
+		}
+		// A seat feels terms at most one span away, and through them seats one
+		// span further; at open edges what these lack, once more each way.
+		enough := 4*(high-low) + 3
+		if l.Open[a] {
+			enough = 8*(high-low) + 3
+		}
+		if n > enough+1 {
+			l.Size[a] = enough + (n-enough)%2
+		}
+	}
+	return l
+}
+
+// refused reports an error of the compiler at the place that causes it.
+func (r *reading) refused(err error, h *hamiltonian) {
+	v := r.section("hamiltonian")
+	var commute *kinetic.NotCommuting
+	var missing *bath.MissingEnergyError
+	switch {
+	case errors.As(err, &commute):
+		key := "family"
+		if commute.Tracked {
+			key = "tracked"
+		}
+		if at, ok := h.places[commute.B]; ok {
+			v.faultAt(at, key, "%s", err)
+			return
+		}
+		v.fault("model", "%s", err)
+	case errors.As(err, &missing):
+		from := r.section("bath")
+		for _, o := range from.items("operator") {
+			if lawName(o, from) == "table" && o.has("energies") {
+				from = o
+				break
+			}
+		}
+		from.fault("energies", "%s", err)
+	default:
+		v.fault("model", "%s", strings.ReplaceAll(err.Error(), "\n", "; "))
+	}
+}
+
+// settings are the values of the scanned parameters at a point.
+func (r *reading) settings(scanned []string, p *Point) []Setting {
+	var out []Setting
+	for _, name := range scanned {
+		s := Setting{Name: name, Numbers: []float64{r.values[name]}}
+		s.Value = formatNumber(s.Numbers[0])
+		if name == "lattice.size" {
+			s.Numbers = nil
+			var words []string
+			for _, n := range p.Spec.Lattice.Lengths() {
+				s.Numbers = append(s.Numbers, float64(n))
+				words = append(words, strconv.Itoa(n))
+			}
+			s.Value = "[" + strings.Join(words, ", ") + "]"
+		}
+		out = append(out, s)
+	}
+	return out
+}

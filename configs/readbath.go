@@ -1,0 +1,246 @@
+package configs
+
+import (
+	"slices"
+	"strings"
+
+	"sojourn/kinetic"
+	"sojourn/kinetic/bath"
+)
+
+// lawTakes lists the keys of each law besides its name.
+var lawTakes = map[string][]string{
+	"heat-bath":  {"rate"},
+	"metropolis": {"rate"},
+	"power":      {"rate", "exponent", "cutoff"},
+	"ohmic":      {"rate", "cutoff"},
+	"symmetric":  {"rate"},
+	"table":      {"energies", "rates"},
+}
+
+var lawParameters = []string{"rate", "exponent", "cutoff", "energies", "rates"}
+
+// powers are the powers of X and Z of each bath operator.
+var powers = map[string][2]int{"X": {1, 0}, "Y": {1, 1}, "Z": {0, 1}}
+
+// bath reads [bath] and its operators.
+func (r *reading) bath(sites int) (beta float64, operators []kinetic.BathOperator) {
+	v := r.section("bath")
+	beta, ok := v.number("beta")
+	if !ok && !v.has("beta") {
+		v.need("beta", "write the inverse temperature, such as beta = 0.4, or scan it")
+	}
+	beta += 0 // -0 is 0
+	own := v.items("operator")
+	if len(own) == 0 {
+		return beta, v.couples(beta)
+	}
+	if v.has("couples") {
+		v.refuse("couples", "stands beside [[bath.operator]] tables, which say it one by one: leave it out")
+	}
+	taken := map[string]bool{}
+	for _, o := range own {
+		name, ok := o.word("on")
+		if !ok && !o.has("on") {
+			o.need("on", "write X, Y or Z")
+		}
+		o.label += "." + name
+		op := kinetic.BathOperator{Name: name, X: powers[name][0], Z: powers[name][1], Sites: o.sites(sites)}
+		if op.Law, ok = o.law(v, beta); ok {
+			operators = append(operators, op)
+		}
+		for _, key := range lawTakes[lawName(o, v)] {
+			taken[key] = true
+		}
+	}
+	if !slices.ContainsFunc(own, func(o view) bool { return lawName(o, v) == "" }) {
+		v.refuseForeign(taken, "no bath operator here")
+	}
+	return beta, operators
+}
+
+// couples reads the bath operators that share the law of [bath].
+func (v view) couples(beta float64) []kinetic.BathOperator {
+	law, ok := v.law(v, beta)
+	words := []string{"X"}
+	if n, found := v.find("couples"); found {
+		words = nil
+		for _, item := range v.list("couples") {
+			if slices.Contains(words, item.text) {
+				v.faultAt(item.at, "couples", "names %s twice", item.text)
+			}
+			words = append(words, item.text)
+		}
+		ok = ok && !n.bad
+	} else {
+		v.fill("couples", `["X"]`)
+	}
+	if !ok {
+		return nil
+	}
+	var out []kinetic.BathOperator
+	for _, w := range words {
+		out = append(out, kinetic.BathOperator{Name: w, X: powers[w][0], Z: powers[w][1], Law: law})
+	}
+	return out
+}
+
+// sites reads the sites of the cell that an operator acts on.
+func (v view) sites(perCell int) []int {
+	var out []int
+	for _, item := range v.list("sites") {
+		switch site := int(min(item.integer, 1<<31)); {
+		case site >= perCell:
+			v.faultAt(item.at, "sites", "the cell has no site %s; its sites are 0 to %d", item.shown(), perCell-1)
+		case slices.Contains(out, site):
+			v.faultAt(item.at, "sites", "names site %d twice", site)
+		default:
+			out = append(out, site)
+		}
+	}
+	slices.Sort(out)
+	return out
+}
+
+// lawName is the law of an operator: its own, or that of [bath]; "" if that
+// is wrong.
+func lawName(v, base view) string {
+	for _, from := range []view{v, base} {
+		if n, found := from.find("law"); found {
+			if n.bad {
+				return ""
+			}
+			return n.text
+		}
+	}
+	return string(bath.HeatBath)
+}
+
+// law reads the law of an operator; what it leaves out is that of base.
+func (v view) law(base view, beta float64) (bath.Law, bool) {
+	name := lawName(v, base)
+	if name == "" {
+		return bath.Law{}, false
+	}
+	if !v.has("law") && !base.has("law") {
+		base.fillOnce("law", `"heat-bath"`)
+	}
+	takes := map[string]bool{}
+	for _, key := range lawTakes[name] {
+		takes[key] = true
+	}
+	v.refuseForeign(takes, "the law here is "+name)
+	from := func(key string) view {
+		if v.has(key) || !base.has(key) {
+			return v
+		}
+		return base
+	}
+	law := bath.Law{Kind: bath.Kind(name)}
+	ok := true
+	number := func(key string, into *float64) {
+		if n, found := from(key).find(key); found {
+			*into = n.number
+			from(key).took(key, n.number)
+			ok = ok && !n.bad
+		}
+	}
+	if takes["rate"] {
+		law.Rate = 1
+		base.took("rate", 1)
+		if !v.has("rate") && !base.has("rate") {
+			base.fillOnce("rate", "1")
+		}
+		number("rate", &law.Rate)
+	}
+	switch name {
+	case "ohmic":
+		law.Kind, law.Exponent = bath.Power, 1
+	case "power":
+		number("exponent", &law.Exponent)
+		if !from("exponent").has("exponent") {
+			v.need("exponent", "a power law needs its p, at least 1 (law = \"ohmic\" for p = 1)")
+			ok = false
+		}
+	}
+	if takes["cutoff"] {
+		number("cutoff", &law.Cutoff)
+	}
+	if law.Kind == bath.Power && beta == 0 {
+		b := v.r.section("bath")
+		if b.has("beta") {
+			b.fault("beta", "is 0, where a power law has no finite rates: it must be positive")
+			ok = false
+		}
+	}
+	if name == "table" {
+		ok = v.readTable(from("energies"), from("rates"), &law) && ok
+	}
+	if ok {
+		if err := law.Validate(beta); err != nil && !v.r.failed {
+			from("law").fault("law", "%s", strings.ReplaceAll(err.Error(), "\n", "; "))
+			ok = false
+		}
+	}
+	return law, ok
+}
+
+// readTable reads the energies and rates of a table.
+func (v view) readTable(energies, rates view, law *bath.Law) bool {
+	ok := true
+	for _, x := range []struct {
+		from   view
+		key    string
+		remedy string
+		into   *[]float64
+	}{
+		{energies, "energies", "a table needs the energies w >= 0 that occur", &law.Energies},
+		{rates, "rates", "a table needs one rate for each of its energies", &law.Rates},
+	} {
+		if !x.from.has(x.key) {
+			v.need(x.key, x.remedy)
+			ok = false
+		}
+		for _, item := range x.from.list(x.key) {
+			*x.into = append(*x.into, item.number)
+		}
+		ok = ok && len(*x.into) > 0
+	}
+	if !ok {
+		return false
+	}
+	for i, item := range energies.list("energies") {
+		if i > 0 && item.number <= law.Energies[i-1] {
+			energies.faultAt(item.at, "energies", "%s does not follow %s: they must increase", item.shown(), formatNumber(law.Energies[i-1]))
+			ok = false
+		}
+	}
+	if len(law.Energies) != len(law.Rates) {
+		rates.fault("rates", "has %d rates for %d energies: give one for each", len(law.Rates), len(law.Energies))
+		ok = false
+	}
+	return ok
+}
+
+// refuseForeign reports keys of laws other than those in use.
+func (v view) refuseForeign(takes map[string]bool, why string) {
+	for _, key := range lawParameters {
+		if v.has(key) && !takes[key] {
+			var owners []string
+			for _, name := range laws {
+				if slices.Contains(lawTakes[name], key) {
+					owners = append(owners, name)
+				}
+			}
+			v.refuse(key, "is a key of the law %s; %s", listed(owners, "and"), why)
+		}
+	}
+}
+
+// fillOnce records a default that several operators share.
+func (v view) fillOnce(key, value string) {
+	s := Setting{Name: join(v.label, key), Value: value}
+	if !slices.ContainsFunc(v.r.defaults, func(t Setting) bool { return t.Name == s.Name }) {
+		v.r.defaults = append(v.r.defaults, s)
+	}
+}
