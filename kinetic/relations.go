@@ -11,7 +11,7 @@ import (
 // that are listed, and words that elimination touches. Each stands for about a
 // second.
 const (
-	maxRelationFactors = 1 << 24
+	maxRelationFactors = 1 << 23
 	relationBudget     = 1 << 30
 )
 
@@ -49,17 +49,28 @@ func GroundStates(s Spec) (Ground, error) {
 			g.Classical = g.Classical && factor.X == 0
 		}
 	}
-	if n := s.factors(s.Families); n > maxRelationFactors {
-		g.Reason = fmt.Sprintf("not determined: the terms have more than %d factors", maxRelationFactors)
-		return g, nil
-	}
-	r := newRelations(s)
 	lowest := true    // one level of every term is lower than its others
 	reference := true // and it is 0
 	for _, f := range s.Families {
 		level, unique := lowestLevel(f, s.Levels)
 		lowest = lowest && unique
 		reference = reference && level == 0 && unique
+	}
+	sites := float64(s.Lattice.Cells() * s.Sites)
+	if reference {
+		if rank, ok := translationRank(s); ok {
+			g.Known, g.Satisfied, g.Reference = true, true, true
+			g.Encoded = sites - float64(rank)
+			return g, nil
+		}
+	}
+	if n := s.factors(s.Families); n > maxRelationFactors {
+		g.Reason = fmt.Sprintf("not determined: the terms have more than %d factors", maxRelationFactors)
+		return g, nil
+	}
+	r := newRelations(s)
+	for _, f := range s.Families {
+		level, _ := lowestLevel(f, s.Levels)
 		r.add(f.Operator, f.Cut, level)
 	}
 	want := r.want
@@ -75,7 +86,7 @@ func GroundStates(s Spec) (Ground, error) {
 		return g, fmt.Errorf("terms do not commute")
 	}
 	g.Known = true
-	g.Encoded = float64(s.Lattice.Cells()*s.Sites) - sol.Rank
+	g.Encoded = sites - sol.Rank
 	g.Satisfied = lowest && sol.Consistent
 	g.Reference = g.Satisfied && reference
 	return g, nil
