@@ -81,35 +81,47 @@ func (s *state) randomise(g *Generator, src *source) {
 	}
 }
 
-// align turns every spin to the given side.
+// align turns every spin to the given side, each by a move of its own site.
 func (s *state) align(g *Generator, start Start) error {
-	order := -1
-	for f := range g.Families {
-		if g.Families[f].Order {
-			order = f
-		}
-	}
-	if order < 0 {
-		return ErrNoSpins
-	}
 	want := uint8(0)
 	if start == StartDown {
 		want = uint8(g.Levels / 2)
 	}
-	for a := range s.patterns {
-		shape := &g.Shapes[g.Places[g.PlaceOf(a)].Shape]
-		b, m := orderMove(g, shape, order)
-		if b < 0 {
+	spins := false
+	for f := range g.Families {
+		if g.Families[f].Order {
+			spins = true
+			s.alignFamily(g, f, want)
+		}
+	}
+	if !spins {
+		return ErrNoSpins
+	}
+	levels := make([]uint8, g.Cells())
+	for f := range g.Families {
+		if !g.Families[f].Order {
 			continue
 		}
-		for n := 0; s.level(g, a, b) != want; n++ {
-			if n == g.Levels {
-				return fmt.Errorf("the bath operators cannot turn the spins to start %s; use reference or random", start)
+		readTerms(g, f, s.patterns, levels)
+		for c, l := range levels {
+			if l != want && l != Absent {
+				return fmt.Errorf("the bath operators cannot turn the spin of cell %v to start %s; use reference or random", g.Lattice.Coord(c), start)
 			}
-			s.apply(g, a, m)
 		}
 	}
 	return nil
+}
+
+func (s *state) alignFamily(g *Generator, order int, want uint8) {
+	for a := range s.patterns {
+		b, m := orderMove(g, &g.Shapes[g.Places[g.PlaceOf(a)].Shape], order)
+		if b < 0 {
+			continue
+		}
+		for n := 0; n < g.Levels && s.level(g, a, b) != want; n++ {
+			s.apply(g, a, m)
+		}
+	}
 }
 
 // orderMove returns the slot of the seat's own spin and a move that turns it.
