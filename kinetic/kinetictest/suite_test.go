@@ -1,0 +1,9 @@
+package kinetictest_test
+
+import (
+	"testing"
+
+	"sojourn/kinetic/kinetictest"
+)
+
+func TestObvious(t *testing.T) { kinetictest.Suite(t, kinetictest.NewObvious) }
