@@ -62,7 +62,7 @@ func Compile(spec Spec) (*Generator, error) {
 	}
 	k.spec.Families = nil
 	for _, f := range spec.Families {
-		if f.Coupling != 0 {
+		if f.Coupling != 0 || f.Couplings != nil {
 			k.spec.Families = append(k.spec.Families, f)
 		}
 	}
@@ -73,7 +73,8 @@ func Compile(spec Spec) (*Generator, error) {
 		SlotBits: bits.Len(uint(spec.Levels - 1)),
 	}
 	steps := []func() error{
-		k.collect, k.checkCommutation, k.findSeats, k.reference, k.compileShapes, k.classify, k.compilePlaces, k.checkKMS,
+		k.collect, k.checkCommutation, k.findSeats, k.reference, k.collectCouplings,
+		k.compileShapes, k.classify, k.compilePlaces, k.checkKMS,
 	}
 	for _, step := range steps {
 		if err := step(); err != nil {
@@ -91,6 +92,9 @@ func (k *compiler) collect() error {
 		}
 		energy, err := levelEnergies(f, k.spec.Levels)
 		if err != nil {
+			return err
+		}
+		if err := checkDisorder(f, k.spec); err != nil {
 			return err
 		}
 		k.add(family{f.Name, f.Group, f.Operator.Factors(), f.Cut, energy, false})
@@ -200,7 +204,24 @@ func (k *compiler) freeChange(seat Seat, m MoveSpec) []int {
 func (k *compiler) reference() error {
 	var err error
 	k.g.Reference, k.g.ReferenceLines, err = referenceLevels(k.spec)
-	return err
+	if err != nil {
+		return err
+	}
+	for f, spec := range k.spec.Families {
+		if spec.Signs == nil {
+			continue
+		}
+		if k.g.Reference == nil {
+			k.g.Reference = make([][]uint8, len(k.families))
+		}
+		if k.g.Reference[f] == nil {
+			k.g.Reference[f] = make([]uint8, k.g.Cells())
+		}
+		for c, sign := range spec.Signs {
+			k.g.Reference[f][c] ^= sign
+		}
+	}
+	return nil
 }
 
 // reach returns, by axis, how far from an end of the lattice a seat can feel
@@ -377,6 +398,14 @@ func (k *compiler) changesEnergy(seat int, change []int) bool {
 }
 
 func (k *compiler) checkKMS() error {
+	if k.g.Couplings != nil {
+		for _, op := range k.spec.Bath {
+			if op.Law.Kind == bath.Table {
+				return fmt.Errorf("bath operator %s: a table of rates cannot cover couplings that vary in size", op.Name)
+			}
+		}
+		return nil
+	}
 	for i, op := range k.spec.Bath {
 		if err := bath.CheckKMS(op.Law, k.spec.Beta, k.energies.of(i)); err != nil {
 			return fmt.Errorf("bath operator %s: %w", k.spec.Bath[i].Name, err)

@@ -6,6 +6,9 @@ import "math"
 // the shortest time on which anything happens.
 func (g *Generator) MaxRate() float64 {
 	best := 0.0
+	if g.Couplings != nil {
+		return newSeatRates(g).maxMove()
+	}
 	g.eachRate(func(_ *Shape, _, _ int, r float64) { best = math.Max(best, r) })
 	return best
 }

@@ -40,7 +40,12 @@ type Generator struct {
 	// Rates is the total rate of a seat by class, increasing; class 0 has rate 0.
 	Rates []float64
 
-	everywhere uint16 // slots that every shape has, whatever its seat
+	// Couplings is not nil if couplings vary in size from term to term; rates
+	// then depend on the place, and the shapes and classes give none.
+	Couplings *Couplings
+
+	tableShape []uint16 // by table: the shape it is for
+	everywhere uint16   // slots that every shape has, whatever its seat
 
 	// Reference gives, per family, the level of each term in the reference
 	// state; nil means 0 everywhere. ReferenceLines does so per line.
@@ -120,7 +125,8 @@ type Shape struct {
 	Split []uint64
 	// Delta[(m<<Bits|p)*len(Families)+f] is the change of the sum of family f:
 	// of eigenvalues (-1)^s for q = 2.
-	Delta []int8
+	Delta  []int8
+	turned []uint16 // by move: the slots that it changes (q = 2)
 	// LineHits[m][l] is how many positions of line l the move changes.
 	LineHits [][]int
 

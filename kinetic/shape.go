@@ -25,6 +25,14 @@ func (k *compiler) shapeOf(c lattice.Offset, seat int) (int, error) {
 		}
 	}
 	moves := len(g.Seats[seat].Moves)
+	s.turned = make([]uint16, moves)
+	for m, change := range n.change {
+		for b, d := range change {
+			if n.exists[b] && d != 0 {
+				s.turned[m] |= 1 << b
+			}
+		}
+	}
 	patterns := 1 << g.Bits
 	s.Rate = make([][]float64, moves)
 	for m := range s.Rate {
@@ -105,6 +113,9 @@ func (k *compiler) compileMove(s *Shape, n *neighbourhood, m, p int, before []in
 	}
 	if !s.acts[m] {
 		return nil // a jump that changes nothing is no jump
+	}
+	if g.Couplings != nil {
+		return nil
 	}
 	move := g.Seats[s.Seat].Moves[m]
 	r, err := k.energies.rate(move.Bath, family, from, to)
@@ -217,6 +228,7 @@ func (k *compiler) table(shape int, change []int) (uint32, error) {
 		g.Tables = append(g.Tables, uint32(to)|uint32(class[p])<<16|uint32(class[to])<<24)
 	}
 	k.tables[string(key)] = t
+	g.tableShape = append(g.tableShape, uint16(shape))
 	return t, nil
 }
 

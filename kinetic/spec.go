@@ -36,6 +36,14 @@ type FamilySpec struct {
 	Coupling float64   // J; a family with J = 0 is dropped by the compiler
 	Shape    []float64 // for q > 2: E(s) = -J*Shape[s]; nil for q = 2
 	Cut      Cut
+
+	// Signs marks, by cell, the terms whose coupling is -J (1, else 0); nil for
+	// none. The level of such a term is that of -1 times the operator, so that
+	// 0 is still the satisfied one; q = 2 only.
+	Signs []uint8
+	// Couplings gives J term by term, by cell, where its size varies; nil for
+	// Coupling everywhere, which then only says that the family is present.
+	Couplings []float64
 }
 
 // TrackedSpec is a product operator without energy whose value is followed. It

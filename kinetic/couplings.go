@@ -1,0 +1,84 @@
+package kinetic
+
+import (
+	"fmt"
+	"math"
+)
+
+// Couplings holds couplings that vary from term to term (q = 2), as integers:
+// J = J[family][cell]*Unit, to a relative 2^-30 of the largest. Energies are then
+// integers too, and nothing drifts.
+type Couplings struct {
+	Unit float64
+	J    [][]int32 // by family, nil for tracked operators; by cell
+}
+
+func checkDisorder(f FamilySpec, s Spec) error {
+	if f.Signs == nil && f.Couplings == nil {
+		return nil
+	}
+	if s.Levels != 2 {
+		return fmt.Errorf("family %q has random couplings, which need levels = 2", f.Name)
+	}
+	for _, n := range []int{len(f.Signs), len(f.Couplings)} {
+		if n != 0 && n != s.Lattice.Cells() {
+			return fmt.Errorf("family %q gives %d couplings for %d cells", f.Name, n, s.Lattice.Cells())
+		}
+	}
+	for c, j := range f.Couplings {
+		if math.IsNaN(j) || math.IsInf(j, 0) {
+			return fmt.Errorf("family %q: the coupling of cell %d is %v", f.Name, c, j)
+		}
+	}
+	return nil
+}
+
+// collectCouplings rounds varying couplings to integers.
+func (k *compiler) collectCouplings() error {
+	largest := 0.0
+	varying := false
+	for _, f := range k.spec.Families {
+		largest = max(largest, math.Abs(f.Coupling))
+		for _, j := range f.Couplings {
+			largest = max(largest, math.Abs(j))
+		}
+		varying = varying || f.Couplings != nil
+	}
+	if !varying {
+		return nil
+	}
+	c := &Couplings{Unit: largest * 0x1p-30, J: make([][]int32, len(k.families))}
+	for f, spec := range k.spec.Families {
+		c.J[f] = make([]int32, k.g.Cells())
+		for cell := range c.J[f] {
+			j := spec.Coupling
+			if spec.Couplings != nil {
+				j = spec.Couplings[cell]
+			}
+			c.J[f][cell] = int32(math.Round(j / c.Unit))
+		}
+	}
+	k.g.Couplings = c
+	return nil
+}
+
+// seatCouplings lists the couplings of every seat's slots, `slots` to a seat; 0
+// where there is no term or it has no energy.
+func (g *Generator) seatCouplings() (j []int32, slots int) {
+	for _, s := range g.Seats {
+		slots = max(slots, len(s.Slots))
+	}
+	j = make([]int32, g.Addresses()*slots)
+	for a := range g.Addresses() {
+		shape := &g.Shapes[g.Places[g.PlaceOf(a)].Shape]
+		at := g.Lattice.Coord(a / len(g.Seats))
+		for b, slot := range g.Seats[shape.Seat].Slots {
+			if shape.Present>>b&1 == 0 || g.Couplings.J[slot.Family] == nil {
+				continue
+			}
+			t, _ := g.Lattice.Wrap(at, slot.Offset)
+			j[a*slots+b] = g.Couplings.J[slot.Family][g.Lattice.Index(t)]
+		}
+	}
+	return j, slots
+}
