@@ -28,7 +28,9 @@ type Parameter struct {
 	// Follows names the parameter whose value this one takes if it is not
 	// given; Default is then not used.
 	Follows string
-	Doc     string
+	// Axes is the fewest axes of a lattice on which it means something.
+	Axes int
+	Doc  string
 }
 
 // Values are a model's parameters by name.

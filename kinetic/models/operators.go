@@ -57,3 +57,9 @@ func only(sites, site int, part string) []string {
 	out[site] = part
 	return out
 }
+
+// planeName names a plane: "xy".
+func planeName(ab [2]int) string { return axes[ab[0]] + axes[ab[1]] }
+
+// planeSpan is the product over a plane: "plane x y".
+func planeSpan(ab [2]int) string { return "plane " + axes[ab[0]] + " " + axes[ab[1]] }

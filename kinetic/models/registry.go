@@ -8,7 +8,7 @@ import (
 
 // All returns the built-in Hamiltonians in the order in which they are listed.
 func All() []Model {
-	list := []Model{ising, toricCode}
+	list := []Model{ising, squarePlaquette, trianglePlaquette, isingGauge, toricCode, colourCode, xCube, cubicCode, cluster}
 	for i := range list {
 		list[i].Build = list[i].checked
 	}
@@ -33,6 +33,11 @@ func (m Model) checked(l lattice.Lattice, p Values) (Hamiltonian, error) {
 			want = fmt.Sprintf("%d axes", m.MinAxes)
 		}
 		return Hamiltonian{}, fmt.Errorf("the %s model needs a lattice of %s, not %d", m.Name, want, l.Axes)
+	}
+	for _, q := range m.Parameters {
+		if _, given := p[q.Name]; given && q.Axes > l.Axes {
+			return Hamiltonian{}, fmt.Errorf("%s means nothing on a lattice of %d axes; it needs %d", q.Name, l.Axes, q.Axes)
+		}
 	}
 	return m.Build(l, m.Resolve(p))
 }

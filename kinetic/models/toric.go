@@ -5,49 +5,50 @@ import (
 	"sojourn/kinetic/lattice"
 )
 
-// The qubits of the toric code are the edges of the lattice: site a of a cell
-// is the edge that leaves its corner along axis a.
 var toricCode = Model{
 	Name:    "toric-code",
-	Summary: "toric code: qubits on the edges, stars of X around corners, plaquettes of Z around faces",
-	Formula: "H = -star sum_corners XX..X - plaquette sum_faces ZZZZ",
-	Ground:  "2 encoded qubits in 2D, 3 in 3D (periodic)",
+	Summary: "toric code: products of X around what lies below its qubits, of Z around what lies above; qubits on edges, on 4 axes on faces",
+	Formula: "H = -star sum XX..X - plaquette sum ZZ..Z; stars: edges at a corner (faces at an edge), plaquettes: edges of a face (faces of a cube)",
+	Ground:  "2, 3 and 6 encoded qubits on the torus with 2, 3 and 4 axes",
 	Paper:   "A. Yu. Kitaev, Ann. Phys. 303, 2 (2003); E. Dennis, A. Kitaev, A. Landahl, J. Preskill, J. Math. Phys. 43, 4452 (2002)",
 	MinAxes: 2,
-	MaxAxes: 3,
+	MaxAxes: 4,
 	Parameters: []Parameter{
 		{Name: "coupling", Default: 1, Doc: "energy of every term"},
-		{Name: "star", Follows: "coupling", Doc: "energy of a star"},
-		{Name: "plaquette", Follows: "coupling", Doc: "energy of a plaquette"},
+		{Name: "star", Follows: "coupling", Doc: "energy of a product of X"},
+		{Name: "plaquette", Follows: "coupling", Doc: "energy of a product of Z"},
 	},
 	Build: func(l lattice.Lattice, p Values) (Hamiltonian, error) {
-		n := l.Axes
-		h := Hamiltonian{Levels: 2, Sites: n}
-		h.Families = edgePlaquettes(n, p["plaquette"])
-		star := make([]string, n)
-		for a := range star {
-			star[a] = "1 + " + axes[a] + "^-1"
+		if l.Axes == 4 {
+			return faceCode(p), nil
 		}
-		h.Families = append(h.Families, kinetic.FamilySpec{Name: "star", Operator: xs(star...), Coupling: p["star"]})
-		for a := range n {
-			h.Tracked = append(h.Tracked, kinetic.TrackedSpec{
-				Name: "loop-" + axes[a], Operator: zs(only(n, a, "line "+axes[a])...)})
-		}
-		if n == 2 {
-			// X on the edges that a line along x crosses, which lie along y.
-			h.Tracked = append(h.Tracked,
-				kinetic.TrackedSpec{Name: "dual-loop-x", Operator: xs("0", "line x")},
-				kinetic.TrackedSpec{Name: "dual-loop-y", Operator: xs("line y", "0")})
-			return h, nil
-		}
-		for _, ab := range planes(n) {
-			normal := n - ab[0] - ab[1]
-			h.Tracked = append(h.Tracked, kinetic.TrackedSpec{
-				Name:     "membrane-" + axes[ab[0]] + axes[ab[1]],
-				Operator: xs(only(n, normal, "plane "+axes[ab[0]]+" "+axes[ab[1]])...)})
-		}
-		return h, nil
+		return edgeCode(l.Axes, p), nil
 	},
+}
+
+// edgeCode is the toric code with qubits on the edges of a lattice of n = 2 or
+// 3 axes: site a of a cell is the edge that leaves its corner along axis a.
+func edgeCode(n int, p Values) Hamiltonian {
+	star := make([]string, n)
+	for a := range star {
+		star[a] = "1 + " + axes[a] + "^-1"
+	}
+	h := Hamiltonian{Levels: 2, Sites: n, Families: edgePlaquettes(n, p["plaquette"]), Tracked: edgeLoops(n)}
+	h.Families = append(h.Families, kinetic.FamilySpec{Name: "star", Operator: xs(star...), Coupling: p["star"]})
+	if n == 2 {
+		// X on the edges that a line along x crosses, which lie along y.
+		h.Tracked = append(h.Tracked,
+			kinetic.TrackedSpec{Name: "dual-loop-x", Operator: xs("0", "line x")},
+			kinetic.TrackedSpec{Name: "dual-loop-y", Operator: xs("line y", "0")})
+		return h
+	}
+	for _, ab := range planes(n) {
+		// X on the edges that the plane crosses.
+		normal := n - ab[0] - ab[1]
+		h.Tracked = append(h.Tracked, kinetic.TrackedSpec{
+			Name: "membrane-" + planeName(ab), Operator: xs(only(n, normal, planeSpan(ab))...)})
+	}
+	return h
 }
 
 // edgePlaquettes returns the products of Z around the faces of the lattice, for
@@ -62,7 +63,74 @@ func edgePlaquettes(n int, coupling float64) []kinetic.FamilySpec {
 		parts := only(n, a, "1 + "+axes[b])
 		parts[b] = "1 + " + axes[a]
 		out = append(out, kinetic.FamilySpec{
-			Name: "plaquette-" + axes[a] + axes[b], Group: "plaquette", Operator: zs(parts...), Coupling: coupling})
+			Name: "plaquette-" + planeName(ab), Group: "plaquette", Operator: zs(parts...), Coupling: coupling})
 	}
 	return out
+}
+
+// edgeLoops returns the products of Z along the straight lines of edges.
+func edgeLoops(n int) []kinetic.TrackedSpec {
+	var out []kinetic.TrackedSpec
+	for a := range n {
+		out = append(out, kinetic.TrackedSpec{
+			Name: "loop-" + axes[a], Operator: zs(only(n, a, "line "+axes[a])...)})
+	}
+	return out
+}
+
+// faceCode is the toric code with qubits on the faces of a lattice of 4 axes,
+// section X of Dennis, Kitaev, Landahl and Preskill: site i of a cell is the
+// face that leaves its corner in plane i of planes(4).
+func faceCode(p Values) Hamiltonian {
+	all := planes(4)
+	h := Hamiltonian{Levels: 2, Sites: len(all)}
+	for missing := 3; missing >= 0; missing-- {
+		// The cube along the three other axes: its faces in each plane, at the
+		// corner and one step along the third axis.
+		parts := make([]string, len(all))
+		name := ""
+		for a := range 4 {
+			if a != missing {
+				name += axes[a]
+			}
+		}
+		for i, ab := range all {
+			parts[i] = "0"
+			if ab[0] != missing && ab[1] != missing {
+				parts[i] = "1 + " + axes[6-missing-ab[0]-ab[1]]
+			}
+		}
+		h.Families = append(h.Families, kinetic.FamilySpec{
+			Name: "plaquette-" + name, Group: "plaquette", Operator: zs(parts...), Coupling: p["plaquette"]})
+	}
+	for a := range 4 {
+		// The faces at the edge along a: in each plane that contains a, on both
+		// sides along the other axis.
+		parts := make([]string, len(all))
+		for i, ab := range all {
+			parts[i] = "0"
+			if ab[0] == a || ab[1] == a {
+				parts[i] = "1 + " + axes[ab[0]+ab[1]-a] + "^-1"
+			}
+		}
+		h.Families = append(h.Families, kinetic.FamilySpec{
+			Name: "star-" + axes[a], Group: "star", Operator: xs(parts...), Coupling: p["star"]})
+	}
+	for i, ab := range all {
+		h.Tracked = append(h.Tracked, kinetic.TrackedSpec{
+			Name: "membrane-" + planeName(ab), Operator: zs(only(len(all), i, planeSpan(ab))...)})
+	}
+	for i, ab := range all {
+		// X on the faces that meet the complementary plane in a point.
+		var other []int
+		for a := range 4 {
+			if a != ab[0] && a != ab[1] {
+				other = append(other, a)
+			}
+		}
+		cd := [2]int{other[0], other[1]}
+		h.Tracked = append(h.Tracked, kinetic.TrackedSpec{
+			Name: "dual-membrane-" + planeName(cd), Operator: xs(only(len(all), i, planeSpan(cd))...)})
+	}
+	return h
 }
