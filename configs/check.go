@@ -148,6 +148,7 @@ func (d *decoder) ofModel(e *entry, path, model string) bool {
 // checkSection checks the value of a key that names a section.
 func (d *decoder) checkSection(s *Section, e *entry, model string) {
 	isTable := e.value.kind == kindTable
+	d.meant[s.Name] = !isTable && !s.Repeated
 	tables := e.value.kind == kindList && !slices.ContainsFunc(e.value.items, func(n *node) bool { return n.kind != kindTable })
 	switch {
 	case s.Repeated && isTable:

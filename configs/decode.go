@@ -56,7 +56,7 @@ func (d *decoder) readPoints(s *Study, root *node, combinations []combination) {
 		p.Scan = r.settings(s.Scanned, &p)
 		if j, taken := first[p.Key]; taken {
 			at := c.differs(combinations[j])
-			d.fault(at, "scan", "makes the same point as line %d: a point is its physics, times and observables, whatever its count",
+			d.fault(at, c.section, "makes the same point as line %d: a point is its physics, times and observables, whatever its count",
 				d.line(combinations[j].place()))
 			continue
 		}

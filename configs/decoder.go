@@ -11,8 +11,8 @@ type decoder struct {
 	faults []placed
 	notes  []placed
 	seen   map[placeKey]bool
-	// meant holds the names of keys that misspelt or misplaced ones were taken
-	// to mean, so that nothing complains that these are missing.
+	// meant holds the names of keys and tables that misspelt or misplaced ones
+	// were taken to mean, so that nothing complains that these are missing.
 	meant map[string]bool
 }
 

@@ -4,11 +4,11 @@
 //
 // A study goes through five steps, each in its own file:
 //
-//	syntax.go    one pass of the TOML parser; every key and element keeps its place
-//	check.go     keys and kinds of values against the tables of schema.go
-//	scan.go      [scan] and [[case]] unfolded into combinations of values
-//	point*.go    one combination read, defaulted and validated: a Point
-//	physics.go   the canonical form of its physics, digests and key
+//	syntax.go         one pass of the TOML parser; every key and element keeps its place
+//	check.go          keys and types of values against the tables of keys.go
+//	scan.go           [scan] and [[case]] unfolded into combinations of values
+//	read*.go point.go one combination read, defaulted, validated and compiled
+//	physics.go        the canonical form of its physics; digests and key
 //
 // The package knows nothing of engines, files of results or statistics. Every
 // fault is a [Fault] with line, column and key; a study that is wrong in several

@@ -2,6 +2,8 @@ package configs
 
 import (
 	"errors"
+	"fmt"
+	"slices"
 	"strconv"
 	"strings"
 
@@ -39,7 +41,7 @@ func (r *reading) point() (p Point, ok bool) {
 		}
 	}
 	if !r.failed && len(r.d.faults) == 0 {
-		r.compile(&p, h)
+		r.compile(&p, h, list)
 	}
 	r.times(&p.Trajectory, p.MaxRate)
 	if p.Covariance != nil {
@@ -57,7 +59,7 @@ func (r *reading) point() (p Point, ok bool) {
 
 // compile checks the point by compiling it, on a lattice that is no larger than
 // needed for every kind of neighbourhood to occur, and finds the largest rate.
-func (r *reading) compile(p *Point, h *hamiltonian) {
+func (r *reading) compile(p *Point, h *hamiltonian, list []requested) {
 	changes := false
 	for _, b := range p.Spec.Bath {
 		if idle(b, h) {
@@ -75,11 +77,42 @@ func (r *reading) compile(p *Point, h *hamiltonian) {
 	small.Lattice = shortened(p.Spec)
 	g, err := kinetic.Compile(small)
 	if err != nil {
-		r.refused(err, h)
+		r.refused(err, h, p.Spec.Lattice.Axes)
 		return
 	}
+	r.checkTerms(g, p.Covariance, list)
 	if p.MaxRate = g.MaxRate(); p.MaxRate == 0 {
 		r.section("bath").fault("law", "all rates are 0 here: nothing would ever happen")
+	}
+}
+
+// checkTerms refuses observables that have no term on the lattice, as happens
+// where operators are longer than open axes.
+func (r *reading) checkTerms(g *kinetic.Generator, c *Covariance, list []requested) {
+	terms := func(name string) (n int) {
+		for i := range g.Families {
+			if g.Families[i].Name == name || g.Families[i].Group == name {
+				n += g.Families[i].Terms
+			}
+		}
+		for _, l := range g.Lines {
+			if l.Name == name && (l.Exists == nil || slices.Contains(l.Exists, true)) {
+				n += l.Positions
+			}
+		}
+		return n
+	}
+	const none = "%q has no term on this lattice: it does not fit between the open edges"
+	for _, o := range list {
+		switch {
+		case o.Family != "" && terms(o.Family) == 0:
+			o.view.fault("family", none, o.Family)
+		case o.Tracked != "" && o.at != nowhere && terms(o.Tracked) == 0:
+			o.view.fault("tracked", none, o.Tracked)
+		}
+	}
+	if c != nil && terms(c.Of) == 0 {
+		r.section("covariance").fault("of", none, c.Of)
 	}
 }
 
@@ -133,7 +166,7 @@ func shortened(s kinetic.Spec) lattice.Lattice {
 }
 
 // refused reports an error of the compiler at the place that causes it.
-func (r *reading) refused(err error, h *hamiltonian) {
+func (r *reading) refused(err error, h *hamiltonian, axes int) {
 	v := r.section("hamiltonian")
 	var commute *kinetic.NotCommuting
 	var missing *bath.MissingEnergyError
@@ -143,11 +176,12 @@ func (r *reading) refused(err error, h *hamiltonian) {
 		if commute.Tracked {
 			key = "tracked"
 		}
+		text := h.notCommuting(commute, axes)
 		if at, ok := h.places[commute.B]; ok {
-			v.faultAt(at, key, "%s", err)
+			v.faultAt(at, key, "%s", text)
 			return
 		}
-		v.fault("model", "%s", err)
+		v.fault("model", "%s", text)
 	case errors.As(err, &missing):
 		from := r.section("bath")
 		for _, o := range from.items("operator") {
@@ -158,8 +192,39 @@ func (r *reading) refused(err error, h *hamiltonian) {
 		}
 		from.fault("energies", "%s", err)
 	default:
-		v.fault("model", "%s", strings.ReplaceAll(err.Error(), "\n", "; "))
+		const most = 300 // exact energies can have very many digits
+		text := strings.ReplaceAll(err.Error(), "\n", "; ")
+		if len(text) > most {
+			text = text[:most] + "..."
+		}
+		v.fault("model", "%s", text)
 	}
+}
+
+// notCommuting says which operators do not commute, and where.
+func (h *hamiltonian) notCommuting(e *kinetic.NotCommuting, axes int) string {
+	at := e.Offset
+	a, _ := h.named(e.A)
+	b, _ := h.named(e.B)
+	if nearest, ok := pauli.Commute(a, b, h.Levels); !ok && !e.Boundary {
+		at = nearest
+	}
+	offset := make([]string, axes)
+	for i := range offset {
+		offset[i] = strconv.Itoa(at[i])
+	}
+	cut := ""
+	if e.Boundary {
+		cut = " as cut at an open edge"
+	}
+	what := "the families " + e.A + " and " + e.B + " do not commute"
+	switch {
+	case e.A == e.B:
+		what = "the translates of " + e.A + " do not all commute"
+	case e.Tracked:
+		what = "the tracked operator " + e.B + " does not commute with the family " + e.A
+	}
+	return fmt.Sprintf("%s%s: see %s moved by [%s] from %s", what, cut, e.B, strings.Join(offset, ", "), e.A)
 }
 
 // settings are the values of the scanned parameters at a point.

@@ -54,7 +54,7 @@ func (r *reading) bath(sites int) (beta float64, operators []kinetic.BathOperato
 		}
 	}
 	if !slices.ContainsFunc(own, func(o view) bool { return lawName(o, v) == "" }) {
-		v.refuseForeign(taken, "no bath operator here")
+		v.refuseForeign(taken, "no bath operator here has such a law")
 	}
 	return beta, operators
 }
@@ -232,7 +232,7 @@ func (v view) refuseForeign(takes map[string]bool, why string) {
 					owners = append(owners, name)
 				}
 			}
-			v.refuse(key, "is a key of the law %s; %s", listed(owners, "and"), why)
+			v.refuse(key, "is a key of %s; %s", listed(owners, "and"), why)
 		}
 	}
 }

@@ -19,6 +19,17 @@ type hamiltonian struct {
 	places     map[string]int // of the families and tracked operators of a custom model
 }
 
+// named returns the operator of a family or tracked operator.
+func (h *hamiltonian) named(name string) (pauli.Operator, bool) {
+	for _, f := range h.Families {
+		if f.Name == name {
+			return f.Operator, true
+		}
+	}
+	t, ok := h.tracked(name)
+	return t.Operator, ok
+}
+
 // family returns the energy families that a name stands for: one, or a group.
 func (h *hamiltonian) family(name string) []kinetic.FamilySpec {
 	var group []kinetic.FamilySpec
@@ -71,7 +82,7 @@ func (r *reading) hamiltonian(l lattice.Lattice) (h *hamiltonian, ok bool) {
 		return nil, false
 	}
 	if l.Axes < m.MinAxes || l.Axes > m.MaxAxes {
-		r.section("lattice").fault("size", "has %d axes; the model %s is defined on %s", l.Axes, name, axesText(m))
+		r.section("lattice").fault("size", "has %s; the model %s is defined on %s", plural(l.Axes, "axis"), name, axesText(m))
 		return nil, false
 	}
 	values := models.Values{}
@@ -79,6 +90,10 @@ func (r *reading) hamiltonian(l lattice.Lattice) (h *hamiltonian, ok bool) {
 		if n, found := v.find(p.Name); found {
 			values[p.Name] = n.number
 			ok = ok && !n.bad
+			if p.Axes > l.Axes {
+				v.fault(p.Name, "means nothing on a lattice of %d axes; it needs %d", l.Axes, p.Axes)
+				ok = false
+			}
 		}
 	}
 	if !ok {
@@ -87,6 +102,9 @@ func (r *reading) hamiltonian(l lattice.Lattice) (h *hamiltonian, ok bool) {
 	all := m.Resolve(values)
 	h = &hamiltonian{model: name}
 	for _, p := range m.Parameters {
+		if _, given := values[p.Name]; p.Axes > l.Axes && !given {
+			continue // belongs to lattices of more axes
+		}
 		h.parameters = append(h.parameters, Setting{Name: p.Name, Value: formatNumber(all[p.Name]), Numbers: []float64{all[p.Name]}})
 		v.took(p.Name, all[p.Name])
 		if _, given := values[p.Name]; !given {
@@ -132,9 +150,9 @@ func (v view) custom(l lattice.Lattice) (*hamiltonian, bool) {
 	return h, !v.r.failed
 }
 
-// named reads the name of a family or tracked operator, which no other may
+// claim reads the name of a family or tracked operator, which no other may
 // have.
-func (h *hamiltonian) named(v *view) string {
+func (h *hamiltonian) claim(v *view) string {
 	n, found := v.find("name")
 	switch {
 	case !found:
@@ -153,7 +171,7 @@ func (h *hamiltonian) named(v *view) string {
 }
 
 func (h *hamiltonian) addFamily(v view, l lattice.Lattice) {
-	f := kinetic.FamilySpec{Name: h.named(&v)}
+	f := kinetic.FamilySpec{Name: h.claim(&v)}
 	f.Operator = h.operator(v, l)
 	f.Coupling, _ = v.number("coupling")
 	cut := "drop"
@@ -169,7 +187,7 @@ func (h *hamiltonian) addFamily(v view, l lattice.Lattice) {
 }
 
 func (h *hamiltonian) addTracked(v view, l lattice.Lattice) {
-	t := kinetic.TrackedSpec{Name: h.named(&v)}
+	t := kinetic.TrackedSpec{Name: h.claim(&v)}
 	t.Operator = h.operator(v, l)
 	if t.Order = v.flag("order"); t.Order {
 		if first, taken := h.order(); taken {
@@ -224,7 +242,7 @@ func (p *parts) read(key string) []pauli.Polynomial {
 		return nil
 	}
 	if len(items) != p.sites {
-		p.fault(key, "has %d polynomials; give one for each of the %d sites of the cell, \"0\" for none", len(items), p.sites)
+		p.fault(key, "has %s; the cell has %s, and each needs one, \"0\" for none", plural(len(items), "polynomial"), plural(p.sites, "site"))
 		return nil
 	}
 	out := make([]pauli.Polynomial, 0, len(items))

@@ -116,13 +116,17 @@ func (v view) refuse(key, format string, a ...any) {
 
 func (v view) faultAt(at int, key, format string, a ...any) {
 	v.r.failed = true
-	v.r.d.fault(at, join(v.section.Name, key), format, a...)
+	path := v.section.Name
+	if key != "" {
+		path = join(path, key)
+	}
+	v.r.d.fault(at, path, format, a...)
 }
 
 // need reports that a key without default is missing.
 func (v view) need(key, remedy string) {
 	v.r.failed = true
-	if v.r.d.meant[key] {
+	if v.r.d.meant[key] || v.r.d.meant[v.section.Name] {
 		return
 	}
 	if v.table == nil || v.section.Name == "" {

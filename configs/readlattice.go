@@ -24,6 +24,14 @@ func (r *reading) lattice() (l lattice.Lattice, ok bool) {
 	if !ok {
 		return l, false
 	}
+	cells := 1.0
+	for _, n := range size {
+		cells *= float64(n)
+	}
+	if cells > 1<<40 {
+		v.fault("size", "makes more than 2^40 cells")
+		return l, false
+	}
 	l, err := lattice.New(size, open)
 	if err != nil {
 		v.fault("size", "%s", err)
@@ -89,7 +97,7 @@ func (r *reading) open(v view, axes int) ([]bool, bool) {
 			out[a] = n.text == "open"
 		}
 	case len(n.items) != axes:
-		v.fault("boundary", "has %d words for %d axes: give one for each, or a single one for all", len(n.items), axes)
+		v.fault("boundary", "has %s for %s: give one for each, or a single one for all", plural(len(n.items), "word"), plural(axes, "axis"))
 		return nil, false
 	default:
 		for a, item := range n.items {

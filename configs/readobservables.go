@@ -25,6 +25,7 @@ type requested struct {
 	Observable
 	operators []pauli.Operator
 	at        int
+	view      view // nothing if it was not asked for
 }
 
 // scalar reports whether the observable is one number, so that its covariance
@@ -65,13 +66,14 @@ func (r *reading) observables(h *hamiltonian, l lattice.Lattice, bath []kinetic.
 func (r *reading) chosen(h *hamiltonian, bath []kinetic.BathOperator) []requested {
 	out := []requested{{Observable: Observable{Name: kindEnergy, Kind: kindEnergy}, at: nowhere}}
 	if t, ok := h.order(); ok {
-		out = append(out, requested{Observable{Name: kindMagnetization, Kind: kindMagnetization}, []pauli.Operator{t.Operator}, nowhere})
+		out = append(out, requested{
+			Observable: Observable{Name: kindMagnetization, Kind: kindMagnetization}, operators: []pauli.Operator{t.Operator}, at: nowhere})
 	} else {
 		for _, t := range h.Tracked {
 			if t.Operator.Extended() && changedBy(t.Operator, bath) {
 				out = append(out, requested{
-					Observable{Name: kindOperator + "-" + t.Name, Kind: kindOperator, Tracked: t.Name},
-					[]pauli.Operator{t.Operator}, nowhere})
+					Observable: Observable{Name: kindOperator + "-" + t.Name, Kind: kindOperator, Tracked: t.Name},
+					operators:  []pauli.Operator{t.Operator}, at: nowhere})
 			}
 		}
 	}
@@ -84,7 +86,7 @@ func (r *reading) chosen(h *hamiltonian, bath []kinetic.BathOperator) []requeste
 }
 
 func (v view) observable(h *hamiltonian, l lattice.Lattice) (o requested, ok bool) {
-	o.at = v.at
+	o.at, o.view = v.at, v
 	kind, ok := v.word("kind")
 	if !ok {
 		if !v.has("kind") {
@@ -117,7 +119,7 @@ func (v view) observable(h *hamiltonian, l lattice.Lattice) (o requested, ok boo
 	if kind == kindMagnetization {
 		t, has := h.order()
 		if !has {
-			v.fault("kind", "this Hamiltonian has no magnetization; there is %s", h.inventory())
+			v.fault("kind", "this Hamiltonian has no magnetization; it has %s", h.inventory())
 			ok = false
 		}
 		o.operators = []pauli.Operator{t.Operator}
@@ -199,7 +201,7 @@ func (v view) unknownOperator(key string, n *node, h *hamiltonian) {
 		v.fault(key, "there is no %q; did you mean %q?", n.text, near)
 		return
 	}
-	v.fault(key, "there is no %q; there is %s", n.text, h.inventory())
+	v.fault(key, "there is no %q; the Hamiltonian has %s", n.text, h.inventory())
 }
 
 // names lists families, groups and tracked operators.
@@ -246,7 +248,7 @@ func (h *hamiltonian) inventory() string {
 		}
 	}
 	if len(out) == 0 {
-		return "energy alone"
+		return "nothing but its energy"
 	}
 	return strings.Join(out, "; ")
 }
@@ -256,7 +258,7 @@ func (h *hamiltonian) inventory() string {
 func (v view) wavevector(l lattice.Lattice) (k lattice.Offset, ok bool) {
 	items := v.list("wavevector")
 	if len(items) != l.Axes {
-		v.fault("wavevector", "has %d components on a lattice with %d axes", len(items), l.Axes)
+		v.fault("wavevector", "has %s on a lattice with %s", plural(len(items), "component"), plural(l.Axes, "axis"))
 		return k, false
 	}
 	for a, item := range items {

@@ -60,7 +60,7 @@ func (v view) pair(list []requested) (p [2]int, ok bool) {
 	case n.bad:
 		return p, false
 	case len(n.items) != 2:
-		v.fault("of", "has %d labels; a pair has 2", len(n.items))
+		v.fault("of", "has %s; a pair has 2", plural(len(n.items), "label"))
 		return p, false
 	}
 	var labels []string

@@ -59,10 +59,7 @@ func (r *reading) times(t *Trajectory, rate float64) {
 	if math.IsNaN(t.Span) || math.IsNaN(t.Step) {
 		return
 	}
-	key := "step"
-	if !v.has(key) && v.has("span") {
-		key = "span"
-	}
+	key := v.blame("step", "span")
 	samples := math.Round(t.Span / t.Step)
 	switch {
 	case t.Step > t.Span:
@@ -70,7 +67,7 @@ func (r *reading) times(t *Trajectory, rate float64) {
 	case samples < minSamples:
 		v.fault(key, "span / step = %s / %s gives %.0f samples; at least %d are needed",
 			formatNumber(t.Span), formatNumber(t.Step), samples, minSamples)
-	case !((t.Settle+t.Span)/t.Step <= maxSteps):
+	case (t.Settle+t.Span)/t.Step > maxSteps:
 		v.fault(key, "%s is too short a step for times up to %s: they could not be told apart",
 			formatNumber(t.Step), formatNumber(t.Settle+t.Span))
 	}
@@ -90,9 +87,29 @@ func (v view) time(key string, factor, rate float64) float64 {
 		return math.NaN()
 	}
 	x := round4(factor / rate)
+	if math.IsInf(x, 0) || x == 0 {
+		v.need(key, "the largest rate here, "+formatNumber(rate)+", suggests no time")
+		return math.NaN()
+	}
 	v.took(key, x)
 	v.fill(key, formatNumber(x))
 	return x
+}
+
+// blame chooses, of keys that do not fit together, the one to report: the first
+// that is scanned, else the first that is given.
+func (v view) blame(keys ...string) string {
+	for _, key := range keys {
+		if _, ok := v.r.scanned[v.target(key)]; ok {
+			return key
+		}
+	}
+	for _, key := range keys {
+		if v.has(key) {
+			return key
+		}
+	}
+	return keys[0]
 }
 
 // covariance reads [covariance]; nil if there is none.

@@ -21,9 +21,10 @@ type axis struct {
 
 // combination is one value for every scanned parameter of a scan.
 type combination struct {
-	axes   []axis
-	chosen []int // index into values, by axis
-	at     int   // the header of its scan
+	axes    []axis
+	chosen  []int  // index into values, by axis
+	at      int    // the header of its scan
+	section string // "scan" or "case"
 }
 
 // values returns what a reading puts in place of the tables.
@@ -135,7 +136,7 @@ func (d *decoder) product(axes []axis, at int, section string, most int) []combi
 			chosen[j] = rest % len(axes[j].values)
 			rest /= len(axes[j].values)
 		}
-		out[i] = combination{axes, chosen, at}
+		out[i] = combination{axes, chosen, at, section}
 	}
 	return out
 }
@@ -188,6 +189,7 @@ func (s *scanReader) entry(name string, e *entry) {
 	}
 	for _, v := range values {
 		k := key
+		k.Scan = false
 		if key.Type == Integers && v.kind != kindList {
 			k.Type = Integer
 		}
@@ -282,11 +284,11 @@ func (s *scanReader) unknown(name string, parts []string, e *entry) {
 	var known []string
 	for i := range schema {
 		for _, k := range schema[i].Keys {
-			if k.Scan && !schema[i].Repeated {
-				known = append(known, join(schema[i].Name, k.Name))
-			}
-			if k.Short != "" {
+			switch {
+			case k.Short != "":
 				known = append(known, k.Short)
+			case k.Scan && !schema[i].Repeated:
+				known = append(known, join(schema[i].Name, k.Name))
 			}
 		}
 	}

@@ -1,6 +1,9 @@
 package configs
 
-import "strings"
+import (
+	"strconv"
+	"strings"
+)
 
 // nearest returns the candidate that a misspelt word most likely means: equal
 // but for letter case, dashes and underscores, else within one edit, or two for
@@ -67,4 +70,15 @@ func listed(words []string, conjunction string) string {
 		return words[0]
 	}
 	return strings.Join(words[:len(words)-1], ", ") + " " + conjunction + " " + words[len(words)-1]
+}
+
+// plural writes a number of things.
+func plural(n int, what string) string {
+	switch {
+	case n == 1:
+		return "1 " + what
+	case what == "axis":
+		return strconv.Itoa(n) + " axes"
+	}
+	return strconv.Itoa(n) + " " + what + "s"
 }

@@ -52,7 +52,7 @@ func (d *decoder) parse() (root *node, complete bool) {
 			// A slice of the text: what it lacks in capacity is its offset.
 			at = min(max(0, cap(text)-cap(pe.Highlight)), len(text)) + shift
 		}
-		d.fault(at, "", "the file is not valid TOML: %s", err)
+		d.invalid(at, strings.Join(b.path, "."), err)
 		return b.root, false
 	}
 	return b.root, true

@@ -96,7 +96,7 @@ func (d *decoder) unknownWord(k Key, n *node, path string) {
 	case near != "":
 		d.wrong(n, path, "%s is not known: write %q", n.shown(), near)
 	default:
-		d.wrong(n, path, "%s is not known; it is one of %s", n.shown(), have)
+		d.wrong(n, path, "%s is not known; it must be %s", n.shown(), have)
 	}
 }
 
