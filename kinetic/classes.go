@@ -26,6 +26,9 @@ func NewClasses(g *Generator, seed [32]byte, unit int, start Start) (Engine, err
 	if g.Levels != 2 {
 		return nil, fmt.Errorf("the class engine runs 2 levels, not %d", g.Levels)
 	}
+	if g.Couplings != nil {
+		return nil, errVaryingCouplings
+	}
 	if g.Addresses() > math.MaxInt32 {
 		return nil, fmt.Errorf("the lattice has %d sites; the class engine runs at most %d", g.Addresses(), math.MaxInt32)
 	}

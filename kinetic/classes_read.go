@@ -8,14 +8,16 @@ func (e *classes[T]) Sums(dst []int64) []int64 { return e.appendSums(dst) }
 
 func (e *classes[T]) Energy(int) float64 { return e.energy() }
 
-func (e *classes[T]) Census(dst []int64) {
-	g := e.g
-	mask := int(e.hot.mask)
+func (e *classes[T]) Census(dst []int64) { census(e.g, e.tags, dst) }
+
+// census counts seats by shape and pattern.
+func census[T tag](g *Generator, tags []T, dst []int64) {
+	mask := T(1)<<g.Bits - 1
 	a := 0
 	for _, first := range g.Row {
 		for _, col := range g.Col {
-			shape := int(e.hot.places[first+uint32(col)].shape)
-			dst[shape<<g.Bits|int(e.tags[a])&mask]++
+			shape := int(g.Places[first+uint32(col)].Shape)
+			dst[shape<<g.Bits|int(tags[a]&mask)]++
 			a++
 		}
 	}

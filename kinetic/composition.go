@@ -161,9 +161,7 @@ func (e *composition) Advance(t float64) {
 		panic("kinetic: Advance to an earlier time")
 	}
 	for e.next <= t {
-		k := e.queue[e.head%window]
-		e.redraw()
-		over := e.attempt(k)
+		over := e.attempt(e.redraw())
 		e.left--
 		at := e.next
 		if over || e.left == 0 {
@@ -172,14 +170,6 @@ func (e *composition) Advance(t float64) {
 		e.next = at + e.src.exponential()*e.scale
 	}
 	e.now = t
-}
-
-// redraw replaces the token at the head of the queue, and moves on.
-func (e *composition) redraw() {
-	k := e.draw.draw(e.src.next())
-	i, rest := e.src.below(uint64(e.bound[k&255] - e.first[k&255]))
-	e.queue[e.head%window] = token{k, e.first[k&255] + uint32(i), rest}
-	e.head++
 }
 
 // attempt executes the jump of a token, unless it is a null event; it returns

@@ -1,17 +1,21 @@
 package kinetic
 
 import (
+	"errors"
 	"fmt"
 	"math"
 )
 
 // Couplings holds couplings that vary from term to term (q = 2), as integers:
-// J = J[family][cell]*Unit, to a relative 2^-30 of the largest. Energies are then
-// integers too, and nothing drifts.
+// J = J[family][cell]*Unit. The unit is a power of ten if all couplings are
+// decimals that fit, and the integers are then exact; else they are rounded to
+// 2^-30 of the largest. Energies are integers too, and nothing drifts.
 type Couplings struct {
 	Unit float64
 	J    [][]int32 // by family, nil for tracked operators; by cell
 }
+
+var errVaryingCouplings = errors.New("couplings that vary in size run on the composition engine; use engine = \"composition\" or \"auto\"")
 
 func checkDisorder(f FamilySpec, s Spec) error {
 	if f.Signs == nil && f.Couplings == nil {
@@ -47,19 +51,51 @@ func (k *compiler) collectCouplings() error {
 	if !varying {
 		return nil
 	}
-	c := &Couplings{Unit: largest * 0x1p-30, J: make([][]int32, len(k.families))}
+	c := &Couplings{J: make([][]int32, len(k.families))}
+	values := make([][]float64, len(k.spec.Families))
 	for f, spec := range k.spec.Families {
-		c.J[f] = make([]int32, k.g.Cells())
-		for cell := range c.J[f] {
-			j := spec.Coupling
-			if spec.Couplings != nil {
-				j = spec.Couplings[cell]
+		values[f] = spec.Couplings
+		if values[f] == nil {
+			values[f] = make([]float64, k.g.Cells())
+			for cell := range values[f] {
+				values[f][cell] = spec.Coupling
 			}
-			c.J[f][cell] = int32(math.Round(j / c.Unit))
+		}
+	}
+	scale := decimalScale(values, largest)
+	c.Unit = 1 / scale
+	for f := range values {
+		c.J[f] = make([]int32, len(values[f]))
+		for cell, j := range values[f] {
+			c.J[f][cell] = int32(math.Round(j * scale))
 		}
 	}
 	k.g.Couplings = c
 	return nil
+}
+
+// decimalScale returns the smallest power of ten that makes all values whole, or
+// the scale that brings the largest to 2^30.
+func decimalScale(values [][]float64, largest float64) float64 {
+	for scale := 1.0; largest*scale < 1<<30; scale *= 10 {
+		if allWhole(values, scale) {
+			return scale
+		}
+	}
+	return 1 << 30 / largest
+}
+
+// allWhole reports whether every value is the double nearest to a whole number
+// over scale.
+func allWhole(values [][]float64, scale float64) bool {
+	for _, list := range values {
+		for _, v := range list {
+			if math.Round(v*scale)/scale != v {
+				return false
+			}
+		}
+	}
+	return true
 }
 
 // seatCouplings lists the couplings of every seat's slots, `slots` to a seat; 0

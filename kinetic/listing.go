@@ -120,6 +120,17 @@ func (l *listing) newStretch() {
 	}
 }
 
+// redraw takes the token at the head of the queue and puts a new one in its
+// place.
+func (l *listing) redraw() token {
+	tk := l.queue[l.head%window]
+	k := l.draw.draw(l.src.next())
+	i, rest := l.src.below(uint64(l.bound[k&255] - l.first[k&255]))
+	l.queue[l.head%window] = token{k, l.first[k&255] + uint32(i), rest}
+	l.head++
+	return tk
+}
+
 func (l *listing) setScale() {
 	l.scale = math.Inf(1)
 	if l.draw.sum > 0 {

@@ -205,6 +205,10 @@ func (g *Generator) fingerprint() [32]byte {
 		buf = append(buf, levels...)
 	}
 	if g.Couplings != nil {
+		buf = le.AppendUint64(buf, math.Float64bits(g.Spec.Beta))
+		for _, b := range g.Spec.Bath {
+			buf = b.Law.AppendCanonical(buf)
+		}
 		buf = le.AppendUint64(buf, math.Float64bits(g.Couplings.Unit))
 		for _, j := range g.Couplings.J {
 			for _, v := range j {

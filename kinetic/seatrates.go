@@ -20,7 +20,8 @@ type seatRates struct {
 }
 
 type turning struct {
-	law   bath.Law
+	acts  bool // it changes something
+	law   *bath.Law
 	slots []uint8
 }
 
@@ -36,7 +37,7 @@ func newSeatRates(g *Generator) *seatRates {
 		seen[p.Shape] = true
 		shape := &g.Shapes[p.Shape]
 		for m, move := range g.Seats[p.Seat].Moves {
-			t := turning{law: g.Spec.Bath[move.Bath].Law}
+			t := turning{acts: shape.acts[m], law: &g.Spec.Bath[move.Bath].Law}
 			for b := range g.Seats[p.Seat].Slots {
 				if shape.turned[m]>>b&1 != 0 && g.Families[g.Seats[p.Seat].Slots[b].Family].Energy != nil {
 					t.slots = append(t.slots, uint8(b))
@@ -61,6 +62,9 @@ func (r *seatRates) energy(a int, t *turning, pattern uint32) int64 {
 
 // move is the rate of one move, and the energy it hands to the bath.
 func (r *seatRates) move(a int, t *turning, pattern uint32) (rate float64, w int64) {
+	if !t.acts {
+		return 0, 0
+	}
 	w = r.energy(a, t, pattern)
 	return t.law.Float(float64(w)*r.unit, r.beta), w
 }
@@ -83,7 +87,10 @@ func (r *seatRates) bound(a int, t *turning) float64 {
 		j := int64(r.j[a*r.slots+int(b)])
 		w += max(j, -j)
 	}
-	law := t.law
+	if !t.acts {
+		return 0
+	}
+	law := *t.law
 	law.Cutoff = 0
 	return law.Float(float64(w)*r.unit, r.beta)
 }

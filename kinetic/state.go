@@ -7,19 +7,26 @@ import (
 	"sojourn/kinetic/lattice"
 )
 
-// state is a configuration: the pattern of every seat, and the levels of the
+// stateOf is a configuration: the pattern of every seat, and the levels of the
 // lines. Engines build it, then take from it what they keep.
-type state struct {
-	patterns []uint16
+type stateOf[P tag] struct {
+	patterns []P
 	lines    [][]uint8
 }
+
+// state holds patterns of any width.
+type state = stateOf[uint16]
 
 // ErrNoSpins says that a start needs spins and the model has none.
 var ErrNoSpins = errors.New("starts up and down need a model with spins; use reference or random")
 
 // newState returns the state in which a trajectory begins.
 func newState(g *Generator, start Start, src *source) (*state, error) {
-	s := &state{patterns: make([]uint16, g.Addresses())}
+	return newStateOf[uint16](g, start, src)
+}
+
+func newStateOf[P tag](g *Generator, start Start, src *source) (*stateOf[P], error) {
+	s := &stateOf[P]{patterns: make([]P, g.Addresses())}
 	for l, line := range g.Lines {
 		s.lines = append(s.lines, make([]uint8, line.Positions))
 		if g.ReferenceLines != nil {
@@ -41,7 +48,7 @@ func newState(g *Generator, start Start, src *source) (*state, error) {
 	return s, nil
 }
 
-func (s *state) setReference(g *Generator) {
+func (s *stateOf[P]) setReference(g *Generator) {
 	for a := range s.patterns {
 		c := g.Lattice.Coord(a / len(g.Seats))
 		shape := &g.Shapes[g.Places[g.PlaceOf(a)].Shape]
@@ -50,14 +57,14 @@ func (s *state) setReference(g *Generator) {
 				continue
 			}
 			t, _ := g.Lattice.Wrap(c, slot.Offset)
-			s.patterns[a] |= uint16(g.Reference[slot.Family][g.Lattice.Index(t)]) << (b * g.SlotBits)
+			s.patterns[a] |= P(g.Reference[slot.Family][g.Lattice.Index(t)]) << (b * g.SlotBits)
 		}
 	}
 }
 
 // randomise applies every move a random number of times, which makes every
 // state that the moves connect to the reference equally likely.
-func (s *state) randomise(g *Generator, src *source) {
+func (s *stateOf[P]) randomise(g *Generator, src *source) {
 	bits, left := uint64(0), 0
 	for a := range s.patterns {
 		p := g.Places[g.PlaceOf(a)]
@@ -82,7 +89,7 @@ func (s *state) randomise(g *Generator, src *source) {
 }
 
 // align turns every spin to the given side, each by a move of its own site.
-func (s *state) align(g *Generator, start Start) error {
+func (s *stateOf[P]) align(g *Generator, start Start) error {
 	want := uint8(0)
 	if start == StartDown {
 		want = uint8(g.Levels / 2)
@@ -112,7 +119,7 @@ func (s *state) align(g *Generator, start Start) error {
 	return nil
 }
 
-func (s *state) alignFamily(g *Generator, order int, want uint8) {
+func (s *stateOf[P]) alignFamily(g *Generator, order int, want uint8) {
 	for a := range s.patterns {
 		b, m := orderMove(g, &g.Shapes[g.Places[g.PlaceOf(a)].Shape], order)
 		if b < 0 {
@@ -139,16 +146,16 @@ func orderMove(g *Generator, shape *Shape, order int) (slot, move int) {
 	return -1, -1
 }
 
-func (s *state) level(g *Generator, a, slot int) uint8 {
+func (s *stateOf[P]) level(g *Generator, a, slot int) uint8 {
 	return uint8(s.patterns[a] >> (slot * g.SlotBits) & (1<<g.SlotBits - 1))
 }
 
 // apply executes move m of the seat at address a.
-func (s *state) apply(g *Generator, a, m int) {
+func (s *stateOf[P]) apply(g *Generator, a, m int) {
 	mv := &g.Moves[g.Places[g.PlaceOf(a)].First+uint32(m)]
 	for _, t := range g.Touch[mv.First:mv.Last] {
 		p := &s.patterns[a+int(t.Delta)]
-		*p = uint16(g.Tables[t.Table+uint32(*p)])
+		*p = P(g.Tables[t.Table+uint32(*p)])
 	}
 	row, col := a/len(g.Col), a%len(g.Col)
 	for i := mv.FirstHit; i < mv.LastHit; i++ {

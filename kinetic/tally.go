@@ -71,12 +71,33 @@ func (e *tally) hitLines(mv *hotMove, row, col uint32) {
 // familySums sums the eigenvalues of every family over the lattice (q = 2).
 func familySums[T tag](g *Generator, tags []T) []int64 {
 	sums := make([]int64, len(g.Families))
-	levels := make([]uint8, g.Cells())
+	var levels []uint8
 	for f := range sums {
+		if n, ok := countSlot(g, f, tags); ok {
+			sums[f] = int64(g.Cells()) - 2*n
+			continue
+		}
+		if levels == nil {
+			levels = make([]uint8, g.Cells())
+		}
 		readTerms(g, f, tags, levels)
 		sums[f] = signSum(levels)
 	}
 	return sums
+}
+
+// countSlot counts the unsatisfied terms of a family in place, where one slot
+// shows them all.
+func countSlot[T tag](g *Generator, f int, tags []T) (n int64, ok bool) {
+	fam := &g.Families[f]
+	if len(fam.Slots) == 0 || fam.Terms != g.Cells() || g.everywhere>>fam.Slots[0].Slot&1 == 0 {
+		return 0, false
+	}
+	ref := fam.Slots[0]
+	for a := ref.Seat; a < len(tags); a += len(g.Seats) {
+		n += int64(tags[a] >> ref.Slot & 1)
+	}
+	return n, true
 }
 
 func (g *Generator) lineSums(lines [][]uint8) []int64 {

@@ -3,7 +3,9 @@ package kinetic
 import "sojourn/kinetic/lattice"
 
 // tag is what an engine keeps per seat, with the pattern in its low bits.
-type tag interface{ ~uint16 | ~uint32 | ~uint64 }
+type tag interface {
+	~uint8 | ~uint16 | ~uint32 | ~uint64
+}
 
 // readTerms writes the levels of a family's terms by cell, Absent where there
 // is none, from the patterns in the low g.Bits bits of tags.
