@@ -1,113 +1,136 @@
 package archive
 
 import (
+	"encoding/json"
 	"errors"
+	"fmt"
+	"io/fs"
+	"os"
+	"path/filepath"
 
-	"sojourn/observables"
+	"sojourn/observables/internal/durable"
 	"sojourn/observables/table"
-)
-
-// Errors of the results directory, wrapped with the path.
-var (
-	// ErrOtherStudy is for a directory whose study shares no point with the
-	// one given.
-	ErrOtherStudy = errors.New("the directory holds the results of another study")
-	// ErrNotResults is for a directory that is no results directory.
-	ErrNotResults = errors.New("the directory is not a results directory")
-	// ErrFormat is for files of a later version than this program reads.
-	ErrFormat = errors.New("the file has a later format than this program reads")
-	// ErrReadOnly is for writing to a directory opened for reading.
-	ErrReadOnly = errors.New("the directory was opened for reading")
-	// ErrDamaged is for a file that does not agree with its digest or checksum.
-	ErrDamaged = errors.New("the file is damaged")
-	// ErrAbsent is for a unit or part that is not there.
-	ErrAbsent = errors.New("not there")
 )
 
 // Dir is a results directory. Its methods may be called by several goroutines,
 // and by several processes on the same directory.
-type Dir struct{}
+type Dir struct {
+	path     string
+	manifest Manifest
+	points   map[string]int // key -> index into manifest.Points
+	writable bool
+	pace     pace
+}
 
 // Open opens an existing results directory for reading; only WriteFit writes.
-func Open(path string) (*Dir, error) { panic("archive: not written") }
+func Open(path string) (*Dir, error) {
+	m, err := readManifest(path)
+	if errors.Is(err, fs.ErrNotExist) {
+		if _, err := os.Stat(path); err != nil {
+			return nil, fmt.Errorf("%s: there is no such directory", path)
+		}
+		return nil, fmt.Errorf("%s: %w: it has no %s", path, ErrNotResults, manifestFile)
+	}
+	if err != nil {
+		return nil, err
+	}
+	return newDir(path, *m, false), nil
+}
 
-// Prepare opens a results directory for work on the study m, whose file reads
-// study, and creates it if need be. Points that the directory has keep their
-// numbers, extents and rows; new ones are added behind. If the directory holds
-// another study (ErrOtherStudy) or other files (ErrNotResults), nothing is
-// written.
-func Prepare(path string, m Manifest, study []byte) (*Dir, error) { panic("archive: not written") }
+func newDir(path string, m Manifest, writable bool) *Dir {
+	d := &Dir{path: path, manifest: m, points: map[string]int{}, writable: writable, pace: usualPace}
+	for i, p := range m.Points {
+		d.points[p.Key] = i
+	}
+	return d
+}
 
-// Check reports what Prepare would refuse, and writes nothing.
-func Check(path string, m Manifest) error { panic("archive: not written") }
+// readManifest returns the manifest of a directory; the error wraps
+// fs.ErrNotExist if it has none.
+func readManifest(path string) (*Manifest, error) {
+	file := filepath.Join(path, manifestFile)
+	data, err := os.ReadFile(file)
+	if err != nil {
+		return nil, err
+	}
+	var m Manifest
+	if err := readJSON(file, data, &m); err != nil {
+		return nil, err
+	}
+	for _, p := range m.Points {
+		if p.Key == "" || p.Extent < 1 {
+			return nil, fmt.Errorf("%s: %w: point %d has no key or no extent", file, ErrDamaged, p.Number)
+		}
+	}
+	return &m, nil
+}
+
+// readJSON decodes a file of ours and checks its format.
+func readJSON(file string, data []byte, v any) error {
+	var head struct {
+		Format int `json:"format"`
+	}
+	if err := json.Unmarshal(data, &head); err != nil {
+		return fmt.Errorf("%s: %w: %v", file, ErrDamaged, err)
+	}
+	if head.Format > Format {
+		return fmt.Errorf("%s: %w: %d, not %d; a newer version is needed", file, ErrFormat, head.Format, Format)
+	}
+	if err := json.Unmarshal(data, v); err != nil {
+		return fmt.Errorf("%s: %w: %v", file, ErrDamaged, err)
+	}
+	return nil
+}
+
+// encodeJSON is the form in which JSON stands in the directory.
+func encodeJSON(v any) ([]byte, error) {
+	data, err := json.MarshalIndent(v, "", "  ")
+	return append(data, '\n'), err
+}
+
+// writeJSON writes v under a name.
+func writeJSON(file string, v any) error {
+	data, err := encodeJSON(v)
+	if err != nil {
+		return fmt.Errorf("%s: %w", file, err)
+	}
+	return durable.WriteFile(file, data)
+}
 
 // Path returns the directory's path as given.
-func (d *Dir) Path() string { panic("archive: not written") }
+func (d *Dir) Path() string { return d.path }
 
 // Manifest returns the manifest as read or merged. It must not be modified.
-func (d *Dir) Manifest() *Manifest { panic("archive: not written") }
+func (d *Dir) Manifest() *Manifest { return &d.manifest }
 
-// Receipt says what a finished part consists of.
-type Receipt struct {
-	Format         int     `json:"format"`
-	Tool           string  `json:"tool"`
-	Key            string  `json:"key"`
-	First          int     `json:"first"`
-	Units          int     `json:"units"` // First, First+1, ...
-	Files          []File  `json:"files"`
-	Engine         string  `json:"engine"`
-	StreamRevision int     `json:"stream_revision"`
-	Arch           string  `json:"goarch"`
-	Host           string  `json:"host"`
-	Seconds        float64 `json:"seconds"` // in trajectories, summed over units
-	Trajectories   int64   `json:"trajectories"`
-	Jumps          int64   `json:"jumps"`
+// point returns the point with a key; it panics if there is none, since keys
+// come from the manifest.
+func (d *Dir) point(key string) *Point {
+	i, ok := d.points[key]
+	if !ok {
+		panic(fmt.Sprintf("archive: the manifest has no point %q", key))
+	}
+	return &d.manifest.Points[i]
 }
 
-// File is a file with its digest; Path is relative to the directory.
-type File struct {
-	Table  string `json:"table"`
-	Size   int64  `json:"size"`
-	SHA256 string `json:"sha256"`
+// mayWrite returns ErrReadOnly if the directory was opened for reading.
+func (d *Dir) mayWrite() error {
+	if !d.writable {
+		return fmt.Errorf("%s: %w", d.path, ErrReadOnly)
+	}
+	return nil
 }
 
-// Receipt returns the receipt of a part, or an error that wraps ErrAbsent.
-func (d *Dir) Receipt(key string, first int) (*Receipt, error) { panic("archive: not written") }
-
-// Parts returns the receipts of all finished parts of a point, by first unit.
-func (d *Dir) Parts(key string) ([]*Receipt, error) { panic("archive: not written") }
-
-// PartDone returns how many units, from first on, are finished in the part.
-func (d *Dir) PartDone(key string, first int) (units int, err error) { panic("archive: not written") }
-
-// WritePart writes the tables of a part and then its receipt, whose Files,
-// Units, Trajectories and Jumps it fills in. The units must be first,
-// first+1, ... It replaces a part with fewer units, and does nothing if the
-// part is there with as many.
-func (d *Dir) WritePart(key string, first int, units []observables.Unit, lead []Lead, r Receipt) error {
-	panic("archive: not written")
+// WriteFit writes a table to fits/NAME.parquet, where NAME is the schema's.
+func (d *Dir) WriteFit(s table.Schema, b table.Block) error {
+	if err := durable.MakeDirs(d.join(fitsDir)); err != nil {
+		return err
+	}
+	return table.WriteFile(d.fitFile(s.Name), s, b)
 }
 
-// ReadUnits returns the units of a part in order, checked against its receipt.
-func (d *Dir) ReadUnits(key string, first int) ([]observables.Unit, error) {
-	panic("archive: not written")
+// OpenFit opens a table that WriteFit wrote. The error wraps fs.ErrNotExist if
+// there is none.
+func (d *Dir) OpenFit(name string) (*table.Reader, error) {
+	return table.Open(d.fitFile(name))
 }
-
-// SaveUnit keeps a finished unit of an unfinished part, with the seconds it
-// took.
-func (d *Dir) SaveUnit(key string, u observables.Unit, seconds float64) error {
-	panic("archive: not written")
-}
-
-// LoadUnit returns a kept unit. The error wraps ErrAbsent if there is none and
-// ErrDamaged if it must be run again.
-func (d *Dir) LoadUnit(key string, unit int) (u observables.Unit, seconds float64, err error) {
-	panic("archive: not written")
-}
-
-// WriteFit writes fits/NAME.parquet.
-func (d *Dir) WriteFit(s table.Schema, b table.Block) error { panic("archive: not written") }
-
-// Verify reads every file of every finished part, page by page, and checks it
-// against its receipt. It returns one error per file that is wrong.
-func (d *Dir) Verify() []error { panic("archive: not written") }

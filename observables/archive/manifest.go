@@ -1,13 +1,11 @@
 package archive
 
-import "sojourn/observables/table"
-
 // Manifest is the resolved study: everything that inference needs besides the
 // tables.
 type Manifest struct {
-	Format  int      `json:"format"`
-	Tool    string   `json:"tool"` // version of the program that wrote it
-	Study   string   `json:"study"`
+	Format  int      `json:"format"` // set by Prepare
+	Tool    string   `json:"tool"`   // version of the program that wrote it
+	Study   string   `json:"study"`  // its name
 	Title   string   `json:"title,omitempty"`
 	Scanned []string `json:"scanned"` // dotted names of the scanned parameters
 	Points  []Point  `json:"points"`  // by number
@@ -15,29 +13,34 @@ type Manifest struct {
 
 // Point is one point with its facts.
 type Point struct {
-	Number int    `json:"point"` // in order of first appearance in the directory, from 0; set by Prepare
+	// Number counts points in order of first appearance in the directory, from
+	// 0. Prepare sets it.
+	Number int    `json:"point"`
 	Key    string `json:"key"`
-	// Current is whether the study that was given last has this point; set by
-	// Prepare. Rows of other points stay.
+	// Current says that the study given last has this point. Prepare sets it.
+	// Rows of other points stay where they are.
 	Current bool `json:"current"`
-	Count   int  `json:"count"` // units asked for by the last study that had the point
+	// Count is the number of units asked for by the last study that had the
+	// point.
+	Count int `json:"count"`
 	// Extent is the number of units in a part. Prepare keeps the one that the
 	// directory has, so that parts never overlap.
 	Extent int `json:"extent"`
 
 	Parameters []Parameter `json:"parameters"` // all, resolved, dotted names
-	Scan       []Parameter `json:"scan"`       // value of each of Manifest.Scanned
+	Scan       []Parameter `json:"scan"`       // the scanned ones, in the order of Manifest.Scanned
 	Facts      Facts       `json:"facts"`
 }
 
 // Parameter is a dotted name and its value as in a study file.
 type Parameter struct {
-	Name  string `json:"name"`
-	Value string `json:"value"`
+	Name    string    `json:"name"`
+	Value   string    `json:"value"`
+	Numbers []float64 `json:"numbers,omitempty"` // of a scanned parameter: one, or one per axis for lattice.size
 }
 
-// Facts is what is known of a point before it runs. Times are in units of the
-// inverse of the study's rates.
+// Facts is what is known of a point before it runs. Times are in the inverse
+// of the bath's base rate.
 type Facts struct {
 	Model   string  `json:"model"`
 	Beta    float64 `json:"beta"`
@@ -98,9 +101,49 @@ type Covariance struct {
 	Limit int     `json:"limit"`
 }
 
-// Lead is a leading column of a part's tables, the same value in all its rows:
-// float64, int64, int32, string or []int32 as the column's type says.
-type Lead struct {
-	Column table.Column
-	Value  any
+// Point returns the point with a key, or nil.
+func (m *Manifest) Point(key string) *Point {
+	for i := range m.Points {
+		if m.Points[i].Key == key {
+			return &m.Points[i]
+		}
+	}
+	return nil
+}
+
+// merge returns the manifest of a directory that held old (nil if nothing) and
+// is given m. Points of old keep their numbers and extents and come first; ok
+// is false if old has points but none of m's.
+func merge(old *Manifest, m Manifest) (merged Manifest, ok bool) {
+	merged = m
+	merged.Format = Format
+	merged.Points = nil
+	place := map[string]int{}
+	if old != nil {
+		for _, p := range old.Points {
+			p.Current = false
+			place[p.Key] = len(merged.Points)
+			merged.Points = append(merged.Points, p)
+		}
+	}
+	kept := len(merged.Points)
+	ok = kept == 0
+	for _, p := range m.Points {
+		i, known := place[p.Key]
+		if !known {
+			i = len(merged.Points)
+			place[p.Key] = i
+			merged.Points = append(merged.Points, p)
+		}
+		before := merged.Points[i]
+		if i < kept {
+			ok = true
+			p.Extent = before.Extent
+		} else if known {
+			p.Count = max(p.Count, before.Count) // given twice by one study
+		}
+		p.Number, p.Current = i, true
+		merged.Points[i] = p
+	}
+	return merged, ok
 }

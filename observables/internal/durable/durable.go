@@ -36,12 +36,10 @@ type File struct {
 
 // Create starts a file that shall stand at path.
 func Create(path string) (*File, error) {
-	var digits [8]byte
-	rand.Read(digits[:])
-	temporary := path + mark + hex.EncodeToString(digits[:])
+	temporary := Beside(path, Token())
 	file, err := os.OpenFile(temporary, os.O_WRONLY|os.O_CREATE|os.O_EXCL, 0o666)
 	if err != nil {
-		return nil, explain("create", path, err)
+		return nil, Explain("create", path, err)
 	}
 	return &File{path: path, temporary: temporary, file: file, hash: sha256.New()}, nil
 }
@@ -55,7 +53,7 @@ func (f *File) Write(p []byte) (int, error) {
 	f.hash.Write(p[:n])
 	f.size += int64(n)
 	if err != nil {
-		f.err = explain("write", f.path, err)
+		f.err = Explain("write", f.path, err)
 	}
 	return n, f.err
 }
@@ -74,12 +72,12 @@ func (f *File) Stage() error {
 	}
 	if f.err == nil {
 		if err := f.file.Sync(); err != nil {
-			f.err = explain("write", f.path, err)
+			f.err = Explain("write", f.path, err)
 		}
 	}
 	// Some file systems report a full disk only here.
 	if err := f.file.Close(); err != nil && f.err == nil {
-		f.err = explain("write", f.path, err)
+		f.err = Explain("write", f.path, err)
 	}
 	f.file = nil
 	if f.err != nil {
@@ -97,7 +95,7 @@ func (f *File) Commit() error {
 	}
 	if err := os.Rename(f.temporary, f.path); err != nil {
 		os.Remove(f.temporary)
-		f.err = explain("rename", f.path, err)
+		f.err = Explain("rename", f.path, err)
 		return f.err
 	}
 	f.temporary = ""
@@ -135,7 +133,7 @@ func WriteFile(path string, data []byte) error {
 // MakeDirs creates a directory and its parents.
 func MakeDirs(path string) error {
 	if err := os.MkdirAll(path, 0o777); err != nil {
-		return explain("create", path, err)
+		return Explain("create", path, err)
 	}
 	return nil
 }
@@ -144,15 +142,25 @@ func MakeDirs(path string) error {
 func SyncDir(path string) error {
 	d, err := os.Open(path)
 	if err != nil {
-		return explain("open", path, err)
+		return Explain("open", path, err)
 	}
 	defer d.Close()
 	// File systems that cannot flush a directory say that the call is invalid.
 	if err := d.Sync(); err != nil && !errors.Is(err, syscall.EINVAL) && !errors.Is(err, errors.ErrUnsupported) {
-		return explain("write", path, err)
+		return Explain("write", path, err)
 	}
 	return nil
 }
+
+// Token returns 16 random hexadecimal digits.
+func Token() string {
+	var b [8]byte
+	rand.Read(b[:])
+	return hex.EncodeToString(b[:])
+}
+
+// Beside returns the temporary name beside path that ends in tail.
+func Beside(path, tail string) string { return path + mark + tail }
 
 // Temporary reports whether a name is that of a file not yet complete.
 func Temporary(name string) bool { return strings.Contains(name, mark) }
@@ -197,9 +205,9 @@ func (e *Error) Error() string {
 
 func (e *Error) Unwrap() error { return e.Err }
 
-// explain wraps an error of the operating system, without repeating the path,
-// which may be the temporary one.
-func explain(op, path string, err error) error {
+// Explain wraps an error of the operating system as an *Error, without the path
+// that it names, which may be the temporary one.
+func Explain(op, path string, err error) error {
 	var p *fs.PathError
 	var l *os.LinkError
 	switch {

@@ -110,7 +110,7 @@ func TestErrorsNameFinalPathAndRemedy(t *testing.T) {
 	if strings.Contains(err.Error(), mark) {
 		t.Errorf("the temporary name shows: %v", err)
 	}
-	full := explain("write", "a", &os.PathError{Op: "write", Path: "a" + mark, Err: syscall.ENOSPC})
+	full := Explain("write", "a", &os.PathError{Op: "write", Path: "a" + mark, Err: syscall.ENOSPC})
 	if !errors.Is(full, syscall.ENOSPC) || !strings.Contains(full.Error(), "make room") {
 		t.Errorf("got %v", full)
 	}
