@@ -10,9 +10,10 @@ import "fmt"
 // Phases are counted in units of exp(i pi/q). An instance with powers x, z on
 // its sites stands for
 //
-//	T = exp(i pi/q)^p  prod X^x Z^z,   p = sum x z for even q, 0 for odd q,
+//	T = exp(i pi/q)^p  prod X^x Z^z,   p = sum x z for even q, (q+1) sum x z for odd q,
 //
-// which makes T^q = 1; for q = 2 it is the Pauli operator with Y = i X Z.
+// which makes T^q = 1; for q = 2 it is the Pauli operator with Y = i X Z, and
+// for odd q the product of commuting operators has no phase.
 
 // row is a product of instances with the exponent of its eigenvalue in the
 // reference state, R = exp(2 pi i/q)^level there.
@@ -79,6 +80,8 @@ func (s *System) reduce(i int, basis []row) (*row, error) {
 		r.x[f.Site], r.z[f.Site] = f.X, f.Z
 		if q%2 == 0 {
 			r.phase += f.X * f.Z
+		} else {
+			r.phase += (q + 1) * f.X * f.Z
 		}
 	}
 	for _, b := range basis {

@@ -16,6 +16,10 @@ type element struct {
 // even selects the X bits of a word of a mixed problem.
 const even = 0x5555555555555555
 
+// storage is what a word that is kept costs, in words that are touched: it
+// bounds the memory that a budget can take.
+const storage = 16
+
 // eliminateBits returns the rank of the rows alive by Gaussian elimination over
 // Z_2. Rows are taken in the order of their first column, which keeps products
 // as short as the rows reach in the numbering of sites.
@@ -39,6 +43,9 @@ func (p *problem) eliminateBits() (rank float64, ok bool) {
 			col := lo<<6 + int32(bits.TrailingZeros64(work[lo]))
 			e := pivots[col]
 			if e == nil {
+				if *p.budget -= storage * int(hi-lo); *p.budget < 0 {
+					return 0, false
+				}
 				e = &element{lo: lo, phase: uint8(phase & 3), bits: append([]uint64(nil), work[lo:hi]...)}
 				pivots[col] = e
 				n++

@@ -68,6 +68,9 @@ func (h *howell) insert(v *vector) (phase int, ok bool) {
 		b := h.pivots[c]
 		a := int(v.at(c))
 		if b == nil {
+			if *h.p.budget -= storage * len(v.entry) / 8; *h.p.budget < 0 {
+				return 0, false
+			}
 			g := gcd(a, q)
 			h.pivots[c] = v.power(h.p, unitTo(a, g, q))
 			if g == 1 {

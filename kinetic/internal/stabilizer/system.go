@@ -57,7 +57,7 @@ type Solution struct {
 
 // Solve compares the rows, which must commute, with the wanted levels; nil
 // stands for level 0 of every row. ok is false if elimination would take more
-// than budget steps of one word.
+// than budget words touched.
 func (s *System) Solve(want []uint8, budget int) (sol Solution, ok bool) {
 	if want != nil && len(want) != s.Rows() {
 		panic(fmt.Sprintf("stabilizer: %d levels for %d rows", len(want), s.Rows()))
