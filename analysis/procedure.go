@@ -41,6 +41,7 @@ func Infer(p Point, opt Options) Result {
 			r.EnergyPerSite = scaled(res.Mean, 1/float64(p.Sites))
 		}
 	}
+	r.SlowMode = slowMode(&p, states, r.Observables, pools)
 	for k := range p.Pairs {
 		r.Curves = append(r.Curves, curve(&p, k, states))
 	}

@@ -84,19 +84,19 @@ func (p *process) tauSlowest() (tau float64) {
 	return tau
 }
 
-// lagGrid is 0..8, then 8 per octave, up to a quarter of the samples.
+// lagGrid is 0..8, then (8+j) 2^k, up to a quarter of the samples.
 func lagGrid(samples int) []int64 {
 	var lags []int64
-	for i := int64(0); i <= 8 && i <= int64(samples/4); i++ {
-		lags = append(lags, i)
+	most := int64(samples / 4)
+	for t := int64(0); t <= 8 && t <= most; t++ {
+		lags = append(lags, t)
 	}
-	for k := 1; ; k++ {
-		lag := int64(math.Round(8 * math.Pow(2, float64(k)/8)))
-		if lag > int64(samples/4) {
-			return lags
-		}
-		if lag > lags[len(lags)-1] {
-			lags = append(lags, lag)
+	for unit := int64(1); ; unit *= 2 {
+		for j := int64(9); j <= 16; j++ {
+			if j*unit > most {
+				return lags
+			}
+			lags = append(lags, j*unit)
 		}
 	}
 }
@@ -153,7 +153,10 @@ func lagged(f, g []float64, lags []int64, same bool) [][]Lagged {
 	}
 	for k, lag := range lags {
 		l := int(lag)
-		stride := max(1, l/8)
+		stride := 1 // doubles with each octave of lags above 8
+		for l > 16*stride {
+			stride *= 2
+		}
 		for s := range out {
 			// First times in segment s that are multiples of the stride.
 			first := (n*s + 3) / 4
@@ -209,3 +212,59 @@ func quantile(x []float64, q float64) float64 {
 	}
 	return s[min(len(s)-1, int(q*float64(len(s))))]
 }
+
+// mixture is a set of observables that are linear combinations of independent
+// Ornstein-Uhlenbeck processes of unit variance.
+type mixture struct {
+	name    string
+	rates   []float64
+	weights [][]float64 // observable, process
+}
+
+// point draws one data set of all observables.
+func (m *mixture) point(seed uint64, units int, span, step float64) Point {
+	rng := rand.New(rand.NewPCG(seed, 0x3eed))
+	n := int(math.Round(span / step))
+	x := make([][][]float64, units)
+	for u := range x {
+		x[u] = make([][]float64, len(m.weights))
+		for o := range x[u] {
+			x[u][o] = make([]float64, n)
+		}
+		for k, rate := range m.rates {
+			a := math.Exp(-rate * step)
+			b := math.Sqrt(1 - a*a)
+			y := rng.NormFloat64()
+			for i := range n {
+				for o := range x[u] {
+					x[u][o][i] += m.weights[o][k] * y
+				}
+				y = a*y + b*rng.NormFloat64()
+			}
+		}
+	}
+	e := square(len(m.weights))
+	for f := range e {
+		for g := range e {
+			for k, rate := range m.rates {
+				e[f][g] += m.weights[f][k] * m.weights[g][k] * rate
+			}
+		}
+	}
+	return record(x, step, e)
+}
+
+// The sets of observables of the slow-mode tables: entries are amplitudes, so
+// that the squares are the weights.
+var (
+	twoOfThree = mixture{"A", []float64{1, 3, 10}, [][]float64{
+		{math.Sqrt(.3), math.Sqrt(.3), math.Sqrt(.4)}, {math.Sqrt(.6), -math.Sqrt(.3), math.Sqrt(.1)}}}
+	threeOfThree = mixture{"A3", []float64{1, 3, 10}, [][]float64{
+		{math.Sqrt(.3), math.Sqrt(.3), math.Sqrt(.4)}, {math.Sqrt(.6), -math.Sqrt(.3), math.Sqrt(.1)}, {math.Sqrt(.2), math.Sqrt(.5), -math.Sqrt(.3)}}}
+	twoClose = mixture{"B", []float64{1, 1.5}, [][]float64{
+		{math.Sqrt(.3), math.Sqrt(.7)}, {math.Sqrt(.7), -math.Sqrt(.3)}}}
+	closeThird = mixture{"B3", []float64{1, 1.5, 4}, [][]float64{
+		{math.Sqrt(.3), math.Sqrt(.5), math.Sqrt(.2)}, {math.Sqrt(.5), -math.Sqrt(.3), math.Sqrt(.2)}}}
+	apart = mixture{"sectors", []float64{1, 2.5, 3, 10}, [][]float64{
+		{1, .3, 0, 0}, {0, 0, 1, .5}}}
+)
