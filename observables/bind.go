@@ -69,6 +69,9 @@ func bind(g *kinetic.Generator, r Request) (Observable, error) {
 		if err == nil {
 			err = equivalent(g, r.Family, o.Families)
 		}
+		if err == nil && !g.Lattice.Periodic() && len(sublattice(g, o.Families)) == 0 {
+			err = fmt.Errorf("family %q has no term in the middle of the lattice, where single terms are read if there are edges", r.Family)
+		}
 	case Fourier:
 		o.Families, err = FamiliesOf(g, r.Family)
 		o.Wavevector = r.Wavevector
@@ -120,9 +123,13 @@ func FamiliesOf(g *kinetic.Generator, name string) ([]int, error) {
 
 func lineOf(g *kinetic.Generator, name string) (int, error) {
 	for l := range g.Lines {
-		if g.Lines[l].Name == name {
-			return l, nil
+		if g.Lines[l].Name != name {
+			continue
 		}
+		if positions(g.Lines[l]) == 0 {
+			return 0, fmt.Errorf("tracked operator %q has no position on this lattice", name)
+		}
+		return l, nil
 	}
 	for f := range g.Families {
 		if g.Families[f].Name == name {
