@@ -23,9 +23,6 @@ type classes[T uint32 | uint64] struct {
 // the given unit of the stream that seed identifies. It needs about 9 bytes per
 // seat, 13 where the pattern and the number of seats do not fit 32 bits together.
 func NewClasses(g *Generator, seed [32]byte, unit int, start Start) (Engine, error) {
-	if g.Levels != 2 {
-		return nil, fmt.Errorf("the class engine runs 2 levels, not %d", g.Levels)
-	}
 	if g.Couplings != nil {
 		return nil, errVaryingCouplings
 	}

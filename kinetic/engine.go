@@ -12,7 +12,8 @@ type Engine interface {
 	// Jumps is the number of executed jumps, all lanes together.
 	Jumps() uint64
 	// Sums appends for each lane the sum of eigenvalues of every family, then
-	// of every line (q = 2).
+	// of every line; for q > 2, instead of each sum, the number of terms at each
+	// level.
 	Sums(dst []int64) []int64
 	// Energy is the total energy of a lane.
 	Energy(lane int) float64

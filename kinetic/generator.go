@@ -123,8 +123,9 @@ type Shape struct {
 	// cumulative share of moves 0..m in the total, scaled to 2^64-1.
 	Rate  [][]float64
 	Split []uint64
-	// Delta[(m<<Bits|p)*len(Families)+f] is the change of the sum of family f:
-	// of eigenvalues (-1)^s for q = 2.
+	// Delta[(m<<Bits|p)*len(Families)+f] is the change of the sum of family f,
+	// of eigenvalues (-1)^s, for q = 2. For q > 2 there are q numbers per family,
+	// the changes of the counts by level.
 	Delta  []int8
 	turned []uint16 // by move: the slots that it changes (q = 2)
 	// LineHits[m][l] is how many positions of line l the move changes.

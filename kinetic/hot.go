@@ -34,7 +34,7 @@ func newHot(g *Generator) hot {
 		bits:   uint(g.Bits),
 		mask:   1<<g.Bits - 1,
 		rowLen: uint32(len(g.Col)),
-		words:  uint32(max(1, (len(g.Families)+fields-1)/fields)),
+		words:  uint32(max(1, (len(g.Families)*g.SumWidth()+fields-1)/fields)),
 	}
 	if h.rowLen == 1 {
 		h.single = math.MaxUint32
@@ -45,8 +45,9 @@ func newHot(g *Generator) hot {
 	for i := range g.Shapes {
 		s := &g.Shapes[i]
 		deltaOf[i] = uint32(len(h.delta))
-		for e := 0; e < len(s.Delta); e += len(g.Families) {
-			h.delta = append(h.delta, pack(s.Delta[e:e+len(g.Families)])...)
+		sums := len(g.Families) * g.SumWidth()
+		for e := 0; e < len(s.Delta); e += sums {
+			h.delta = append(h.delta, pack(s.Delta[e:e+sums])...)
 		}
 		h.splits = append(h.splits, s.Split)
 	}

@@ -38,7 +38,7 @@ func (k *compiler) shapeOf(c lattice.Offset, seat int) (int, error) {
 	for m := range s.Rate {
 		s.Rate[m] = make([]float64, patterns)
 	}
-	s.Delta = make([]int8, moves*patterns*len(g.Families))
+	s.Delta = make([]int8, moves*patterns*len(g.Families)*g.SumWidth())
 	for p := range patterns {
 		before, ok := k.levels(p, seat, n)
 		if !ok {
@@ -97,7 +97,7 @@ func (k *compiler) levels(p, seat int, n *neighbourhood) (levels []int, ok bool)
 func (k *compiler) compileMove(s *Shape, n *neighbourhood, m, p int, before []int) error {
 	g := k.g
 	var family, from, to []int
-	delta := s.Delta[(m<<g.Bits|p)*len(g.Families):]
+	delta := s.Delta[(m<<g.Bits|p)*len(g.Families)*g.SumWidth():]
 	for b, slot := range g.Seats[s.Seat].Slots {
 		d := n.change[m][b]
 		if d == 0 || !n.exists[b] {
@@ -109,6 +109,9 @@ func (k *compiler) compileMove(s *Shape, n *neighbourhood, m, p int, before []in
 		to = append(to, after)
 		if g.Levels == 2 {
 			delta[slot.Family] += int8(2*before[b] - 2*after)
+		} else {
+			delta[slot.Family*g.Levels+before[b]]--
+			delta[slot.Family*g.Levels+after]++
 		}
 	}
 	if !s.acts[m] {

@@ -5,11 +5,12 @@ import (
 	"slices"
 )
 
-// tally keeps the sums of eigenvalues of families and lines (q = 2) while a
-// trajectory runs. Changes of the families' sums are added in packed words.
+// tally keeps the sums of families and lines while a trajectory runs: of
+// eigenvalues (-1)^s for q = 2, else the number of terms at each level. Changes
+// of the families' sums are added in packed words.
 type tally struct {
 	g        *Generator
-	sums     []int64 // by family
+	sums     []int64 // by family (and level)
 	packed   []int64 // changes of the sums since they were last unpacked
 	since    int     // jumps since then
 	lines    [][]uint8
@@ -63,25 +64,41 @@ func (e *tally) hitLines(mv *hotMove, row, col uint32) {
 		if int(at) >= len(line) {
 			continue
 		}
-		line[at] ^= hit.Change
-		e.lineSums[hit.Line] += 2 - 4*int64(line[at])
+		if e.g.Levels == 2 {
+			line[at] ^= hit.Change
+			e.lineSums[hit.Line] += 2 - 4*int64(line[at])
+			continue
+		}
+		counts := e.lineSums[hit.Line*e.g.Levels:]
+		counts[line[at]]--
+		line[at] = (line[at] + hit.Change) % uint8(e.g.Levels)
+		counts[line[at]]++
 	}
 }
 
-// familySums sums the eigenvalues of every family over the lattice (q = 2).
+// SumWidth is how many sums Engine.Sums gives for each family and line: 1 for
+// q = 2, the sum of eigenvalues; else q, the number of terms at each level.
+func (g *Generator) SumWidth() int {
+	if g.Levels == 2 {
+		return 1
+	}
+	return g.Levels
+}
+
+// familySums adds up every family over the lattice.
 func familySums[T tag](g *Generator, tags []T) []int64 {
-	sums := make([]int64, len(g.Families))
+	var sums []int64
 	var levels []uint8
-	for f := range sums {
+	for f := range g.Families {
 		if n, ok := countSlot(g, f, tags); ok {
-			sums[f] = int64(g.Cells()) - 2*n
+			sums = append(sums, int64(g.Cells())-2*n)
 			continue
 		}
 		if levels == nil {
 			levels = make([]uint8, g.Cells())
 		}
 		readTerms(g, f, tags, levels)
-		sums[f] = signSum(levels)
+		sums = g.appendSum(sums, levels)
 	}
 	return sums
 }
@@ -90,7 +107,7 @@ func familySums[T tag](g *Generator, tags []T) []int64 {
 // shows them all.
 func countSlot[T tag](g *Generator, f int, tags []T) (n int64, ok bool) {
 	fam := &g.Families[f]
-	if len(fam.Slots) == 0 || fam.Terms != g.Cells() || g.everywhere>>fam.Slots[0].Slot&1 == 0 {
+	if g.Levels != 2 || len(fam.Slots) == 0 || fam.Terms != g.Cells() || g.everywhere>>fam.Slots[0].Slot&1 == 0 {
 		return 0, false
 	}
 	ref := fam.Slots[0]
@@ -101,26 +118,33 @@ func countSlot[T tag](g *Generator, f int, tags []T) (n int64, ok bool) {
 }
 
 func (g *Generator) lineSums(lines [][]uint8) []int64 {
-	sums := make([]int64, len(lines))
+	var sums []int64
 	for l, levels := range lines {
-		for p, s := range levels {
-			if ex := g.Lines[l].Exists; ex == nil || ex[p] {
-				sums[l] += 1 - 2*int64(s)
+		existing := levels
+		if g.Lines[l].Exists != nil {
+			existing = nil
+			for p, s := range levels {
+				if g.Lines[l].Exists[p] {
+					existing = append(existing, s)
+				}
 			}
 		}
+		sums = g.appendSum(sums, existing)
 	}
 	return sums
 }
 
-// signSum sums (-1)^s over the levels that are not Absent.
-func signSum(levels []uint8) int64 {
-	n := int64(0)
+// appendSum appends the sum of (-1)^s, or the counts by level, of the levels
+// that are not Absent.
+func (g *Generator) appendSum(sums []int64, levels []uint8) []int64 {
+	var count [256]int64
 	for _, s := range levels {
-		if s != Absent {
-			n += 1 - 2*int64(s)
-		}
+		count[s]++
 	}
-	return n
+	if g.Levels == 2 {
+		return append(sums, count[0]-count[1])
+	}
+	return append(sums, count[:g.Levels]...)
 }
 
 // appendSums appends the sums of families, then of lines.
@@ -134,8 +158,15 @@ func (e *tally) energy() float64 {
 	e.unpack()
 	sum := 0.0
 	for f, fam := range e.g.Families {
-		if fam.Energy != nil {
+		if fam.Energy == nil {
+			continue
+		}
+		if e.g.Levels == 2 {
 			sum += fam.Energy[0] * float64(e.sums[f])
+			continue
+		}
+		for s, energy := range fam.Energy {
+			sum += energy * float64(e.sums[f*e.g.Levels+s])
 		}
 	}
 	return sum
