@@ -14,6 +14,10 @@ import (
 // verdicts collects the p-values of many comparisons and judges them together.
 type verdicts struct {
 	cases []verdict
+	// Waiting times of all models, in units of their means: how many, and the
+	// sum of their differences from 1, whose variance is 1 each.
+	waits  int
+	excess float64
 }
 
 type verdict struct {
@@ -33,6 +37,10 @@ const falseAlarm = 1e-3
 // judge fails the test for every rejected case.
 func (v *verdicts) judge(t *testing.T) {
 	t.Helper()
+	if v.waits > 0 {
+		z := v.excess / math.Sqrt(float64(v.waits))
+		v.add("waiting times of all models", normal(z), "the mean of %d is off by %.2f standard errors", v.waits, z)
+	}
 	for _, c := range v.rejected() {
 		t.Errorf("%s: p = %.2g among %d comparisons: %s", c.name, c.p, len(v.cases), c.note)
 	}

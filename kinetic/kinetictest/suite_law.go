@@ -251,11 +251,12 @@ func (h *harness) conditional(f []float64, t float64) (mean, square []float64) {
 }
 
 // jumpByJump follows one trajectory in steps so small that jumps come one at a
-// time. The wait from the step after a jump to the next, times the total rate
+// time (two in a step, which happens once in some hundred jumps, are passed
+// over). The wait from the step after a jump to the next, times the total rate
 // of the state, must be exponential; the jumps must be drawn in proportion to
 // their rates. Only engines with one lane show single jumps.
 func (h *harness) jumpByJump() {
-	const jumps, perWait = 1500, 1000
+	const jumps, perWait = 3000, 500
 	e := h.engine(1<<21, kinetic.StartRandom)
 	if e.Lanes() > 1 {
 		return
@@ -266,6 +267,7 @@ func (h *harness) jumpByJump() {
 	rates := make([]float64, len(groups.index))
 	jitter := rand.New(rand.NewPCG(3, 5))
 	var uniform []float64
+	excess := 0.0
 	levels := h.read(e, 0, nil)
 	state := h.state(e, 0, levels)
 	for range jumps {
@@ -287,6 +289,7 @@ func (h *harness) jumpByJump() {
 		next := h.state(e, 0, levels)
 		wait := (float64(k-1) + jitter.Float64()) * step
 		uniform = append(uniform, -math.Expm1(-wait*total))
+		excess += wait*total - 1
 		if e.Jumps() == before+1 {
 			probabilities := groups.rates(h, state, rates)
 			for i := range probabilities {
@@ -303,6 +306,8 @@ func (h *harness) jumpByJump() {
 	if len(uniform) > 100 {
 		p, note := kolmogorov(uniform)
 		h.v.add(h.name+" waiting times", p, "%s", note)
+		h.v.waits += len(uniform)
+		h.v.excess += excess
 	}
 	if p, degrees, note := which.test(); degrees > 0 {
 		h.v.add(h.name+" jumps", p, "%s", note)
