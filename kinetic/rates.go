@@ -39,7 +39,7 @@ func newEnergies(spec Spec, families []family) *energies {
 // rate returns the rate under a law of the jump that takes before[b] to
 // after[b] in each listed slot, where family[b] is the slot's family.
 func (e *energies) rate(law int, family []int, before, after []int) (float64, error) {
-	q := len(e.counts) / len(e.level)
+	q := len(e.counts) / max(1, len(e.level)) // no families: nothing to count
 	clear(e.counts)
 	for b, f := range family {
 		if e.level[f] != nil {
