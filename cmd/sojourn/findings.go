@@ -21,8 +21,9 @@ type finding struct {
 	model        string
 	beta         float64
 	size         []int
-	scan         []setting // scanned parameters other than beta and size
+	scan         []setting // scanned physical parameters other than beta and size
 	start        string
+	span         float64 // recorded time of one trajectory
 	engine       string
 	units        int
 	trajectories int

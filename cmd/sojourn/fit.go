@@ -3,12 +3,16 @@ package main
 import (
 	"errors"
 	"fmt"
+	"os"
 
 	"sojourn/observables/archive"
 )
 
 // fit infers from a results directory alone.
 func (c *console) fit(o *options, args []string) error {
+	if _, err := os.Stat(args[0]); err != nil {
+		return badRequest("fit: %w", err)
+	}
 	d, err := archive.Open(args[0])
 	if err != nil {
 		return directoryError(err)
@@ -40,7 +44,7 @@ func (c *console) warn(format string, a ...any) {
 // directoryError gives errors that say that the directory is not the one meant
 // the status of a wrong request.
 func directoryError(err error) error {
-	for _, wrong := range []error{archive.ErrOtherStudy, archive.ErrNotResults, archive.ErrFormat, archive.ErrAbsent} {
+	for _, wrong := range []error{archive.ErrOtherStudy, archive.ErrNotResults, archive.ErrFormat} {
 		if errors.Is(err, wrong) {
 			return &failure{exitBadRequest, err}
 		}

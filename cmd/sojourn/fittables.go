@@ -277,16 +277,6 @@ func relaxationRow(o *analysis.ObservableResult) []any {
 // writeFits writes every table of fits/ that has rows for the study.
 func writeFits(d *archive.Dir, f *findings) error {
 	m := d.Manifest()
-	leads := map[string][]any{} // by point key: values of the scanned parameters
-	for i := range m.Points {
-		scanned, err := scannedLeads(m, &m.Points[i])
-		if err != nil && m.Points[i].Current {
-			return err
-		}
-		for _, l := range scanned {
-			leads[m.Points[i].Key] = append(leads[m.Points[i].Key], l.Value)
-		}
-	}
 	for _, t := range fitTables {
 		schema := table.Schema{Name: t.name, Format: fitFormat, Tool: release}
 		if !t.study {
@@ -297,7 +287,7 @@ func writeFits(d *archive.Dir, f *findings) error {
 		t.rows(f, func(p *finding, values ...any) {
 			var lead []any
 			if p != nil {
-				lead = append([]any{p.point, p.key, p.beta, p.size[0]}, leads[p.key]...)
+				lead = append([]any{p.point, p.key, p.beta, p.size[0]}, scannedValues(m, m.Point(p.key))...)
 			}
 			b.Row(append(lead, values...)...)
 		})

@@ -96,7 +96,7 @@ func inTurns(n, k int, do func(i int)) {
 func inferPoint(d *archive.Dir, p *archive.Point, partial bool) (finding, int, error) {
 	out := finding{
 		point: p.Number, key: p.Key, model: p.Facts.Model, beta: p.Facts.Beta, size: p.Facts.Size,
-		start: p.Facts.Start, engine: p.Facts.Engine, scan: otherScan(p.Scan),
+		start: p.Facts.Start, span: p.Facts.Span, engine: p.Facts.Engine, scan: otherScan(p.Scan),
 	}
 	g := newGathering(p, groupOf(p.Scan))
 	receipts, err := d.Parts(p.Key)
@@ -149,27 +149,30 @@ func inferPoint(d *archive.Dir, p *archive.Point, partial bool) (finding, int, e
 	return out, missing, nil
 }
 
-// otherScan returns the scanned parameters that a point's heading does not
-// already name.
+// otherScan returns the scanned physical parameters that a point's heading does
+// not already name. How long and how often a point was run is none.
 func otherScan(scan []archive.Parameter) []setting {
 	var out []setting
 	for _, p := range scan {
-		if p.Name != "bath.beta" && p.Name != "lattice.size" {
+		if furtherPhysics(p.Name) {
 			out = append(out, setting{p.Name, p.Value})
 		}
 	}
 	return out
 }
 
-// groupOf names what two points of a trend must share: the scanned physical
-// parameters other than beta and size. How long and how often a point was run
-// is no physical parameter.
+// furtherPhysics reports whether a scanned parameter is a physical one other
+// than beta and size.
+func furtherPhysics(name string) bool {
+	return name != "bath.beta" && name != "lattice.size" &&
+		!strings.HasPrefix(name, "trajectory.") && !strings.HasPrefix(name, "covariance.")
+}
+
+// groupOf names what two points of a trend must share besides beta and size.
 func groupOf(scan []archive.Parameter) string {
 	var parts []string
 	for _, p := range otherScan(scan) {
-		if !strings.HasPrefix(p.name, "trajectory.") && !strings.HasPrefix(p.name, "covariance.") {
-			parts = append(parts, p.name+" "+p.value)
-		}
+		parts = append(parts, p.name+" "+p.value)
 	}
 	return strings.Join(parts, ", ")
 }

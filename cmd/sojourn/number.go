@@ -107,6 +107,14 @@ func count(n float64) string {
 	return shortExponent(strconv.FormatFloat(n, 'e', 2, 64))
 }
 
+// speed prints a number per second to three digits.
+func speed(x float64) string {
+	if x < 1e4 {
+		return count(x) + "/s"
+	}
+	return shortExponent(strconv.FormatFloat(x, 'e', 2, 64)) + "/s"
+}
+
 // bytesOf prints a size in binary units.
 func bytesOf(n int64) string {
 	const units = "KMGTPE"
@@ -130,6 +138,8 @@ func duration(seconds float64) string {
 	switch {
 	case math.IsNaN(seconds) || seconds < 0:
 		return "-"
+	case seconds < 1:
+		return fmt.Sprintf("%.2g s", seconds)
 	case seconds < 10:
 		return fmt.Sprintf("%.1f s", seconds)
 	case seconds < 100:

@@ -43,7 +43,8 @@ type planPointJSON struct {
 	GroundStates  *float64       `json:"ln_ground_states,omitempty"`
 	Classical     *bool          `json:"classical,omitempty"`
 	Reference     *bool          `json:"reference_is_ground_state,omitempty"`
-	Closed        *int           `json:"closed_classes,omitempty"`
+	Closed        *int           `json:"closed_classes,omitempty"`         // among all values
+	Reached       *int           `json:"closed_classes_reached,omitempty"` // among what the bath reaches
 	Frozen        []frozenJSON   `json:"frozen,omitempty"`
 	Engine        string         `json:"engine"`
 	Why           string         `json:"why"`
@@ -66,9 +67,9 @@ type frozenJSON struct {
 // planned is a point with what plan finds out about it.
 type planned struct {
 	*prepared
-	ground kinetic.Ground
-	closed *int
-	load   load
+	ground          kinetic.Ground
+	closed, reached *int // see closedClasses
+	load            load
 }
 
 // plan checks a study and says what it would do.
@@ -84,7 +85,8 @@ func (c *console) plan(o *options, args []string) error {
 	}
 	list := make([]planned, len(points))
 	for i, q := range points {
-		p := planned{prepared: q, closed: q.closedClasses()}
+		p := planned{prepared: q}
+		p.closed, p.reached = q.closedClasses()
 		if p.ground, err = kinetic.GroundStates(q.config.Spec); err != nil {
 			return badRequest("%s: %w", pointText(q.config), err)
 		}
@@ -105,51 +107,57 @@ type load struct {
 	jumps, seconds float64
 }
 
-// calibrate runs one trajectory for a fraction of a second and extrapolates.
-// Nothing depends on what it finds.
+// calibrate runs one trajectory for a while and extrapolates. For how long
+// depends on jumps alone, so that their expected number is the same every time;
+// the seconds are those of this machine at this moment, and decide nothing.
 func (q *prepared) calibrate() (load, error) {
-	const patience = 100 * time.Millisecond // for settling, and again for recording
-	e, err := q.engine(0)
+	t := &q.config.Trajectory
+	rate, err := q.jumpRate()
 	if err != nil {
 		return load{}, err
 	}
-	t := &q.config.Trajectory
-	whole := t.Settle + t.Span
-	// Grow a stretch of time until it takes long enough to be timed.
-	stretch := math.Min(whole, t.Step)
-	begin, at, jumps := time.Now(), 0.0, uint64(0)
-	for {
-		from, before := time.Now(), e.Jumps()
-		at += stretch
-		e.Advance(at)
-		jumps = e.Jumps() - before
-		if time.Since(from) > patience/3 || time.Since(begin) > patience || at >= whole {
-			break
-		}
-		stretch *= 2
-	}
-	rate := float64(jumps) / stretch
-	// Record over a short span, on the lags of the whole one.
+	// Record a part of the span, first a short one and then as much as takes
+	// long enough to be timed.
+	const enough = 50 * time.Millisecond
 	short := q.plan
 	short.Settle = 0
-	steps := 64.0
-	for {
+	for steps := 64.0; ; steps *= 2 {
 		short.Span = math.Min(q.plan.Span, steps*t.Step)
-		fresh, err := q.engine(0)
+		e, err := q.engine(0)
 		if err != nil {
 			return load{}, err
 		}
+		label := observables.Label{Start: string(q.start(0)), Engine: t.EngineName}
 		from := time.Now()
-		if _, err := observables.Record(context.Background(), fresh, q.generator, q.observables, q.config.Pairs, short,
-			observables.Label{Start: string(q.start(0)), Engine: t.EngineName}, nil); err != nil {
+		if _, err := observables.Record(context.Background(), e, q.generator, q.observables, q.config.Pairs, short, label, nil); err != nil {
 			return load{}, err
 		}
-		gone := time.Since(from)
-		if gone > patience/2 || short.Span >= q.plan.Span {
-			count := float64(t.Count)
-			return load{jumps: rate * whole * count, seconds: gone.Seconds() / short.Span * whole * count}, nil
+		if gone := time.Since(from); gone > enough || short.Span >= q.plan.Span {
+			whole := (t.Settle + t.Span) * float64(t.Count)
+			return load{jumps: rate * whole, seconds: gone.Seconds() / short.Span * whole}, nil
 		}
-		steps *= 2
+	}
+}
+
+// jumpRate is the number of jumps per unit time at the end of a stretch that is
+// long enough to leave the start behind: at least 100 000 jumps, and two on
+// every site unless that takes too long.
+func (q *prepared) jumpRate() (float64, error) {
+	e, err := q.engine(0)
+	if err != nil {
+		return 0, err
+	}
+	t := &q.config.Trajectory
+	whole := t.Settle + t.Span
+	target := uint64(1e5 + math.Min(2*float64(q.sites()), 1e7))
+	for at, stretch := 0.0, math.Min(t.Step, whole); ; stretch *= 2 {
+		before := e.Jumps()
+		stretch = math.Min(stretch, whole-at)
+		at += stretch
+		e.Advance(at)
+		if e.Jumps() >= target || at >= whole {
+			return float64(e.Jumps()-before) / stretch, nil
+		}
 	}
 }
 
@@ -157,22 +165,27 @@ func (q *prepared) calibrate() (load, error) {
 // classes.
 const countable = 1 << 16
 
-// closedClasses counts the sets of states that jumps do not leave, on lattices
-// small enough to enumerate.
-func (q *prepared) closedClasses() *int {
+// closedClasses counts the sets of states that no jump leaves: among all values
+// that terms and tracked operators can have together, and among those that the
+// bath operators reach from the reference state. Nil where the lattice is too
+// large to enumerate.
+func (q *prepared) closedClasses() (all, reached *int) {
 	if q.sites() > enumerated {
-		return nil
+		return nil, nil
 	}
 	system, err := exact.NewSystem(q.config.Spec)
 	if err != nil {
-		return nil
+		return nil, nil
 	}
-	classes, err := system.ClosedClasses(countable)
-	if err != nil {
-		return nil
+	number := func(scope exact.Scope) *int {
+		classes, err := system.ClosedClasses(scope, countable)
+		if err != nil {
+			return nil
+		}
+		n := len(classes)
+		return &n
 	}
-	n := len(classes)
-	return &n
+	return number(exact.Everything), number(exact.Moved)
 }
 
 func (q *prepared) why() string {
@@ -219,7 +232,7 @@ func planText(s *configs.Study, list []planned, workers int) string {
 		x := &p.config.Trajectory
 		var others []string
 		for _, v := range p.config.Scan {
-			if v.Name != "bath.beta" && v.Name != "lattice.size" && !strings.HasPrefix(v.Name, "trajectory.") {
+			if furtherPhysics(v.Name) {
 				others = append(others, v.Name+" "+v.Value)
 			}
 		}
@@ -341,12 +354,14 @@ func (p *planned) saysReference() (string, string) {
 
 func (p *planned) saysClasses() (string, string) {
 	switch {
-	case p.closed == nil:
-		return "", ""
-	case *p.closed == 1:
+	case p.closed != nil && *p.closed == 1:
 		return "classes", "the jumps connect all states"
+	case p.reached != nil && *p.reached > 1:
+		return "classes", fmt.Sprintf("jumps of rate 0 split what the bath reaches into %d closed classes: no trajectory leaves the one that it starts in", *p.reached)
+	case p.closed != nil:
+		return "classes", fmt.Sprintf("the bath does not connect all values of terms and tracked operators: they fall into %d closed classes", *p.closed)
 	}
-	return "classes", fmt.Sprintf("the jumps fall into %d closed classes: no trajectory leaves the one that it starts in", *p.closed)
+	return "", ""
 }
 
 func (p *planned) saysFrozen() (string, string) {
@@ -396,7 +411,7 @@ func jsonOfPlan(s *configs.Study, list []planned) planJSON {
 		size := p.generator.Lattice.Lengths()
 		j := planPointJSON{
 			Point: i, Key: p.config.Key, Model: p.config.Model, Beta: p.config.Spec.Beta, Length: size[0], Size: size,
-			Sites: p.sites(), Terms: map[string]int{}, Closed: p.closed, Engine: p.config.Trajectory.EngineName, Why: p.why(),
+			Sites: p.sites(), Terms: map[string]int{}, Closed: p.closed, Reached: p.reached, Engine: p.config.Trajectory.EngineName, Why: p.why(),
 			Units: p.config.Trajectory.Count, Samples: p.plan.Samples(), Lags: observables.Lags(p.plan.Samples()), Step: p.plan.Step,
 			Bytes: p.bytes(), DiskBytes: p.diskBytes(), Jumps: math.Round(p.load.jumps), Seconds: p.load.seconds,
 		}

@@ -90,7 +90,7 @@ func tooLarge(p *configs.Point, need float64, available int64) error {
 func pointText(p *configs.Point) string {
 	s := fmt.Sprintf("%s %s at beta %s", p.Model, sizeText(p.Spec.Lattice.Lengths()), shortest(p.Spec.Beta))
 	for _, x := range p.Scan {
-		if x.Name != "bath.beta" && x.Name != "lattice.size" {
+		if furtherPhysics(x.Name) {
 			s += ", " + x.Name + " " + x.Value
 		}
 	}
@@ -163,7 +163,7 @@ func manifest(s *configs.Study, points []*prepared) (archive.Manifest, error) {
 			p.Parameters = append(p.Parameters, archive.Parameter{Name: x.Name, Value: x.Value})
 		}
 		for _, x := range q.config.Scan {
-			p.Scan = append(p.Scan, archive.Parameter{Name: x.Name, Value: x.Value})
+			p.Scan = append(p.Scan, archive.Parameter{Name: x.Name, Value: x.Value, Numbers: x.Numbers})
 		}
 		m.Points = append(m.Points, p)
 	}
@@ -218,6 +218,7 @@ func (q *prepared) facts() (archive.Facts, error) {
 		f.EncodedQubits = &n
 	}
 	f.LnStates = q.lnStates()
+	f.ClosedClasses, _ = q.closedClasses()
 	return f, nil
 }
 

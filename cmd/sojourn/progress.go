@@ -4,6 +4,7 @@ import (
 	"fmt"
 	"io"
 	"os"
+	"strings"
 	"sync"
 	"time"
 
@@ -169,16 +170,16 @@ func (p *progress) units() string {
 func (p *progress) pace(now time.Time) string {
 	p.mu.Lock()
 	defer p.mu.Unlock()
-	speed := "- jumps/s"
+	pace := "- jumps/s"
 	if n := len(p.recent); n > 1 {
 		first, last := p.recent[0], p.recent[n-1]
 		if dt := last.at.Sub(first.at).Seconds(); dt > 0 {
-			speed = count(float64(last.jumps-first.jumps)/dt) + " jumps/s"
+			pace = strings.Replace(speed(float64(last.jumps-first.jumps)/dt), "/s", " jumps/s", 1)
 		}
 	}
 	gone := now.Sub(p.begin).Seconds()
 	if share := p.now.share - p.first.share; share > 0 && gone > 1 {
-		return speed + ", " + duration(gone*(1-p.now.share)/share) + " left"
+		return pace + ", " + duration(gone*(1-p.now.share)/share) + " left"
 	}
-	return speed
+	return pace
 }

@@ -41,6 +41,7 @@ func writeReport(w io.Writer, f *findings) error {
 		}
 	}
 	writeWarnings(&b, "study", f.comparison.Warnings)
+	writeOverview(&b, f)
 	writeCaution(&b, f)
 	_, err := io.WriteString(w, b.String())
 	return err
@@ -54,9 +55,9 @@ func writePoint(b *strings.Builder, p *finding) {
 	tail := fmt.Sprintf("point %d", p.point)
 	fmt.Fprintf(b, "%s%s%s\n", head, strings.Repeat(" ", max(2, pageWidth-len(head)-len(tail))), tail)
 	r := &p.result
-	line := fmt.Sprintf("%s from start %s, %s jumps", plural(p.trajectories, "trajectory"), p.start, count(p.jumps))
+	line := fmt.Sprintf("%s of %s from start %s, %s jumps", plural(p.trajectories, "trajectory"), shortest(p.span), p.start, count(p.jumps))
 	if p.seconds > 0 {
-		line += fmt.Sprintf(" in %s (%s/s)", duration(p.seconds), count(p.jumps/p.seconds))
+		line += fmt.Sprintf(" at %s", speed(p.jumps/p.seconds))
 	}
 	if r.EnergyPerSite.OK {
 		line += ", energy per site " + estimate(r.EnergyPerSite)
@@ -72,13 +73,76 @@ func writePoint(b *strings.Builder, p *finding) {
 	}
 	t.write(b, "  ")
 	writeSlowMode(b, &r.SlowMode)
-	for i := range r.Decay {
-		writeDecay(b, &r.Decay[i])
-	}
+	writeDecays(b, r.Decay)
 	for i := range r.Approach {
 		writeApproach(b, &r.Approach[i])
 	}
-	eachWarning(r, func(about string, w analysis.Warning) { writeWarning(b, about, w) })
+	writePointWarnings(b, r)
+}
+
+// writeOverview puts the slowest thing seen at each point side by side.
+func writeOverview(b *strings.Builder, f *findings) {
+	if len(f.points) < 2 {
+		return
+	}
+	b.WriteString("\nOverview\n")
+	t := newSheet("point", "beta", "size", "", "slowest observable", "tau_int", "slow mode", "1/gap", "xi", "!").text(2, 3, 4)
+	for i := range f.points {
+		p := &f.points[i]
+		r := &p.result
+		var others []string
+		for _, s := range p.scan {
+			others = append(others, s.name+" "+s.value)
+		}
+		name, tau := "", ""
+		slowest := -1
+		for k := range r.Observables {
+			if x := &r.Observables[k]; x.Integrated.OK && (slowest < 0 || x.Integrated.Value > r.Observables[slowest].Integrated.Value) {
+				slowest = k
+				name, tau = x.Name, estimate(x.Integrated)
+			}
+		}
+		xi, mark, warnings := "", "", 0
+		for k := range r.Decay {
+			if r.Decay[k].Xi.OK {
+				xi = estimate(r.Decay[k].Xi)
+				break
+			}
+		}
+		eachWarning(r, func(string, analysis.Warning) { warnings++ })
+		if warnings > 0 {
+			mark = strconv.Itoa(warnings)
+		}
+		if !r.Equilibrated {
+			mark += " not equilibrated"
+		}
+		slow := ""
+		if r.SlowMode.Tau.OK {
+			slow = estimate(r.SlowMode.Tau)
+		}
+		t.add(strconv.Itoa(p.point), shortest(p.beta), sizeText(p.size), strings.Join(others, ", "), name, tau, slow, gapBound(r), xi, mark)
+	}
+	t.write(b, "  ")
+}
+
+// gapBound is the best lower bound on 1/gap that a point gives.
+func gapBound(r *analysis.Result) string {
+	best := analysis.Bound{}
+	consider := func(x analysis.Bound) {
+		if x.OK && (!best.OK || x.Value > best.Value) {
+			best = x
+		}
+	}
+	// Only the bounds of the slow mode: the largest of several bounds at 95 %
+	// would not have that confidence.
+	consider(r.SlowMode.Bound)
+	if !best.OK {
+		consider(r.SlowMode.RayleighBound)
+	}
+	if !best.OK {
+		return ""
+	}
+	return bound(best)
 }
 
 // floorHead is the head of the column of intervals: the share of the variance
@@ -86,10 +150,10 @@ func writePoint(b *strings.Builder, p *finding) {
 func floorHead(r *analysis.Result) string {
 	for i := range r.Observables {
 		if o := &r.Observables[i]; o.SlowestInterval.OK {
-			return fmt.Sprintf("if it holds %s %%", shortest(100*o.WeightFloor))
+			return fmt.Sprintf("if weight > %s %%", shortest(100*o.WeightFloor))
 		}
 	}
-	return "if it holds"
+	return "if weight"
 }
 
 func writeSlowMode(b *strings.Builder, m *analysis.SlowMode) {
@@ -101,35 +165,50 @@ func writeSlowMode(b *strings.Builder, m *analysis.SlowMode) {
 		parts = append(parts, fmt.Sprintf("1/gap %s (%s %%)", bound(m.Bound), shortest(100*m.Bound.Confidence)))
 	}
 	if m.RayleighBound.OK {
-		parts = append(parts, fmt.Sprintf("by Rayleigh quotient %s", bound(m.RayleighBound)))
+		parts = append(parts, fmt.Sprintf("Rayleigh quotient %s", bound(m.RayleighBound)))
 	}
 	if len(parts) == 0 {
 		return
 	}
 	if len(m.Shares) > 0 {
-		shares := make([]string, len(m.Shares))
-		for i, s := range m.Shares {
-			shares[i] = s.Name + " " + strconv.FormatFloat(s.Value, 'f', 2, 64)
+		var shares []string
+		for _, s := range m.Shares {
+			if s.Value >= 0.01 {
+				shares = append(shares, s.Name+" "+strconv.FormatFloat(s.Value, 'f', 2, 64))
+			}
 		}
-		parts = append(parts, "seen by "+strings.Join(shares, ", "))
+		parts = append(parts, "made of "+strings.Join(shares, ", "))
 	}
 	writeNote(b, "slow mode", strings.Join(parts, "; "))
 }
 
-func writeDecay(b *strings.Builder, d *analysis.Decay) {
-	text := d.Of + " along " + axisName(d.Axis) + ": "
-	switch {
-	case d.NoDecay:
-		text += "no decay within the lattice"
-	case d.Xi.OK:
-		text += "xi " + estimate(d.Xi)
-	default:
-		text += "no xi"
+// writeDecays prints the correlation lengths of each family, axis by axis.
+func writeDecays(b *strings.Builder, list []analysis.Decay) {
+	for i := 0; i < len(list); {
+		j := i
+		var plain, second []string
+		for ; j < len(list) && list[j].Of == list[i].Of; j++ {
+			d := &list[j]
+			along := " along " + axisName(d.Axis)
+			switch {
+			case d.NoDecay:
+				plain = append(plain, "no decay"+along)
+			case d.Xi.OK:
+				plain = append(plain, "xi "+estimate(d.Xi)+along)
+			default:
+				plain = append(plain, "no xi"+along)
+			}
+			if d.SecondMoment.OK {
+				second = append(second, estimate(d.SecondMoment))
+			}
+		}
+		text := list[i].Of + ": " + strings.Join(plain, ", ")
+		if len(second) > 0 {
+			text += "; by second moment " + strings.Join(second, ", ")
+		}
+		writeNote(b, "in space", text)
+		i = j
 	}
-	if d.SecondMoment.OK {
-		text += ", by second moment " + estimate(d.SecondMoment)
-	}
-	writeNote(b, "in space", text)
 }
 
 func writeApproach(b *strings.Builder, a *analysis.Approach) {
@@ -196,6 +275,22 @@ func writeNote(b *strings.Builder, label, text string) {
 func writeWarnings(b *strings.Builder, about string, warnings []analysis.Warning) {
 	for _, w := range warnings {
 		writeWarning(b, about, w)
+	}
+}
+
+// writePointWarnings prints every warning about a point, those that say the same
+// of several things once.
+func writePointWarnings(b *strings.Builder, r *analysis.Result) {
+	var order []analysis.Warning
+	about := map[analysis.Warning][]string{}
+	eachWarning(r, func(what string, w analysis.Warning) {
+		if about[w] == nil {
+			order = append(order, w)
+		}
+		about[w] = append(about[w], what)
+	})
+	for _, w := range order {
+		writeWarning(b, strings.Join(about[w], ", "), w)
 	}
 }
 

@@ -72,7 +72,7 @@ func (c *console) run(o *options, args []string) error {
 	if err != nil {
 		return err
 	}
-	if err := archive.Check(path, m); err != nil {
+	if err := archive.Check(path, m, study.Source); err != nil {
 		return directoryError(err)
 	}
 	d, err := archive.Prepare(path, m, study.Source)
@@ -88,10 +88,6 @@ func (c *console) run(o *options, args []string) error {
 
 // work runs what this process can get hold of.
 func (c *console) work(o *options, d *archive.Dir, points []*prepared, share sharing.Share, workers int) (sharing.Outcome, error) {
-	jobs, err := jobPoints(d, points)
-	if err != nil {
-		return sharing.Outcome{}, err
-	}
 	ctx, stop := sharing.Interrupt(context.Background(), os.Exit)
 	defer stop()
 	var latest atomic.Pointer[sharing.Progress]
@@ -101,7 +97,7 @@ func (c *console) work(o *options, d *archive.Dir, points []*prepared, share sha
 		return tally{done: p.UnitsDone, total: p.Units, share: p.Done, jumps: p.Jumps}
 	})
 	job := sharing.Job{
-		Dir: d, Points: jobs, Workers: workers, Share: share,
+		Dir: d, Points: jobPoints(d, points), Workers: workers, Share: share, Host: host(),
 		Run: func(ctx context.Context, point, unit int, progress func(uint64)) (observables.Unit, error) {
 			return points[point].record(ctx, unit, o.audit, progress)
 		},
@@ -111,36 +107,37 @@ func (c *console) work(o *options, d *archive.Dir, points []*prepared, share sha
 	outcome, err := job.Work(ctx)
 	shown.finish()
 	var stopped *sharing.Interrupted
-	if errors.As(err, &stopped) {
-		return outcome, &failure{exitInterrupted, fmt.Errorf("%w; the same command goes on from what is in %s", err, d.Path())}
+	var broken *sharing.UnitError
+	switch {
+	case errors.As(err, &stopped):
+		return outcome, &failure{exitInterrupted, err}
+	case errors.As(err, &broken) && broken.Stack != nil:
+		fmt.Fprintf(c.stderr, "%s", broken.Stack)
 	}
 	return outcome, err
 }
 
+// host is the name under which this machine stands in receipts.
+func host() string {
+	name, err := os.Hostname()
+	if err != nil {
+		return ""
+	}
+	return name
+}
+
 // jobPoints are the points as the sharing of work sees them, numbered as in
 // points.
-func jobPoints(d *archive.Dir, points []*prepared) ([]sharing.Point, error) {
-	m := d.Manifest()
-	known := map[string]*archive.Point{}
-	for i := range m.Points {
-		known[m.Points[i].Key] = &m.Points[i]
-	}
+func jobPoints(d *archive.Dir, points []*prepared) []sharing.Point {
 	out := make([]sharing.Point, len(points))
 	for i, q := range points {
-		p := known[q.config.Key]
-		if p == nil {
-			return nil, fmt.Errorf("%s: the manifest lacks point %s", d.Path(), q.config.Key)
-		}
-		lead, err := leading(m, p)
-		if err != nil {
-			return nil, err
-		}
 		out[i] = sharing.Point{
-			Number: i, Key: p.Key, Count: q.config.Trajectory.Count, Extent: p.Extent, Cost: q.cost(), Lead: lead,
-			Stamp: archive.Receipt{Tool: release, Engine: q.config.Trajectory.EngineName, StreamRevision: kinetic.StreamRevision},
+			Number: i, Key: q.config.Key, Count: q.config.Trajectory.Count,
+			Extent: d.Manifest().Point(q.config.Key).Extent, Cost: q.cost(),
+			Stamp: archive.Receipt{Engine: q.config.Trajectory.EngineName, StreamRevision: kinetic.StreamRevision},
 		}
 	}
-	return out, nil
+	return out
 }
 
 // record runs one unit.
@@ -168,7 +165,7 @@ func (c *console) concludeRun(o *options, d *archive.Dir, outcome sharing.Outcom
 		return err
 	}
 	for _, l := range outcome.Left {
-		out.Left = append(out.Left, leftJSON{l.Part.Key, l.Part.First, l.Part.Units, l.Host, l.PID})
+		out.Left = append(out.Left, leftJSON{l.Key, l.First, l.Units, l.Holder.Host, l.Holder.PID})
 	}
 	if !out.Complete {
 		if o.json {
@@ -224,13 +221,13 @@ func unfinished(d *archive.Dir, o sharing.Outcome) string {
 	holders := []string{}
 	for _, l := range o.Left {
 		switch {
-		case l.Host != "":
+		case l.Held:
 			others++
-			who := fmt.Sprintf("%s (process %d)", l.Host, l.PID)
+			who := fmt.Sprintf("%s (process %d)", l.Holder.Host, l.Holder.PID)
 			if len(holders) == 0 || holders[len(holders)-1] != who {
 				holders = append(holders, who)
 			}
-		case l.Share:
+		case l.Other:
 			shares++
 		default:
 			free++

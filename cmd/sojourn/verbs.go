@@ -40,15 +40,15 @@ type options struct {
 	changed              func(name string) bool
 }
 
-// flag is one flag, as it stands in every verb that takes it.
-type flag struct {
+// option is one flag, as it stands in every verb that takes it.
+type option struct {
 	name, short string
 	value       string // what stands for its value in the help; "" for a switch
 	doc         string
 	target      func(o *options) any // *string, *int or *bool
 }
 
-var flags = []flag{
+var flags = []option{
 	{"out", "o", "DIR", "results directory (default: the study's name, in the working directory)",
 		func(o *options) any { return &o.out }},
 	{"task", "", "K", "do only share K of N, from 0; needs --tasks (default: what the batch system's array variables say, else everything)",
@@ -110,6 +110,15 @@ are printed all the same, with a warning.`,
 			do:       (*console).fit,
 		},
 		{
+			name: "exact", arguments: []argument{study}, flags: []string{"json"},
+			summary: "the same quantities without sampling, where the lattice is small",
+			about: `Enumerates the states that the jumps reach from the reference state, diagonalises the
+generator on them, and prints the gap and what run and fit estimate of each observable: a check
+on both. Lattices with more than 2048 such states are refused.`,
+			examples: []example{{"sojourn exact small.toml", "gap and relaxation times of a 3 x 3 lattice, say"}},
+			do:       (*console).exact,
+		},
+		{
 			name: "models", arguments: []argument{{name: "NAME", optional: true}}, flags: []string{"json"},
 			summary:  "the built-in Hamiltonians and their parameters",
 			about:    `Lists the built-in Hamiltonians, or describes one.`,
@@ -143,7 +152,7 @@ func verbNames() string {
 	return strings.Join(names, ", ")
 }
 
-func findFlag(name string) *flag {
+func findFlag(name string) *option {
 	for i := range flags {
 		if flags[i].name == name {
 			return &flags[i]

@@ -4,6 +4,8 @@ import (
 	"fmt"
 	"runtime"
 	"runtime/debug"
+
+	"sojourn/kinetic"
 )
 
 // release is the version of the program.
@@ -14,10 +16,13 @@ type versionJSON struct {
 	Revision string `json:"revision,omitempty"` // of the sources, if the build knows it
 	Go       string `json:"go"`
 	Platform string `json:"platform"`
+	Streams  int    `json:"stream_revision"`
+	Fits     int    `json:"fits_format"`
 }
 
 func (c *console) version(o *options, _ []string) error {
-	v := versionJSON{Version: release, Revision: revision(), Go: runtime.Version(), Platform: runtime.GOOS + "/" + runtime.GOARCH}
+	v := versionJSON{Version: release, Revision: revision(), Go: runtime.Version(), Platform: runtime.GOOS + "/" + runtime.GOARCH,
+		Streams: kinetic.StreamRevision, Fits: fitFormat}
 	if o.json {
 		return c.writeJSON(v)
 	}
@@ -25,7 +30,7 @@ func (c *console) version(o *options, _ []string) error {
 	if v.Revision != "" {
 		s += " (" + v.Revision + ")"
 	}
-	_, err := fmt.Fprintf(c.stdout, "%s\n%s, %s\n", s, v.Go, v.Platform)
+	_, err := fmt.Fprintf(c.stdout, "%s\n%s, %s\nrandom streams revision %d; format of fits %d\n", s, v.Go, v.Platform, v.Streams, v.Fits)
 	return err
 }
 
