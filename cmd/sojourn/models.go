@@ -17,12 +17,21 @@ type modelJSON struct {
 	MaxAxes    int             `json:"max_axes"`
 	Classical  bool            `json:"classical"`
 	Parameters []parameterJSON `json:"parameters"`
+	Operators  []operatorsJSON `json:"operators"`
 }
 
 type parameterJSON struct {
-	Name    string  `json:"name"`
-	Default float64 `json:"default"`
-	Doc     string  `json:"doc"`
+	Name    string   `json:"name"`
+	Default *float64 `json:"default,omitempty"`
+	Follows string   `json:"follows,omitempty"` // the parameter whose value is the default
+	MinAxes int      `json:"min_axes,omitempty"`
+	Doc     string   `json:"doc"`
+}
+
+type operatorsJSON struct {
+	Axes     int      `json:"axes"`
+	Families []string `json:"families"`
+	Tracked  []string `json:"tracked"`
 }
 
 // models lists the built-in Hamiltonians, or describes one.
@@ -44,9 +53,17 @@ func (c *console) models(o *options, args []string) error {
 			Models []modelJSON `json:"models"`
 		}{make([]modelJSON, len(list))}
 		for i, m := range list {
-			out.Models[i] = modelJSON{m.Name, m.Summary, m.Formula, m.Ground, m.Paper, m.MinAxes, m.MaxAxes, m.Classical, []parameterJSON{}}
+			out.Models[i] = modelJSON{m.Name, m.Summary, m.Formula, m.Ground, m.Paper, m.MinAxes, m.MaxAxes, m.Classical, []parameterJSON{}, []operatorsJSON{}}
 			for _, p := range m.Parameters {
-				out.Models[i].Parameters = append(out.Models[i].Parameters, parameterJSON{p.Name, p.Default, p.Doc})
+				json := parameterJSON{Name: p.Name, Follows: p.Follows, MinAxes: p.Axes, Doc: p.Doc}
+				if p.Follows == "" {
+					json.Default = &p.Default
+				}
+				out.Models[i].Parameters = append(out.Models[i].Parameters, json)
+			}
+			for axes := m.MinAxes; axes <= m.MaxAxes; axes++ {
+				families, tracked := m.Names(axes)
+				out.Models[i].Operators = append(out.Models[i].Operators, operatorsJSON{axes, families, tracked})
 			}
 		}
 		return c.writeJSON(out)
@@ -86,7 +103,22 @@ func describeModel(b *strings.Builder, m models.Model) {
 		if i > 0 {
 			name = ""
 		}
-		field(name, fmt.Sprintf("%s = %s  %s", p.Name, shortest(p.Default), p.Doc))
+		value := shortest(p.Default)
+		if p.Follows != "" {
+			value = p.Follows
+		}
+		field(name, fmt.Sprintf("%s = %s  %s", p.Name, value, p.Doc))
+	}
+	for n := m.MinAxes; n <= m.MaxAxes; n++ {
+		families, tracked := m.Names(n)
+		name := "families"
+		if m.MaxAxes > m.MinAxes {
+			name = fmt.Sprintf("on %d axes", n)
+			if n == 1 {
+				name = "on 1 axis"
+			}
+		}
+		field(name, strings.Join(families, ", ")+"; tracked: "+strings.Join(tracked, ", "))
 	}
 	field("ground", m.Ground)
 	field("source", m.Paper)

@@ -9,7 +9,7 @@ import (
 
 var cluster = Model{
 	Name:    "cluster",
-	Summary: "cluster Hamiltonian: X on each site with Z on its neighbours",
+	Summary: "X on each site with Z on its neighbours",
 	Formula: "H = -coupling sum_i X_i prod_<ij> Z_j; at open edges with the neighbours that are there",
 	Ground:  "1 ground state, the cluster state: no encoded qubit",
 	Paper:   "H. J. Briegel, R. Raussendorf, Phys. Rev. Lett. 86, 910 (2001)",

@@ -11,7 +11,7 @@ import (
 
 var colourCode = Model{
 	Name:    "colour-code",
-	Summary: "colour code on the honeycomb: qubits on the corners, products of X and of Z around each hexagon; three hexagons to a cell",
+	Summary: "qubits on the corners of a honeycomb, products of X and of Z around each hexagon; a cell is three hexagons, six qubits",
 	Formula: "H = -x sum_hexagons XXXXXX - z sum_hexagons ZZZZZZ",
 	Ground:  "4 encoded qubits on the torus",
 	Paper:   "H. Bombin, M. A. Martin-Delgado, Phys. Rev. Lett. 97, 180501 (2006)",

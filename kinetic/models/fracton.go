@@ -9,7 +9,7 @@ import (
 
 var xCube = Model{
 	Name:    "x-cube",
-	Summary: "X-cube code: qubits on the edges, products of X around the cubes, of Z on the crosses at each corner",
+	Summary: "qubits on the edges, X around each cube, Z on the three crosses at each corner",
 	Formula: "H = -cube sum_cubes X..X (12 edges) - cross sum_corners (ZZZZ in xy + in yz + in xz)",
 	Ground:  "6 L - 3 encoded qubits on the L x L x L torus, in general 2 (Lx + Ly + Lz) - 3",
 	Paper:   "S. Vijay, J. Haah, L. Fu, Phys. Rev. B 94, 235157 (2016)",
@@ -50,7 +50,7 @@ var xCube = Model{
 
 var cubicCode = Model{
 	Name:    "cubic-code",
-	Summary: "cubic code: two qubits on each corner, one product of X and one of Z for each cube; no operator on a string moves a defect",
+	Summary: "two qubits on each corner, one product of X and one of Z for each cube; no operator on a string moves a defect",
 	Formula: "H = -x sum_cubes X(1 + x + y + z; 1 + xy + yz + zx) - z sum_cubes Z(conjugates, qubits exchanged)",
 	Ground:  "k encoded qubits on the L x L x L torus, (k + 2)/4 the degree of gcd(1 + (1 + x)^L, 1 + (1 + wx)^L, 1 + (1 + w^2 x)^L) over the field {0, 1, w, w^2}",
 	Paper:   "J. Haah, Phys. Rev. A 83, 042330 (2011); Commun. Math. Phys. 324, 351 (2013)",

@@ -6,7 +6,7 @@ import (
 
 var isingGauge = Model{
 	Name:    "ising-gauge",
-	Summary: "Ising lattice gauge theory: spins on the edges, products of Z around the faces, no conservation imposed at the corners",
+	Summary: "spins on the edges, products of Z around the faces; flips around corners are not fixed",
 	Formula: "H = -coupling sum_faces ZZZZ",
 	Ground:  "2^(N - 1 + d) ground states on a torus of N cells in d dimensions: flips around corners and across the lattice cost nothing",
 	Paper:   "F. J. Wegner, J. Math. Phys. 12, 2259 (1971)",

@@ -7,8 +7,8 @@ import (
 
 var ising = Model{
 	Name:    "ising",
-	Summary: "Ising model: one spin per cell, nearest-neighbour bonds, uniform field",
-	Formula: "H = -sum_a coupling_a sum_<ij>a Z_i Z_j - next sum_<<ij>> Z_i Z_j - field sum_i Z_i; a: axis, <<ij>>: diagonals of the squares, on one axis second neighbours",
+	Summary: "one spin per cell, nearest-neighbour and diagonal bonds, uniform field",
+	Formula: "H = -sum_<ij> coupling_a Z_i Z_j - next sum_<<ij>> Z_i Z_j - field sum_i Z_i; <ij>: neighbours along axis a, <<ij>>: across the diagonals of squares, on one axis second neighbours",
 	Ground:  "2 ground states (all up, all down) if no coupling is negative and there is no field, 1 with a field",
 	Paper:   "E. Ising, Z. Phys. 31, 253 (1925)",
 	MinAxes: 1,

@@ -10,7 +10,7 @@ import (
 
 var squarePlaquette = Model{
 	Name:    "square-plaquette",
-	Summary: "square plaquette model: products of four spins around the squares, uniform field",
+	Summary: "one spin per cell, products of four around the squares, uniform field",
 	Formula: "H = -coupling sum_squares ZZZZ - field sum_i Z_i",
 	Ground:  "2^(Lx + Ly - 1) ground states on a torus without a field: rows and columns turn at no cost",
 	Paper:   "A. Lipowski, J. Phys. A 30, 7365 (1997)",
@@ -28,7 +28,7 @@ var squarePlaquette = Model{
 
 var trianglePlaquette = Model{
 	Name:    "triangular-plaquette",
-	Summary: "triangular plaquette model: products of three spins around the triangles of one orientation, uniform field",
+	Summary: "one spin per cell, products of three around the triangles of one orientation, uniform field",
 	Formula: "H = -coupling sum_triangles ZZZ - field sum_i Z_i, a triangle being a cell and its neighbours along x and y",
 	Ground:  "1 ground state on an L x L torus without a field if L is a power of 2; 2^d with d the degree of gcd((1 + x)^L + 1, x^L + 1) over two elements",
 	Paper:   "M. E. J. Newman, C. Moore, Phys. Rev. E 60, 5068 (1999)",

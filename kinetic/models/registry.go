@@ -41,3 +41,23 @@ func (m Model) checked(l lattice.Lattice, p Values) (Hamiltonian, error) {
 	}
 	return m.Build(l, m.Resolve(p))
 }
+
+// Names lists the families and tracked operators of the model on a periodic
+// lattice of n axes.
+func (m Model) Names(n int) (families, tracked []string) {
+	l, err := lattice.New([]int{3, 3, 3, 3}[:n], nil)
+	if err != nil {
+		panic(fmt.Sprintf("models: %v", err))
+	}
+	h, err := m.Build(l, nil)
+	if err != nil {
+		panic(fmt.Sprintf("models: %v", err))
+	}
+	for _, f := range h.Families {
+		families = append(families, f.Name)
+	}
+	for _, t := range h.Tracked {
+		tracked = append(tracked, t.Name)
+	}
+	return families, tracked
+}

@@ -7,8 +7,8 @@ import (
 
 var toricCode = Model{
 	Name:    "toric-code",
-	Summary: "toric code: products of X around what lies below its qubits, of Z around what lies above; qubits on edges, on 4 axes on faces",
-	Formula: "H = -star sum XX..X - plaquette sum ZZ..Z; stars: edges at a corner (faces at an edge), plaquettes: edges of a face (faces of a cube)",
+	Summary: "qubits on the edges, X around corners, Z around faces; on 4 axes qubits on the faces, X around edges, Z around cubes",
+	Formula: "H = -star sum XX..X - plaquette sum ZZ..Z; star: the edges at a corner (4 axes: the faces at an edge), plaquette: the edges of a face (the faces of a cube)",
 	Ground:  "2, 3 and 6 encoded qubits on the torus with 2, 3 and 4 axes",
 	Paper:   "A. Yu. Kitaev, Ann. Phys. 303, 2 (2003); E. Dennis, A. Kitaev, A. Landahl, J. Preskill, J. Math. Phys. 43, 4452 (2002)",
 	MinAxes: 2,
