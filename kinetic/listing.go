@@ -50,8 +50,12 @@ type token struct {
 // classes: every class has room for its count, for an equal part of n/4 more,
 // and for what a stretch and a jump add.
 func arenaSize(n, classes int) int {
-	return n + n/4 + n/256 + classes*(2+int(math.Sqrt(float64(n)))+touchesGuess)
+	return n + n/4 + n/256 + classes*(2+int(math.Sqrt(float64(n)))+touchesGuess+min(n, wholeRoom))
 }
+
+// wholeRoom is how many seats a class has room for whatever its share, so that
+// small lattices need never move their classes apart.
+const wholeRoom = 1 << 12
 
 // touchesGuess stands for the seats that a jump moves, in estimates.
 const touchesGuess = 64
@@ -66,7 +70,8 @@ func (l *listing) layOut(counts *[256]int) {
 	at := uint32(0)
 	for k := range l.rates {
 		l.first[k], l.end[k] = at, at
-		at += uint32(counts[k]+l.seats/4/len(l.rates)+l.touches) + slack(uint32(counts[k]))
+		room := max(counts[k]+l.seats/4/len(l.rates), min(l.seats, wholeRoom))
+		at += uint32(room+l.touches) + slack(uint32(counts[k]))
 		l.room[k] = at
 	}
 	l.arena = make([]uint32, at)
