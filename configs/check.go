@@ -63,6 +63,9 @@ func (d *decoder) checkTable(s *Section, t *node, model string) {
 		switch {
 		case slices.Contains(notYet, path):
 			d.fault(e.at, path, "is not supported by this version")
+		case path == "hamiltonian.model":
+			k, _ := s.find(e.name)
+			d.checkValue(k, e.value, path)
 		case s.Name == "hamiltonian" && model == "":
 			// Which keys are right depends on the model, and that is wrong.
 			e.value.bad = true
@@ -130,7 +133,7 @@ func (d *decoder) ofModel(e *entry, path, model string) bool {
 			owners = append(owners, m.Name)
 		}
 	}
-	if e.name == "model" || len(owners) == 0 || slices.Contains(owners, model) {
+	if len(owners) == 0 || slices.Contains(owners, model) {
 		return true
 	}
 	have := "has"

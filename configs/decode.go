@@ -48,7 +48,7 @@ func (d *decoder) readPoints(s *Study, root *node, combinations []combination) {
 	first := map[string]int{} // key -> combination
 	var filled [][]Setting
 	for i, c := range combinations {
-		r := &reading{d: d, root: root, scanned: c.values(), values: map[string]float64{}}
+		r := &reading{d: d, root: root, scanned: c.values(), values: map[string]Setting{}}
 		p, ok := r.point()
 		if !ok {
 			continue

@@ -13,11 +13,12 @@ type decoder struct {
 	seen   map[placeKey]bool
 	// meant holds the names of keys and tables that misspelt or misplaced ones
 	// were taken to mean, so that nothing complains that these are missing.
-	meant map[string]bool
+	meant    map[string]bool
+	compiled map[string]compiled // by spec
 }
 
 func newDecoder(src *source) *decoder {
-	return &decoder{src: src, seen: map[placeKey]bool{}, meant: map[string]bool{}}
+	return &decoder{src: src, seen: map[placeKey]bool{}, meant: map[string]bool{}, compiled: map[string]compiled{}}
 }
 
 // placed is a fault with its place as a byte offset.

@@ -57,45 +57,73 @@ func (r *reading) point() (p Point, ok bool) {
 	return p, true
 }
 
+// maxPlaces bounds the lattice that is compiled to check a point, so that a study
+// loads in seconds.
+const maxPlaces = 1 << 19
+
 // compile checks the point by compiling it, on a lattice that is no larger than
 // needed for every kind of neighbourhood to occur, and finds the largest rate.
 func (r *reading) compile(p *Point, h *hamiltonian, list []requested) {
-	changes := false
-	for _, b := range p.Spec.Bath {
-		if idle(b, h) {
-			r.d.note(r.section("bath").at, "bath", "%s changes no term and no tracked operator", b.Name)
-		} else {
-			changes = true
-		}
-	}
-	if !changes {
-		v := r.section("bath")
-		v.fault("couples", "no bath operator changes any term or tracked operator: nothing would ever happen")
-		return
-	}
 	small := p.Spec
 	small.Lattice = shortened(p.Spec)
-	g, err := kinetic.Compile(small)
+	if n := small.Lattice.Cells() * small.Sites; n > maxPlaces {
+		r.section("hamiltonian").fault("model", "the operators reach too far: %d surroundings of a site would have to be told apart; at most %d are", n, maxPlaces)
+		return
+	}
+	g, err := r.d.compile(small)
 	if err != nil {
 		r.refused(err, h, p.Spec.Lattice.Axes)
 		return
 	}
-	r.checkTerms(g, p.Covariance, list)
-	if p.MaxRate = g.MaxRate(); p.MaxRate == 0 {
-		r.section("bath").fault("law", "all rates are 0 here: nothing would ever happen")
+	bath := r.section("bath")
+	if !g.changes {
+		bath.fault("couples", "no bath operator changes any term or tracked operator on this lattice: nothing would ever happen")
+		return
 	}
+	for _, b := range p.Spec.Bath {
+		if idle(b, h) {
+			r.d.note(bath.at, "bath", "%s changes no term and no tracked operator", b.Name)
+		}
+	}
+	r.checkTerms(g, p.Covariance, list)
+	if p.MaxRate = g.maxRate; p.MaxRate == 0 {
+		bath.fault("law", "all rates are 0 here: nothing would ever happen")
+	}
+}
+
+// compiled is what the check of a point takes from a generator.
+type compiled struct {
+	families []kinetic.Family
+	lines    []kinetic.Line
+	maxRate  float64
+	changes  bool // whether any move changes anything
+}
+
+// compile compiles a spec, once if several points share it.
+func (d *decoder) compile(s kinetic.Spec) (compiled, error) {
+	key := fmt.Sprint(s)
+	if c, ok := d.compiled[key]; ok {
+		return c, nil
+	}
+	g, err := kinetic.Compile(s)
+	if err != nil {
+		return compiled{}, err
+	}
+	c := compiled{g.Families, g.Lines, g.MaxRate(), len(g.Touch)+len(g.Hits) > 0}
+	d.compiled[key] = c
+	return c, nil
 }
 
 // checkTerms refuses observables that have no term on the lattice, as happens
 // where operators are longer than open axes.
-func (r *reading) checkTerms(g *kinetic.Generator, c *Covariance, list []requested) {
+func (r *reading) checkTerms(g compiled, c *Covariance, list []requested) {
 	terms := func(name string) (n int) {
-		for i := range g.Families {
-			if g.Families[i].Name == name || g.Families[i].Group == name {
-				n += g.Families[i].Terms
+		for _, f := range g.families {
+			if f.Name == name || f.Group == name {
+				n += f.Terms
 			}
 		}
-		for _, l := range g.Lines {
+		for _, l := range g.lines {
 			if l.Name == name && (l.Exists == nil || slices.Contains(l.Exists, true)) {
 				n += l.Positions
 			}
@@ -133,36 +161,35 @@ func idle(b kinetic.BathOperator, h *hamiltonian) bool {
 }
 
 // shortened returns a lattice on which the same operators meet in the same ways
-// as on that of the spec: long axes are cut to a length at which nothing that
-// reaches one end of an operator's neighbourhood reaches the other, parity
-// kept.
+// as on that of the spec: long axes are cut to where a site's neighbourhood can
+// reach neither itself around the lattice nor both edges, parity kept.
 func shortened(s kinetic.Spec) lattice.Lattice {
 	l := s.Lattice
-	operators := []pauli.Operator{}
-	for _, f := range s.Families {
-		operators = append(operators, f.Operator)
-	}
-	for _, t := range s.Tracked {
-		operators = append(operators, t.Operator)
-	}
 	for a, n := range l.Size {
-		low, high := 0, 0
-		for _, op := range operators {
-			for _, f := range op.Factors() {
-				low, high = min(low, f.Exp[a]), max(high, f.Exp[a])
-			}
+		reach := 0
+		for _, f := range s.Families {
+			reach = max(reach, length(f.Operator, a))
 		}
-		// A seat feels terms at most one span away, and through them seats one
-		// span further; at open edges what these lack, once more each way.
-		enough := 4*(high-low) + 3
-		if l.Open[a] {
-			enough = 8*(high-low) + 3
+		for _, t := range s.Tracked {
+			reach = max(reach, length(t.Operator, a))
 		}
+		// A site feels terms one reach away, and at open edges what these lack
+		// one reach further, on either side.
+		enough := 4*reach + 3
 		if n > enough+1 {
 			l.Size[a] = enough + (n-enough)%2
 		}
 	}
 	return l
+}
+
+// length is how far an operator extends along an axis, its own cell included.
+func length(op pauli.Operator, axis int) int {
+	low, high := 0, 0
+	for _, f := range op.Factors() {
+		low, high = min(low, f.Exp[axis]), max(high, f.Exp[axis])
+	}
+	return high - low
 }
 
 // refused reports an error of the compiler at the place that causes it.
@@ -231,10 +258,8 @@ func (h *hamiltonian) notCommuting(e *kinetic.NotCommuting, axes int) string {
 func (r *reading) settings(scanned []string, p *Point) []Setting {
 	var out []Setting
 	for _, name := range scanned {
-		s := Setting{Name: name, Numbers: []float64{r.values[name]}}
-		s.Value = formatNumber(s.Numbers[0])
+		s := r.values[name]
 		if name == "lattice.size" {
-			s.Numbers = nil
 			var words []string
 			for _, n := range p.Spec.Lattice.Lengths() {
 				s.Numbers = append(s.Numbers, float64(n))
@@ -242,6 +267,7 @@ func (r *reading) settings(scanned []string, p *Point) []Setting {
 			}
 			s.Value = "[" + strings.Join(words, ", ") + "]"
 		}
+		s.Name = name
 		out = append(out, s)
 	}
 	return out

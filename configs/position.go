@@ -53,13 +53,14 @@ func insideString(raw []byte, at, i int) int {
 			}
 		}
 	}
-	for j < end && i > 0 {
-		if raw[j] != '\\' || quote == '\'' {
-			j++
-			i--
-			continue
+	for j < end {
+		read, wrote := 1, 1
+		if raw[j] == '\\' && quote == '"' {
+			read, wrote = escapeLength(raw[j:end])
 		}
-		read, wrote := escapeLength(raw[j:end])
+		if i <= 0 && wrote > 0 {
+			break
+		}
 		j += read
 		i -= wrote
 	}

@@ -141,6 +141,7 @@ func (v view) law(base view, beta float64) (bath.Law, bool) {
 	number := func(key string, into *float64) {
 		if n, found := from(key).find(key); found {
 			*into = n.number
+			v.took(key, n.number)
 			from(key).took(key, n.number)
 			ok = ok && !n.bad
 		}
@@ -148,6 +149,7 @@ func (v view) law(base view, beta float64) (bath.Law, bool) {
 	if takes["rate"] {
 		law.Rate = 1
 		base.took("rate", 1)
+		v.took("rate", 1)
 		if !v.has("rate") && !base.has("rate") {
 			base.fillOnce("rate", "1")
 		}

@@ -11,7 +11,7 @@ type reading struct {
 	d        *decoder
 	root     *node
 	scanned  map[target]*node
-	values   map[string]float64 // every number that was read, by dotted name
+	values   map[string]Setting // every number that was read, by dotted name
 	defaults []Setting
 	failed   bool
 }
@@ -159,11 +159,18 @@ func (v view) number(key string) (x float64, ok bool) {
 }
 
 // took remembers a number for the columns of scanned parameters.
-func (v view) took(key string, x float64) { v.r.values[join(v.label, key)] = x }
+func (v view) took(key string, x float64) {
+	v.r.values[join(v.label, key)] = Setting{Value: formatNumber(x + 0), Numbers: []float64{x + 0}}
+}
+
+// tookInteger keeps all digits.
+func (v view) tookInteger(key string, i int64) {
+	v.r.values[join(v.label, key)] = Setting{Value: strconv.FormatInt(i, 10), Numbers: []float64{float64(i)}}
+}
 
 func (v view) integer(key string) (int64, bool) {
 	if n, found := v.find(key); found {
-		v.took(key, n.number)
+		v.tookInteger(key, n.integer)
 		return n.integer, !n.bad
 	}
 	k, _ := v.section.find(key)
@@ -171,7 +178,7 @@ func (v view) integer(key string) (int64, bool) {
 	if err != nil {
 		return 0, false
 	}
-	v.took(key, float64(i))
+	v.tookInteger(key, i)
 	v.fill(key, k.Default)
 	return i, true
 }
