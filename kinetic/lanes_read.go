@@ -1,0 +1,259 @@
+package kinetic
+
+// LaneWords is what an engine offers whose lanes are the bits of words: bit l
+// of a word belongs to lane l.
+type LaneWords interface {
+	Engine
+	// Words writes the levels of a family's terms by cell, or those of line l for
+	// family = len(Families)+l by position; 0 where there is none.
+	Words(family int, dst []uint64)
+	// SlotWords writes the levels that slots[i] of the seat at addresses[i] shows.
+	SlotWords(addresses []int32, slots []uint8, dst []uint64)
+}
+
+// stretch is a run of cells in a row that lie in the same zone.
+type stretch struct {
+	col, n int
+	zone   uint32 // relative to the row's
+}
+
+// stretches divides a row into runs of equal zone.
+func (p *lanePlan) stretches() []stretch {
+	var out []stretch
+	for col, zone := range p.zoneCol {
+		if k := len(out) - 1; k >= 0 && out[k].zone == zone {
+			out[k].n++
+			continue
+		}
+		out = append(out, stretch{col, 1, zone})
+	}
+	return out
+}
+
+// wordsOf lists the differences of a range.
+func (p *lanePlan) wordsOf(l wordList) []int32 { return p.words[l.first:l.last] }
+
+// Sums counts words and remembers what it found until the state changes.
+func (e *lanes) Sums(dst []int64) []int64 {
+	e.count()
+	return append(dst, e.sums...)
+}
+
+// count brings sums up to date.
+func (e *lanes) count() {
+	if e.fresh {
+		return
+	}
+	e.fresh = true
+	g, p := e.plan.g, e.plan
+	width := len(g.Families) + len(g.Lines)
+	for lane := range lanesPerWord {
+		copy(e.sums[lane*width:], p.still)
+	}
+	var c laneCounter
+	for f := range g.Families {
+		e.countFamily(f, &c)
+		c.addTo(e.sums[f:], width, -2)
+	}
+	for l, line := range g.Lines {
+		c.addOne(e.words[p.layout.lines[l]:], 1, line.Positions)
+		c.addTo(e.sums[len(g.Families)+l:], width, -2)
+	}
+}
+
+// countFamily counts the terms of a family at level 1.
+func (e *lanes) countFamily(f int, c *laneCounter) {
+	p := e.plan
+	planes := p.layout.planes
+	if !p.layout.flips {
+		if w := p.layout.level[f]; w >= 0 {
+			c.addOne(e.words[w:], planes, p.g.Cells())
+		}
+		return
+	}
+	e.eachStretch(f, func(base, n int, words []int32) {
+		c.add(e.words, base, planes, n, words)
+	})
+}
+
+// eachStretch calls visit for runs of cells in which a seat stands for a term of
+// family f: the words of the term, as differences from the first word of a cell,
+// the first of which is at base.
+func (e *lanes) eachStretch(f int, visit func(base, n int, words []int32)) {
+	p := e.plan
+	seats := len(p.g.Seats)
+	base := 0
+	for _, zr := range p.zoneRow {
+		for _, s := range p.runs {
+			for _, ref := range p.g.Families[f].Slots {
+				place := &p.places[int(zr+s.zone)*seats+ref.Seat]
+				if place.own>>ref.Slot&1 != 0 {
+					visit(base, s.n, p.wordsOf(p.slots[int(place.first)+ref.Slot]))
+				}
+			}
+			base += s.n * p.layout.planes
+		}
+	}
+}
+
+// Energy is the total energy of a lane.
+func (e *lanes) Energy(lane int) float64 {
+	e.count()
+	g := e.plan.g
+	sums := e.sums[lane*(len(g.Families)+len(g.Lines)):]
+	sum := 0.0
+	for f, fam := range g.Families {
+		if fam.Energy != nil {
+			sum += fam.Energy[0] * float64(sums[f])
+		}
+	}
+	return sum
+}
+
+// Census counts seats by shape and pattern, over all lanes.
+func (e *lanes) Census(dst []int64) {
+	p := e.plan
+	seats := len(p.g.Seats)
+	base := 0
+	for _, zr := range p.zoneRow {
+		for _, s := range p.runs {
+			for seat := range seats {
+				e.countSeats(&p.places[int(zr+s.zone)*seats+seat], base, s.n, dst)
+			}
+			base += s.n * p.layout.planes
+		}
+	}
+}
+
+// countSeats counts the patterns of a run of seats in one place.
+func (e *lanes) countSeats(place *lanePlace, base, n int, dst []int64) {
+	p := e.plan
+	dst = dst[int(place.shape)<<p.g.Bits:][:1<<p.g.Bits]
+	present := slotsOf(p.g.Shapes[place.shape].Present)
+	var words [MaxBits]uint64
+	var few patternCounter
+	few.all[0] = ^uint64(0)
+	for range n {
+		if len(present) <= subsetWords {
+			for i, b := range present {
+				words[i] = e.slot(place, b, int32(base))
+			}
+			few.add(words[:len(present)])
+		} else {
+			for b := range place.slots {
+				words[b] = e.slot(place, b, int32(base))
+			}
+			countLanes(words[:place.slots], dst)
+		}
+		base += p.layout.planes
+	}
+	if len(present) <= subsetWords {
+		few.addTo(dst, present)
+	}
+}
+
+// Words writes the levels of a family's terms, or of a line, in all lanes.
+func (e *lanes) Words(family int, dst []uint64) {
+	p := e.plan
+	g := p.g
+	if l := family - len(g.Families); l >= 0 {
+		copy(dst, e.words[p.layout.lines[l]:][:g.Lines[l].Positions])
+		return
+	}
+	clear(dst)
+	e.eachTerm(family, func(cell int, w uint64) { dst[cell] = w })
+	if g.Reference != nil {
+		for c, s := range g.Reference[family] {
+			if s == 1 && p.layout.level[family] < 0 && g.TermExists(family, c) {
+				dst[c] = ^uint64(0)
+			}
+		}
+	}
+}
+
+// eachTerm calls visit for every term of a family that has words.
+func (e *lanes) eachTerm(f int, visit func(cell int, w uint64)) {
+	p := e.plan
+	if !p.layout.flips {
+		if p.layout.level[f] < 0 {
+			return
+		}
+		for c := range p.g.Cells() {
+			if p.g.TermExists(f, c) {
+				visit(c, e.words[p.layout.term(f, p.g.Lattice.Coord(c), 0)[0]])
+			}
+		}
+		return
+	}
+	e.eachSeat(func(base int32, seat int, place *lanePlace, _ []zonedMove, _, _ int) {
+		for _, b := range slotsOf(place.own) {
+			slot := p.g.Seats[seat].Slots[b]
+			if slot.Family == f {
+				t, _ := p.g.Lattice.Wrap(p.g.Lattice.Coord(int(base)/p.layout.planes), slot.Offset)
+				visit(p.g.Lattice.Index(t), e.slot(place, b, base))
+			}
+		}
+	})
+}
+
+// SlotWords writes what slots show.
+func (e *lanes) SlotWords(addresses []int32, slots []uint8, dst []uint64) {
+	p := e.plan
+	seats := len(p.g.Seats)
+	cols := int(p.cols)
+	for i, a := range addresses {
+		cell, seat := int(a)/seats, int(a)%seats
+		zone := int(p.zoneRow[cell/cols] + p.zoneCol[cell%cols])
+		dst[i] = e.slot(&p.places[zone*seats+seat], int(slots[i]), int32(cell*p.layout.planes))
+	}
+}
+
+// Terms writes the levels of one lane.
+func (e *lanes) Terms(family, lane int, dst []uint8) {
+	g := e.plan.g
+	words := make([]uint64, len(dst))
+	e.Words(family, words)
+	l := family - len(g.Families)
+	for i, w := range words {
+		dst[i] = uint8(w >> lane & 1)
+		switch {
+		case l < 0 && g.Families[family].Terms < g.Cells() && !g.TermExists(family, i),
+			l >= 0 && g.Lines[l].Exists != nil && !g.Lines[l].Exists[i]:
+			dst[i] = Absent
+		}
+	}
+}
+
+// Patterns writes the pattern of every address in one lane.
+func (e *lanes) Patterns(lane int, dst []uint16) {
+	p := e.plan
+	seats := len(p.g.Seats)
+	base := 0
+	for _, zr := range p.zoneRow {
+		for _, s := range p.runs {
+			first := base / p.layout.planes * seats
+			for seat := range seats {
+				e.readPatterns(&p.places[int(zr+s.zone)*seats+seat], base, s.n, lane, dst[first+seat:])
+			}
+			base += s.n * p.layout.planes
+		}
+	}
+}
+
+// readPatterns writes the patterns of a run of seats in one place.
+func (e *lanes) readPatterns(place *lanePlace, base, n, lane int, dst []uint16) {
+	p := e.plan
+	seats, planes := len(p.g.Seats), p.layout.planes
+	for i := range n {
+		dst[i*seats] = 0
+	}
+	for b := range place.slots {
+		for _, d := range p.wordsOf(p.slots[int(place.first)+b]) {
+			at := base + int(d)
+			for i := range n {
+				dst[i*seats] ^= uint16(e.words[at]>>lane&1) << b
+				at += planes
+			}
+		}
+	}
+}
