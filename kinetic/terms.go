@@ -60,12 +60,10 @@ func (s Spec) AppendTerm(dst []SiteFactor, o pauli.Operator, cut Cut, cell int) 
 		}
 		run[a]++
 	}
-	if !inside && !(len(o.X) == 0 && len(o.Z) == 0) {
+	if !inside && !isIdentity(o) {
 		// Nothing of the operator is left, which is not the same as factors
-		// that cancel. The zero operator is a constant everywhere.
-		if !isZero(o) {
-			return dst[:start], false
-		}
+		// that cancel.
+		return dst[:start], false
 	}
 	return dst[:start+len(fold(dst[start:], s.Levels))], true
 }
@@ -97,7 +95,8 @@ func (s Spec) appendFactors(dst []SiteFactor, o pauli.Operator, at lattice.Offse
 	return dst, complete, some
 }
 
-func isZero(o pauli.Operator) bool {
+// isIdentity reports whether all polynomials of o are 0.
+func isIdentity(o pauli.Operator) bool {
 	for _, list := range [2][]pauli.Polynomial{o.X, o.Z} {
 		for _, p := range list {
 			if len(p) > 0 {
