@@ -38,7 +38,7 @@ func (r *reading) bath(sites int) (beta float64, operators []kinetic.BathOperato
 	if v.has("couples") {
 		v.refuse("couples", "stands beside [[bath.operator]] tables, which say it one by one: leave it out")
 	}
-	taken := map[string]bool{}
+	var taken []string
 	for _, o := range own {
 		name, ok := o.word("on")
 		if !ok && !o.has("on") {
@@ -49,9 +49,7 @@ func (r *reading) bath(sites int) (beta float64, operators []kinetic.BathOperato
 		if op.Law, ok = o.law(v, beta); ok {
 			operators = append(operators, op)
 		}
-		for _, key := range lawTakes[lawName(o, v)] {
-			taken[key] = true
-		}
+		taken = append(taken, lawTakes[lawName(o, v)]...)
 	}
 	if !slices.ContainsFunc(own, func(o view) bool { return lawName(o, v) == "" }) {
 		v.refuseForeign(taken, "no bath operator here has such a law")
@@ -125,66 +123,76 @@ func (v view) law(base view, beta float64) (bath.Law, bool) {
 	if !v.has("law") && !base.has("law") {
 		base.fillOnce("law", `"heat-bath"`)
 	}
-	takes := map[string]bool{}
-	for _, key := range lawTakes[name] {
-		takes[key] = true
-	}
-	v.refuseForeign(takes, "the law here is "+name)
-	from := func(key string) view {
-		if v.has(key) || !base.has(key) {
-			return v
-		}
-		return base
-	}
+	v.refuseForeign(lawTakes[name], "the law here is "+name)
 	law := bath.Law{Kind: bath.Kind(name)}
 	ok := true
-	number := func(key string, into *float64) {
-		if n, found := from(key).find(key); found {
-			*into = n.number
-			v.took(key, n.number)
-			from(key).took(key, n.number)
-			ok = ok && !n.bad
-		}
-	}
-	if takes["rate"] {
-		law.Rate = 1
-		base.took("rate", 1)
-		v.took("rate", 1)
-		if !v.has("rate") && !base.has("rate") {
-			base.fillOnce("rate", "1")
-		}
-		number("rate", &law.Rate)
-	}
 	switch name {
+	case "table":
+		ok = v.readTable(v.or(base, "energies"), v.or(base, "rates"), &law)
 	case "ohmic":
 		law.Kind, law.Exponent = bath.Power, 1
+		ok = v.positiveBeta()
 	case "power":
-		number("exponent", &law.Exponent)
-		if !from("exponent").has("exponent") {
+		ok = v.positiveBeta()
+		if !v.or(base, "exponent").has("exponent") {
 			v.need("exponent", "a power law needs its p, at least 1 (law = \"ohmic\" for p = 1)")
 			ok = false
 		}
 	}
-	if takes["cutoff"] {
-		number("cutoff", &law.Cutoff)
-	}
-	if law.Kind == bath.Power && beta == 0 {
-		b := v.r.section("bath")
-		if b.has("beta") {
-			b.fault("beta", "is 0, where a power law has no finite rates: it must be positive")
-			ok = false
-		}
-	}
-	if name == "table" {
-		ok = v.readTable(from("energies"), from("rates"), &law) && ok
-	}
-	if ok {
-		if err := law.Validate(beta); err != nil && !v.r.failed {
-			from("law").fault("law", "%s", strings.ReplaceAll(err.Error(), "\n", "; "))
-			ok = false
-		}
+	ok = v.lawNumbers(base, name, &law) && ok
+	if err := law.Validate(beta); ok && err != nil && !v.r.failed {
+		v.or(base, "law").fault("law", "%s", strings.ReplaceAll(err.Error(), "\n", "; "))
+		ok = false
 	}
 	return law, ok
+}
+
+// or is the table that a key is taken from: v, or base if only that has it.
+func (v view) or(base view, key string) view {
+	if v.has(key) || !base.has(key) {
+		return v
+	}
+	return base
+}
+
+// lawNumbers reads the single numbers that a law takes.
+func (v view) lawNumbers(base view, name string, law *bath.Law) bool {
+	ok := true
+	for _, x := range []struct {
+		key  string
+		into *float64
+	}{{"rate", &law.Rate}, {"exponent", &law.Exponent}, {"cutoff", &law.Cutoff}} {
+		if !slices.Contains(lawTakes[name], x.key) {
+			continue
+		}
+		from := v.or(base, x.key)
+		n, found := from.find(x.key)
+		switch {
+		case found:
+			*x.into = n.number
+			ok = ok && !n.bad
+		case x.key == "rate":
+			*x.into = 1
+			base.fillOnce("rate", "1")
+			from = base
+		default:
+			continue
+		}
+		v.took(x.key, *x.into)
+		from.took(x.key, *x.into)
+	}
+	return ok
+}
+
+// positiveBeta refuses a power law at infinite temperature.
+func (v view) positiveBeta() bool {
+	b := v.r.section("bath")
+	n, found := b.find("beta")
+	if !found || n.bad || n.number != 0 {
+		return true
+	}
+	b.fault("beta", "is 0, where a power law has no finite rates: it must be positive")
+	return false
 }
 
 // readTable reads the energies and rates of a table.
@@ -225,9 +233,9 @@ func (v view) readTable(energies, rates view, law *bath.Law) bool {
 }
 
 // refuseForeign reports keys of laws other than those in use.
-func (v view) refuseForeign(takes map[string]bool, why string) {
+func (v view) refuseForeign(takes []string, why string) {
 	for _, key := range lawParameters {
-		if v.has(key) && !takes[key] {
+		if v.has(key) && !slices.Contains(takes, key) {
 			var owners []string
 			for _, name := range laws {
 				if slices.Contains(lawTakes[name], key) {
