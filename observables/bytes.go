@@ -7,8 +7,8 @@ import (
 )
 
 // Bytes returns the memory that [Record] takes for a unit with the given number
-// of lanes, beyond the engine's own, rows included; to within a few per cent
-// and some kilobytes. It grows with the logarithm of the number of samples. The
+// of lanes, beyond the engine's own, rows included; an estimate on the high
+// side, by less than a half. It grows with the logarithm of the number of samples. The
 // main parts are, on a lattice with N seats,
 //
 //	2 N                          patterns, if an observable or snapshot reads them
@@ -61,7 +61,7 @@ func Bytes(g *kinetic.Generator, obs []Observable, pairs [][2]int, plan Plan, la
 			total += int64(len(families)) * spatialBytes(g, plan.Limit)
 		}
 	}
-	return total
+	return total + total/4 + 1<<15 // what slices grow beyond their need, small parts
 }
 
 func planeBytes(g *kinetic.Generator) int64 {
@@ -72,6 +72,9 @@ func planeBytes(g *kinetic.Generator) int64 {
 
 // spatialBytes is the memory for the covariance of one family.
 func spatialBytes(g *kinetic.Generator, limit int) int64 {
+	if g.Lattice.Axes == 1 {
+		limit = max(limit, chainLimit)
+	}
 	n := int64(1)
 	var planes int64
 	for a := range g.Lattice.Axes {

@@ -92,9 +92,12 @@ func newOpenLocal(g *kinetic.Generator, pair int, chosen []chosenTerm) openLocal
 
 // add takes in the present state of all lanes.
 func (d *dirichlet) add(segment int) {
+	n := len(d.pairs)
+	if n == 0 {
+		return
+	}
 	clear(d.census)
 	d.e.Census(d.census)
-	n := len(d.pairs)
 	sums := d.sums[segment*n:][:n]
 	for entry, seats := range d.census {
 		if seats == 0 {

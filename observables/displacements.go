@@ -6,14 +6,21 @@ import (
 	"sojourn/kinetic/lattice"
 )
 
+// chainLimit is the distance up to which every distance is taken along a lattice
+// with one axis, whose planes are single terms.
+const chainLimit = 1024
+
 // displacements returns the displacements at which the covariance in space is
 // taken, in increasing order (lattice.Offset.Less): all with every component up
 // to limit, and along each axis up to the longest that means something, by 1 up
 // to 32 and then 16 to the octave. Components go up to half the length of a
 // periodic axis, and to length-1 along an open one. Of d and -d, which have the
 // same covariance, the one whose last component that is not 0 is positive is
-// taken.
+// taken. On a lattice with one axis the limit is at least chainLimit.
 func displacements(l lattice.Lattice, limit int) []lattice.Offset {
+	if l.Axes == 1 {
+		limit = max(limit, chainLimit)
+	}
 	var lo, hi lattice.Offset
 	for a := range l.Axes {
 		reach := longest(l, a)

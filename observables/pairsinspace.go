@@ -14,10 +14,12 @@ type pointPairs struct {
 	l      lattice.Lattice
 	d      []lattice.Offset
 	plane  *termPlane
-	whole  bool // no edges and no absent terms
-	moved  *bitPlane
-	here   *bitPlane  // presence, shifted by the same
+	whole  bool       // no edges and no absent terms
+	groups [][]int    // displacements with the same component along the rows
 	totals []pairSumI // by displacement, over snapshots
+
+	rows, present *longRows // of terms and of their presence
+	moved, here   *bitPlane // shifted
 }
 
 // pairSumI are counts over pairs: how many, and in how many the first, the
@@ -30,12 +32,18 @@ func newPointPairs(l lattice.Lattice, plane *termPlane, d []lattice.Offset) *poi
 		p.words = make([]uint64, len(plane.words))
 		return &p
 	}
-	return &pointPairs{
-		l: l, d: d, plane: plane,
-		whole: l.Periodic() && plane.terms == int64(l.Cells()),
-		moved: blank(), here: blank(),
+	p := &pointPairs{
+		l: l, d: d, plane: plane, groups: byFirst(d),
+		whole:  l.Periodic() && plane.terms == int64(l.Cells()),
 		totals: make([]pairSumI, len(d)),
+		rows:   newLongRows(plane.bitPlane, l.Open[0]),
+		moved:  blank(),
 	}
+	if !p.whole {
+		p.present, p.here = newLongRows(plane.bitPlane, l.Open[0]), blank()
+		p.present.fill(plane.present)
+	}
+	return p
 }
 
 // add takes in the plane as it was last read.
@@ -43,11 +51,12 @@ func (p *pointPairs) add() {
 	ones := p.plane.count()
 	// The planes are shifted once for all displacements with one component
 	// along the rows.
-	for _, group := range byFirst(p.d) {
+	p.rows.fill(p.plane.bitPlane)
+	for _, group := range p.groups {
 		dx := p.d[group[0]][0]
-		p.moved.shift(p.plane.bitPlane, dx, p.l.Open[0])
+		p.moved.shift(p.rows, dx)
 		if !p.whole {
-			p.here.shift(p.plane.present, dx, p.l.Open[0])
+			p.here.shift(p.present, dx)
 		}
 		for _, i := range group {
 			t := &p.totals[i]
@@ -78,24 +87,55 @@ func byFirst(d []lattice.Offset) [][]int {
 	return groups
 }
 
-// shift fills p with q moved along its rows: bit x of p is bit x + dx of q, 0
-// beyond an open edge.
-func (p *bitPlane) shift(q *bitPlane, dx int, open bool) {
-	clear(p.words)
-	n := q.length
-	if !open {
-		dx = ((dx % n) + n) % n
+// shift fills p with the plane under rows, moved along its rows: bit x of p is bit
+// x + dx of it, 0 beyond an open edge.
+func (p *bitPlane) shift(rows *longRows, dx int) {
+	from := rows.origin + dx
+	if from < 0 {
+		from += p.length
 	}
-	for r := range q.rows {
-		to, from := p.row(r), q.row(r)
-		switch {
-		case dx >= 0:
-			copyBits(to, 0, from, dx, n-dx)
-			if !open {
-				copyBits(to, n-dx, from, 0, dx)
-			}
-		default:
-			copyBits(to, -dx, from, 0, n+dx)
+	word, bit := from/64, uint(from&63)
+	for r := range p.rows {
+		to, src := p.row(r), rows.row(r)[word:]
+		src = src[:len(to)+1]
+		for i := range to {
+			// A shift by 64 gives 0.
+			to[i] = src[i]>>bit | src[i+1]<<(64-bit)
+		}
+		to[len(to)-1] &= rows.last
+	}
+}
+
+// longRows holds the rows of a plane so that a moved row is a stretch of it: each
+// row twice on a periodic axis, between two rows of zeros on an open one.
+type longRows struct {
+	open   bool
+	origin int // bit of a row where x = 0 stands
+	stride int
+	last   uint64 // mask of the last word of a plane's row
+	words  []uint64
+}
+
+func newLongRows(p *bitPlane, open bool) *longRows {
+	l := &longRows{open: open, last: ^uint64(0) >> (-p.length & 63)}
+	length := 2 * p.length
+	if open {
+		l.origin = p.length
+		length += p.length
+	}
+	l.stride = length/64 + 2
+	l.words = make([]uint64, p.rows*l.stride)
+	return l
+}
+
+func (l *longRows) row(r int) []uint64 { return l.words[r*l.stride:][:l.stride] }
+
+func (l *longRows) fill(p *bitPlane) {
+	clear(l.words)
+	for r := range p.rows {
+		copyBits(l.row(r), l.origin, p.row(r), 0, p.length)
+		if !l.open {
+			copyBits(l.row(r), p.length, p.row(r), 0, p.length)
 		}
 	}
 }

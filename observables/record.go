@@ -205,10 +205,10 @@ func (r *recorder) sample(k int64) {
 // dirichletStride returns every how many samples the Dirichlet forms are
 // taken: a power of two, so that they are at least the inverse of the largest
 // rate of a bath operator apart, and that, at the activity seen while settling,
-// an eighth of the seats jump in between (a census costs about as much as the
-// jumps of one seat in a hundred); but at least 64 times in each segment, if
-// there are so many samples. It is fixed before the first sample is taken, so
-// it does not select states.
+// there are half as many jumps as seats in between (a census costs about as much
+// as a jump for every 25 seats); but at least 64 times in each segment, if there
+// are so many samples. It is fixed before the first sample is taken, so it does
+// not select states.
 func (r *recorder) dirichletStride() int64 {
 	var fastest float64
 	for i := range r.g.Shapes {
@@ -220,7 +220,7 @@ func (r *recorder) dirichletStride() int64 {
 	}
 	apart := 1 / fastest
 	if jumps := float64(r.e.Jumps()) / float64(r.lanes); r.plan.Settle > 0 && jumps > 0 {
-		apart = math.Max(apart, float64(r.g.Addresses())/8*r.plan.Settle/jumps)
+		apart = math.Max(apart, float64(r.g.Addresses())/2*r.plan.Settle/jumps)
 	}
 	most := max(1, r.plan.Samples()/(64*PairSegments))
 	samples := math.Min(math.Ceil(apart/r.plan.Step), float64(most))

@@ -8,9 +8,9 @@ import (
 // spatial takes the covariance in space of one or more families from snapshots:
 // of pairs of terms at [displacements], and of plane sums along each axis in use,
 // at distances up to half the length of a periodic axis and length-1 of an
-// open one (at most MaxDistance). With several lanes each snapshot is of one
-// lane, in rotation. Near an open edge covariances differ from those inside;
-// all pairs that fit are counted.
+// open one (at most MaxDistance, or chainLimit where the planes are single terms).
+// With several lanes each snapshot is of one lane, in rotation. Near an open
+// edge covariances differ from those inside; all pairs that fit are counted.
 type spatial struct {
 	g         *kinetic.Generator
 	families  []int
@@ -28,6 +28,9 @@ func newSpatial(g *kinetic.Generator, families []int, limit int) *spatial {
 		s.points = append(s.points, newPointPairs(g.Lattice, plane, d))
 		var axes []*planePairs
 		for a := range g.Lattice.Axes {
+			if g.Lattice.Axes == 1 {
+				break // its planes are the terms
+			}
 			axes = append(axes, newPlanePairs(g.Lattice, plane, a))
 		}
 		s.planes = append(s.planes, axes)
@@ -58,20 +61,15 @@ func (s *spatial) rows() []CovarianceRow {
 	}
 	for i, f := range s.families {
 		name := s.g.Families[f].Name
-		for k, t := range s.points[i].totals {
-			if t.pairs == 0 {
-				continue
+		for k := range s.points[i].d {
+			out = s.pointRow(out, i, k, -1)
+		}
+		if s.g.Lattice.Axes == 1 {
+			for k, d := range s.points[i].d {
+				if d[0] == k { // not yet thinned out
+					out = s.pointRow(out, i, k, 0)
+				}
 			}
-			row := CovarianceRow{
-				Of: name, Axis: -1, Snapshots: s.snapshots, Pairs: t.pairs,
-				SumF:  float64(t.pairs - 2*t.first),
-				SumG:  float64(t.pairs - 2*t.second),
-				SumFG: float64(t.pairs - 2*t.differ),
-			}
-			for a := range s.g.Lattice.Axes {
-				row.Displacement = append(row.Displacement, int32(s.points[i].d[k][a]))
-			}
-			out = append(out, row)
 		}
 		for _, axis := range s.planes[i] {
 			for d, t := range axis.totals {
@@ -87,4 +85,23 @@ func (s *spatial) rows() []CovarianceRow {
 		}
 	}
 	return out
+}
+
+// pointRow appends the sums over pairs of terms of family i at displacement k,
+// if there are such pairs.
+func (s *spatial) pointRow(out []CovarianceRow, i, k, axis int) []CovarianceRow {
+	t := s.points[i].totals[k]
+	if t.pairs == 0 {
+		return out
+	}
+	row := CovarianceRow{
+		Of: s.g.Families[s.families[i]].Name, Axis: int32(axis), Snapshots: s.snapshots, Pairs: t.pairs,
+		SumF:  float64(t.pairs - 2*t.first),
+		SumG:  float64(t.pairs - 2*t.second),
+		SumFG: float64(t.pairs - 2*t.differ),
+	}
+	for a := range s.g.Lattice.Axes {
+		row.Displacement = append(row.Displacement, int32(s.points[i].d[k][a]))
+	}
+	return append(out, row)
 }

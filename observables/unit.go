@@ -35,8 +35,9 @@ type MomentRow struct {
 // AutocorrelationRow holds sums over pairs of samples one lag apart whose first
 // time lies in the segment; Lag is in steps. SumF and SumG sum the first and
 // the second member, SumFG their products (components: as in MomentRow, with
-// the mean over components in SumF and SumG). For F != G both time orders are
-// counted.
+// the mean over components in SumF and SumG, for Fourier amplitudes the sum of
+// real and imaginary part). For F != G both time orders are counted: SumF then
+// sums F, and SumG sums G, at both times.
 type AutocorrelationRow struct {
 	Segment           int32 // 0..3
 	F, G              string
