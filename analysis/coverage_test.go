@@ -56,6 +56,7 @@ type cell struct {
 	units                      int
 	span, step                 float64 // in units of the slowest time
 	repeats                    int
+	declared                   bool // single = true
 	seed                       uint64
 	integrated, initial, model tally
 	single                     tally
@@ -76,6 +77,7 @@ func (c *cell) run() {
 		wg.Go(func() {
 			for i := range work {
 				p := c.proc.point(c.seed+uint64(i)*7919, c.units, c.span, c.step)
+				p.Observables[0].Single = c.declared
 				results[i] = Infer(p, Options{}).Observables[0]
 			}
 		})

@@ -60,6 +60,9 @@ func solveGeneralized(a, b [][]float64) (values []float64, vectors, l [][]float6
 	if l, ok = cholesky(b); !ok {
 		return nil, nil, nil, false
 	}
+	if n == 1 {
+		return []float64{a[0][0] / b[0][0]}, [][]float64{{1}}, l, true
+	}
 	w := square(n)
 	for i := range n {
 		copy(w[i], a[i])

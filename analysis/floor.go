@@ -6,7 +6,7 @@ import "math"
 // mode carries at least the share floor of the variance: C(t) is that much of
 // exp(-lambda_1 t) plus any non-negative sum of exponentials as fast or faster,
 // and all lambda_1 are kept whose least chi^2 exceeds the best by at most the
-// squared Student quantile. The lower end is lowered to that of the tail
+// squared Student quantile. The lower end is lowered to that of the plateau
 // average if that is lower.
 //
 // Everything rests on the floor: where the slowest mode carries less, the
@@ -123,10 +123,10 @@ func (v *floorInterval) limits(delta float64) (low, high float64) {
 }
 
 // slowestInterval returns the interval of tau_slowest under the weight floor.
-// tail is the tail average.
-func slowestInterval(f *fitted, floor float64, tail Estimate) Interval {
-	if !tail.OK {
-		return noInterval(tail.Code, tail.Reason)
+// plateau is the plateau average.
+func slowestInterval(f *fitted, floor float64, plateau Estimate) Interval {
+	if !plateau.OK {
+		return noInterval(plateau.Code, plateau.Reason)
 	}
 	v, ok := newFloorInterval(f, floor)
 	if !ok {
@@ -134,6 +134,6 @@ func slowestInterval(f *fitted, floor float64, tail Estimate) Interval {
 	}
 	t := studentT(0.025, len(f.without)-1)
 	low, high := v.limits(t * t)
-	low = math.Min(low, tail.Value*math.Exp(-t*tail.Err/tail.Value))
+	low = math.Min(low, plateau.Value*math.Exp(-t*plateau.Err/plateau.Value))
 	return Interval{Low: low, High: high, Confidence: 0.95, OK: true}
 }

@@ -16,8 +16,11 @@ type Point struct {
 	Open     []bool   // axes with edges
 	Sites    int      // sites of the lattice
 	LnStates float64  // ln of the number of states in the class of the reference, 0 if unknown
-	Jumps    float64  // executed jumps of all trajectories while recorded, 0 if unknown
-	Seconds  float64  // processor time spent on them, 0 if unknown
+	// EnergyRange is the highest minus the lowest energy that states can have,
+	// or an upper bound of it; 0 if unknown.
+	EnergyRange float64
+	Jumps       float64 // executed jumps of all trajectories while recorded, 0 if unknown
+	Seconds     float64 // processor time spent on them, 0 if unknown
 
 	Observables []Observable
 	Pairs       []Pair // f <= g; every observable with itself, scalars with each other

@@ -52,6 +52,9 @@ func Infer(p Point, opt Options) Result {
 			r.Spatial = append(r.Spatial, planeCurve(&p, p.Spatial[i].Of, plane))
 		}
 	}
+	r.Approach = approaches(&p, r.Observables, opt)
+	r.Mixing = mixing(&p, &r)
+	r.Advice = advise(&p, states, r.Observables, opt)
 	conclude([]*Result{&r})
 	return r
 }
@@ -65,7 +68,7 @@ func Compare(results []Result) Comparison {
 		all[i] = &results[i]
 	}
 	conclude(all)
-	return Comparison{}
+	return Comparison{Trends: trends(results)}
 }
 
 func scaled(e Estimate, by float64) Estimate {
@@ -85,9 +88,7 @@ func inferObservable(p *Point, o int, opt Options, pools func(int) *pool) (integ
 	res.means(&in)
 	if !tau.OK {
 		res.Initial = tauInitial(&in)
-		res.Slowest = missing(tau.Code, tau.Reason)
-		res.SlowestBound = noBound(tau.Code, tau.Reason)
-		res.SlowestInterval = noInterval(tau.Code, tau.Reason)
+		res.slowest(&in, opt, tau.Code, tau.Reason)
 		res.absences()
 		return in, res
 	}
@@ -101,14 +102,13 @@ func inferObservable(p *Point, o int, opt Options, pools func(int) *pool) (integ
 		res.Warnings = append(res.Warnings, warn(codeInhomogeneous,
 			"%s is taken to have mean 0, which open axes do not guarantee", obs.Name))
 	}
-	if f, ok := newFitted(&in); ok {
-		res.Slowest, res.SlowestBound = slowest(&f)
-		res.SlowestInterval = slowestInterval(&f, opt.WeightFloor, res.Slowest)
-	} else {
-		const reason = "too few lags lie within the decay"
-		res.Slowest = missing(codeNoise, reason)
-		res.SlowestBound = noBound(codeNoise, reason)
-		res.SlowestInterval = noInterval(codeNoise, reason)
+	res.slowest(&in, opt, "", "")
+	if obs.Single {
+		res.Single, res.SingleTest = single(&in)
+		if res.SingleTest.Rejected {
+			res.Warnings = append(res.Warnings, warn(codeSingle,
+				"declared a single exponential, but its decay slows down: t = %.1f, p = %.2g; do not use tau_single", res.SingleTest.Statistic, res.SingleTest.P))
+		}
 	}
 	res.FormulaErr = in.formulaError(p)
 	res.Warnings = append(res.Warnings, in.warnings(p, tau)...)
@@ -121,6 +121,33 @@ func inferObservable(p *Point, o int, opt Options, pools func(int) *pool) (integ
 	res.Warnings = append(res.Warnings, res.chain(&in)...)
 	res.absences()
 	return in, res
+}
+
+// slowest fills in what can be said of the slowest time. It is all that short
+// data give: a lower bound survives where tau_int was refused for the reason
+// given.
+func (res *ObservableResult) slowest(in *integrated, opt Options, code, reason string) {
+	switch code {
+	case "", codeShortSpan, codeShortTotal:
+	default:
+		res.Slowest, res.SlowestBound, res.SlowestInterval = missing(code, reason), noBound(code, reason), noInterval(code, reason)
+		return
+	}
+	_, res.Slowest, res.SlowestBound = slowest(in)
+	if code != "" {
+		res.Slowest, res.SlowestInterval = missing(code, reason), noInterval(code, reason)
+		return
+	}
+	if len(in.without) < 8 {
+		res.SlowestInterval = noInterval(codeFewUnits, "its fits need at least 8 blocks to resample")
+		return
+	}
+	f, ok := newFitted(in)
+	if !ok {
+		res.SlowestInterval = noInterval(codeNoise, "too few lags lie within the decay")
+		return
+	}
+	res.SlowestInterval = slowestInterval(&f, opt.WeightFloor, res.Slowest)
 }
 
 func anyOpen(p *Point) bool {

@@ -33,6 +33,7 @@ type Result struct {
 	Spatial       []SpatialCurve // covariances in space
 	Approach      []Approach     // from prepared starts
 	Tests         []Test
+	Mixing        Mixing
 	Advice        []Advice
 	Warnings      []Warning // about the point as a whole
 }
@@ -57,9 +58,9 @@ type ObservableResult struct {
 	Single     Estimate
 	SingleTest Test
 
-	// Slowest is the average over exponential tails: where the data see one
-	// exponential. It estimates from below and has no two-sided error: only
-	// Value is meaningful. JSON tau_slowest.
+	// Slowest is where the decay levels off within the data (an average over
+	// plateaus of the effective time). It estimates from below and has no
+	// two-sided error: only Value is meaningful. JSON tau_slowest.
 	Slowest Estimate
 	// SlowestBound: with 95 % confidence the slowest time in f is larger.
 	// JSON tau_slowest_bound.
@@ -166,8 +167,21 @@ type Approach struct {
 	Epsilon float64
 	// Tau is the time of the last exponential decay seen; for up-down of an
 	// attractive model it estimates 1/gap.
-	Tau      Estimate
+	Tau Estimate
+	// Coupling (up-down only) is when half the difference of the two total
+	// magnetisations falls to 1/4: where jumps preserve order (ferromagnets with
+	// single-spin rates), an upper bound of the mixing time to distance 1/4.
+	Coupling Estimate
 	Warnings []Warning
+}
+
+// Mixing bounds the time to come within Distance of equilibrium, in total
+// variation, from every start.
+type Mixing struct {
+	Distance float64
+	Lower    Bound    // follows from the lower bound on 1/gap
+	Volume   Estimate // upper bound, only if tau of the slow mode is 1/gap
+	Text     string
 }
 
 // Test is a significance test.

@@ -55,6 +55,11 @@ func slowMode(p *Point, states []integrated, results []ObservableResult, pools f
 	}
 	mode := newMode(b, scale)
 	mode.report(&m)
+	if refused := allRefused(b.obs, results); refused.Code != "" && m.Tau.OK {
+		// A lower bound survives short data, a value does not.
+		m.Tau = missing(refused.Code, refused.Reason)
+		m.Warnings = append(m.Warnings, warn(refused.Code, "no tau of the slow mode, only its bound: %s", refused.Reason))
+	}
 	if mode.dropped != "" {
 		m.Dropped = append(m.Dropped, mode.dropped)
 	}
@@ -62,6 +67,17 @@ func slowMode(p *Point, states []integrated, results []ObservableResult, pools f
 		m.Warnings = append(m.Warnings, warn(codeReduced, "left out of the slow mode: %s", d))
 	}
 	return m
+}
+
+// allRefused returns the first reason for which tau_int was refused if it was
+// for every observable, else nothing.
+func allRefused(obs []int, results []ObservableResult) Estimate {
+	for _, o := range obs {
+		if results[o].Integrated.OK {
+			return Estimate{}
+		}
+	}
+	return results[obs[0]].Integrated
 }
 
 // lagNear is the index of the lag closest to t.
@@ -171,55 +187,14 @@ func (m *mode) plateau() {
 	if !ok {
 		return
 	}
-	var weights [][]float64 // by first point: weights of the points
-	least := max(1, min(2, n-1))
-	for k := 0; k+least <= n; k++ {
-		l, ok := cholesky(minor(cov, k, n))
-		if !ok {
-			return
-		}
-		w := make([]float64, n-k)
-		for i := range w {
-			w[i] = 1
-		}
-		solveLower(l, w)
-		solveUpper(l, w)
-		weights = append(weights, w)
+	fits, ok := newPlateaus(cov)
+	if !ok {
+		return
 	}
-	average := func(y []float64) (mean, spread float64, best int) {
-		values, aic := make([]float64, len(weights)), make([]float64, len(weights))
-		lowest := math.Inf(1)
-		for k, w := range weights {
-			norm := 0.0
-			for _, x := range w {
-				norm += x
-			}
-			values[k] = dot(w, y[k:]) / norm
-			l, _ := cholesky(minor(cov, k, n))
-			res := make([]float64, n-k)
-			for i := range res {
-				res[i] = y[k+i] - values[k]
-			}
-			solveLower(l, res)
-			aic[k] = dot(res, res) + cutPrice*float64(k)
-			if aic[k] < lowest {
-				lowest, best = aic[k], k
-			}
-		}
-		var sum, square, norm float64
-		for k := range values {
-			w := math.Exp((lowest - aic[k]) / 2)
-			sum += w * values[k]
-			square += w * values[k] * values[k]
-			norm += w
-		}
-		mean = sum / norm
-		return mean, math.Sqrt(math.Max(0, square/norm-mean*mean)), best
-	}
-	m.tau, m.spread, m.best = average(m.logs)
+	m.tau, m.spread, m.best = fits.average(m.logs)
 	m.tauLogs = make([]float64, len(m.without))
 	for out, y := range m.without {
-		m.tauLogs[out], _, _ = average(y)
+		m.tauLogs[out], _, _ = fits.average(y)
 	}
 	m.se = jackknife(m.tauLogs)
 	m.ok = m.se < noisyLog

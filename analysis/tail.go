@@ -9,10 +9,9 @@ import (
 //
 //	exp[-(chi^2 + 2 (parameters) + 2 (lags cut away))/2]
 //
-// (W. I. Jay, E. T. Neil, Phys. Rev. D 103, 114502 (2021), eq. 50). Because
-// ln C is convex, the time seen in any window is at most the slowest: the
-// average is a lower bound but for its noise, never an estimate with a
-// two-sided error.
+// (W. I. Jay, E. T. Neil, Phys. Rev. D 103, 114502 (2021), eq. 50). For a sum
+// of exponentials with positive weights ln C is convex: what is seen in any
+// window is at most the slowest.
 type tails struct {
 	f       *fitted
 	factors [][][]float64 // Cholesky factors of the tails' covariances, by first lag
@@ -146,38 +145,4 @@ func golden(a, b, width float64, f func(float64) float64) (x, least float64) {
 		return c, fc
 	}
 	return d, fd
-}
-
-// slowest returns the tail average with its one-sided lower bound
-//
-//	exp(ln tau - t SE),   SE^2 = jackknife^2 + spread between tails^2,
-//
-// t the 97.5 % quantile: with the 95 % quantile a two-state process exceeds the
-// truth in up to 10 % of data sets. The value's Low and High are both zero: it
-// has no two-sided error.
-func slowest(f *fitted) (Estimate, Bound) {
-	u := len(f.without)
-	if u < 8 {
-		const reason = "fits need at least 8 blocks to resample"
-		return missing(codeFewUnits, reason), noBound(codeFewUnits, reason)
-	}
-	const unstable = "the autocorrelation's errors are degenerate"
-	t, ok := newTails(f)
-	if !ok {
-		return missing(codeNoise, unstable), noBound(codeNoise, unstable)
-	}
-	ln, spread, ok := t.average(f.y, true)
-	if !ok {
-		return missing(codeNoise, unstable), noBound(codeNoise, unstable)
-	}
-	logs, ok := resampled(u, func(b int) (float64, bool) {
-		ln, _, ok := t.average(f.without[b], false)
-		return ln, ok
-	})
-	if !ok {
-		return missing(codeNoise, unstable), noBound(codeNoise, unstable)
-	}
-	se := math.Hypot(jackknife(logs), math.Sqrt(spread))
-	est := Estimate{Value: math.Exp(ln), Err: math.Exp(ln) * se, Units: u, OK: true}
-	return est, Bound{Value: math.Exp(ln - studentT(0.025, u-1)*se), Confidence: 0.95, OK: true}
 }

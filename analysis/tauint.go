@@ -11,7 +11,7 @@ const (
 	totalDoubt   = 160 // total time, in tau
 	totalRefuse  = 40
 	spanDoubt    = 20 // time of one trajectory, in tau
-	spanRefuse   = 10
+	truncation   = 0.4
 	stepDoubt    = 0.5 // step, in tau_initial
 	stepRefuse   = 1.6
 	fewestBlocks = 4
@@ -180,9 +180,9 @@ func (in *integrated) judge(p *Point, est Estimate) Estimate {
 	case total < totalRefuse*in.tau:
 		return missing(codeShortTotal, fmt.Sprintf("the total time %.4g is only about %.2g relaxation times, at least %d are needed",
 			total, total/in.tau, totalRefuse))
-	case !in.win.reached && p.Span < spanRefuse*in.tau:
-		return missing(codeShortSpan, fmt.Sprintf("the span %.4g is only about %.2g relaxation times, at least %d are needed",
-			p.Span, p.Span/in.tau, spanRefuse))
+	case in.truncated(est):
+		return missing(codeShortSpan, fmt.Sprintf("lags end at %.4g, about %.2g relaxation times, where the autocorrelation is not yet below its error (span at least %d relaxation times)",
+			in.times[in.win.last], in.times[in.win.last]/in.tau, spanDoubt))
 	}
 	if e, ok := in.pool.dirichlet(in.k, all); ok {
 		low, high := firstInterval(in.times, in.c, e)
@@ -194,6 +194,16 @@ func (in *integrated) judge(p *Point, est Estimate) Estimate {
 		return missing(codeCoarseStep, "the autocorrelation is lost within one step")
 	}
 	return est
+}
+
+// truncated reports whether the lags ended before the window while what they
+// leave out, exp(-W/tau) of an exponential or more, may reach 0.4 of the
+// standard error, for tau one standard error above the estimate. (With the
+// estimate itself, the data sets that pass would be those whose tau came out
+// small by chance.)
+func (in *integrated) truncated(est Estimate) bool {
+	se := est.Err / est.Value
+	return !in.win.reached && math.Exp(-in.times[in.win.last]/(in.tau*math.Exp(se))) > truncation*se
 }
 
 // warnings says what makes a tau_int doubtful that was not refused.
@@ -208,9 +218,6 @@ func (in *integrated) warnings(p *Point, est Estimate) []Warning {
 	}
 	if p.Span < spanDoubt*in.tau {
 		w = append(w, warn(codeShortSpan, "one span is about %.2g tau_int, below %d: a slower decay would not be seen", p.Span/in.tau, spanDoubt))
-	}
-	if !in.win.reached && in.times[in.win.last] < 4*in.tau {
-		w = append(w, warn(codeWindow, "lags end at %.4g, %.2g tau_int: what decays later is missing from the sum", in.times[in.win.last], in.times[in.win.last]/in.tau))
 	}
 	if e, ok := in.pool.dirichlet(in.k, all); ok && p.Step > stepDoubt*in.c[0]/e {
 		w = append(w, warn(codeCoarseStep, "the step is %.2g tau_initial, above %.1f: the sum depends on how the first step is interpolated", p.Step*e/in.c[0], stepDoubt))

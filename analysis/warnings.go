@@ -15,7 +15,6 @@ const (
 	codeShortTotal    = "short_total"
 	codeShortSpan     = "short_span"
 	codeCoarseStep    = "coarse_step"
-	codeWindow        = "window_not_reached"
 	codeNoise         = "noise"
 	codeConstant      = "constant"
 	codeNoData        = "no_data"
@@ -37,15 +36,15 @@ const (
 	codeNotReached    = "equilibrium_not_reached"
 	codeLowerBound    = "lower_bound"
 	codeFrozen        = "frozen"
+	codePoorFit       = "poor_fit"
 )
 
 // WarningKinds lists every warning code that results can carry.
 var WarningKinds = []WarningKind{
 	{codeFewUnits, "too few resampling blocks for an error that can be trusted", "refused below 4; fit-based values refused below 8, doubtful below 16"},
 	{codeShortTotal, "the total time of all trajectories is short against the relaxation time", "doubtful below 160 tau, refused below 40 tau"},
-	{codeShortSpan, "one trajectory is short against the relaxation time", "doubtful below 20 tau, refused below 10 tau"},
+	{codeShortSpan, "one trajectory is short against the relaxation time", "doubtful below 20 tau; refused where lags (a quarter of the span) end while they may leave out 0.4 of the standard error"},
 	{codeCoarseStep, "the time between samples is long against the initial relaxation time", "doubtful above 0.5 tau_initial, refused above 1.6 tau_initial"},
-	{codeWindow, "the covariance was not recorded to lags long enough for the summation window", "last lag below the window and below 4 tau_int"},
 	{codeNoise, "the covariance cannot be told from noise", ""},
 	{codeConstant, "the observable did not change", ""},
 	{codeNoData, "nothing was recorded that the estimate could be made from", ""},
@@ -66,6 +65,7 @@ var WarningKinds = []WarningKind{
 	{codeNotMeaningful, "the quantity has no meaning here", ""},
 	{codeNotReached, "the mean did not come close to its limit within the recorded time", ""},
 	{codeLowerBound, "the value is a lower bound on 1/gap", ""},
+	{codePoorFit, "no form fits the trend", "best chi^2 above its degrees of freedom by 4 standard deviations"},
 	{codeFrozen, "no jumps happened in a trajectory", ""},
 }
 

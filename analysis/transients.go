@@ -1,0 +1,266 @@
+package analysis
+
+import (
+	"fmt"
+	"math"
+)
+
+// transient is the mean of an observable against time since one start, with and
+// without each unit.
+type transient struct {
+	observable, start string
+	times             []float64
+	mean              []float64
+	without           [][]float64 // unit, time
+	limit             Estimate
+}
+
+// approaches analyses every recorded transient: by start, and for starts up and
+// down also half the difference of the two.
+func approaches(p *Point, results []ObservableResult, opt Options) []Approach {
+	var out []Approach
+	for i := range p.Transients {
+		t := &p.Transients[i]
+		for _, start := range startGroups(p) {
+			out = append(out, newTransient(p, t, start, results[t.Observable].Mean).approach(opt))
+		}
+		if p.Observables[t.Observable].Kind != "magnetization" {
+			continue
+		}
+		up, down := newTransient(p, t, "up", Estimate{}), newTransient(p, t, "down", Estimate{})
+		if len(up.without) > 0 && len(down.without) > 0 {
+			a := halfDifference(up, down).approach(opt)
+			a.Coupling = coupling(halfDifference(up, down))
+			out = append(out, a)
+		}
+	}
+	return out
+}
+
+func newTransient(p *Point, t *Transient, start string, limit Estimate) transient {
+	tr := transient{observable: p.Observables[t.Observable].Name, start: start, times: t.Times, limit: limit}
+	total := make([]Moment, len(t.Times))
+	var units [][]Moment
+	for u, sums := range t.Sums {
+		if p.Starts[u] != start {
+			continue
+		}
+		units = append(units, sums)
+		for i, m := range sums {
+			total[i].add(m)
+		}
+	}
+	for i, m := range total {
+		if m.N == 0 {
+			tr.times = tr.times[:i]
+			break
+		}
+		tr.mean = append(tr.mean, m.S1/float64(m.N))
+	}
+	for _, sums := range units {
+		row := make([]float64, len(tr.times))
+		for i := range row {
+			m := total[i].without(sums[i])
+			row[i] = m.S1 / float64(m.N)
+		}
+		tr.without = append(tr.without, row)
+	}
+	return tr
+}
+
+// halfDifference pairs the units of the two starts in their order. Its limit is
+// 0 by definition of equilibrium.
+func halfDifference(up, down transient) transient {
+	d := transient{observable: up.observable, start: "up-down", times: up.times}
+	for i := range up.mean {
+		d.mean = append(d.mean, (up.mean[i]-down.mean[i])/2)
+	}
+	for u := range min(len(up.without), len(down.without)) {
+		row := make([]float64, len(up.mean))
+		for i := range row {
+			row[i] = (up.without[u][i] - down.without[u][i]) / 2
+		}
+		d.without = append(d.without, row)
+	}
+	d.limit = Estimate{OK: true, Units: len(d.without)}
+	return d
+}
+
+// approach measures when the mean has come within epsilon of its limit and the
+// time of the last exponential decay that is seen.
+func (t transient) approach(opt Options) Approach {
+	a := Approach{Observable: t.observable, Start: t.start, Times: t.times, Mean: t.mean, Limit: t.limit, Epsilon: opt.Epsilon}
+	absent := func(code, reason string) Approach {
+		a.Time, a.Tau = missing(code, reason), missing(code, reason)
+		return a
+	}
+	a.Err = make([]float64, len(t.mean))
+	if len(t.without) < 2 || len(t.mean) < 2 {
+		return absent(codeFewUnits, "fewer than two units of this start")
+	}
+	column := make([]float64, len(t.without))
+	for i := range a.Err {
+		for u, row := range t.without {
+			column[u] = row[i]
+		}
+		a.Err[i] = jackknife(column)
+	}
+	switch {
+	case !t.limit.OK:
+		return absent(t.limit.Code, "there is no equilibrium mean to compare with: "+t.limit.Reason)
+	case len(t.without) < fewestBlocks:
+		return absent(codeFewUnits, fmt.Sprintf("only %d units of this start, at least %d are needed", len(t.without), fewestBlocks))
+	case math.Abs(t.mean[0]-t.limit.Value) <= 5*math.Hypot(a.Err[0], t.limit.Err) || t.mean[0] == t.limit.Value:
+		return absent(codeNotMeaningful, "the mean starts where it ends")
+	}
+	a.Time = t.within(opt.Epsilon, a.Err)
+	if !a.Time.OK {
+		a.Warnings = append(a.Warnings, warn(a.Time.Code, "no time to equilibrium: %s", a.Time.Reason))
+	}
+	a.Tau = t.lastDecay(a.Err)
+	return a
+}
+
+// within is when |mean - limit| first falls to epsilon times its first value,
+// interpolated with ln|mean - limit| linear between times.
+func (t transient) within(epsilon float64, se []float64) Estimate {
+	first := math.Abs(t.mean[0] - t.limit.Value)
+	of := func(mean []float64) (float64, bool) {
+		goal := epsilon * math.Abs(mean[0]-t.limit.Value)
+		for i := range mean {
+			d := math.Abs(mean[i] - t.limit.Value)
+			if d > goal {
+				continue
+			}
+			before := math.Abs(mean[i-1] - t.limit.Value)
+			if d <= 0 {
+				d = math.SmallestNonzeroFloat64
+			}
+			// Log-linear between d and before, but never closer than noise allows.
+			f := math.Log(before/goal) / math.Log(before/math.Max(d, goal/10))
+			return t.times[i-1] + f*(t.times[i]-t.times[i-1]), true
+		}
+		return 0, false
+	}
+	v, ok := of(t.mean)
+	if !ok {
+		return missing(codeNotReached, fmt.Sprintf("the mean stays farther than %g %% of its first distance from its limit", 100*epsilon))
+	}
+	resolution := math.Hypot(t.limit.Err, se[lagNear(t.times, v)])
+	if resolution > epsilon*first {
+		return missing(codeNoise, fmt.Sprintf("errors of the mean are %.2g %% of its first distance, above %g %%", 100*resolution/first, 100*epsilon))
+	}
+	for i := range t.mean {
+		if t.times[i] > v && math.Abs(t.mean[i]-t.limit.Value) > epsilon*first+3*math.Hypot(se[i], t.limit.Err) {
+			return missing(codeNotReached, "the mean leaves its limit again")
+		}
+	}
+	without, ok := resampled(len(t.without), func(u int) (float64, bool) { return of(t.without[u]) })
+	if !ok {
+		return missing(codeNoise, "without one of the units the limit is not reached")
+	}
+	return symmetric(v, jackknife(without), len(t.without))
+}
+
+// lastDecay averages exponential tails of mean - limit, as for C(t).
+func (t transient) lastDecay(se []float64) Estimate {
+	sign := math.Copysign(1, t.mean[0]-t.limit.Value)
+	f := &fitted{step: 1, tau: 1, total: 1}
+	next := 0.0
+	distance := func(mean []float64, i int) float64 { return sign * (mean[i] - t.limit.Value) }
+	for i := range t.mean {
+		if distance(t.mean, i) < 2*math.Hypot(se[i], t.limit.Err) {
+			break
+		}
+		// The first value is a constant of the start, without error.
+		if se[i] == 0 || t.times[i] < next*(1-1e-9) {
+			continue
+		}
+		f.at = append(f.at, i)
+		f.times = append(f.times, t.times[i])
+		f.y = append(f.y, distance(t.mean, i))
+		next = t.times[i] * 1.25
+	}
+	if len(f.at) < fewestFit || len(t.without) < 8 {
+		return missing(codeNoise, "fewer than 4 times of the decay stand out of noise, or fewer than 8 units")
+	}
+	f.without = make([][]float64, len(t.without))
+	for u, mean := range t.without {
+		for _, i := range f.at {
+			f.without[u] = append(f.without[u], distance(mean, i))
+		}
+	}
+	last := f.times[len(f.times)-1]
+	f.low, f.high = 0.02/last, 20/f.times[0]
+	model := square(len(f.at))
+	for i, a := range f.at {
+		for j, b := range f.at {
+			// Shape only: errors of the mean decorrelate over the decay.
+			model[i][j] = se[a] * se[b] * math.Exp(-math.Abs(f.times[i]-f.times[j])/(last/3))
+		}
+		model[i][i] *= 1 + 1e-9
+	}
+	var ok bool
+	if f.cov, ok = shrunkCovariance(f.without, model); !ok {
+		return missing(codeNoise, "the errors of the mean are degenerate")
+	}
+	tl, ok := newTails(f)
+	if !ok {
+		return missing(codeNoise, "the errors of the mean are degenerate")
+	}
+	ln, spread, ok := tl.average(f.y, true)
+	if !ok {
+		return missing(codeNoise, "no decay can be fitted")
+	}
+	logs, ok := resampled(len(f.without), func(u int) (float64, bool) {
+		ln, _, ok := tl.average(f.without[u], false)
+		return ln, ok
+	})
+	if !ok {
+		return missing(codeNoise, "no decay can be fitted without one of the units")
+	}
+	se2 := math.Hypot(jackknife(logs), math.Sqrt(spread))
+	if se2 > noisyLog {
+		return missing(codeNoise, "its error would exceed the value")
+	}
+	return logarithmic(ln, se2, len(f.without))
+}
+
+// coupling is when half the difference of the two total magnetisations falls to
+// 1/4. Where the jumps preserve order (an attractive model), trajectories from
+// all-up and all-down can be coupled so that half the difference is the mean
+// number of sites on which they disagree; at time t the distance in total
+// variation from equilibrium, from any start, is at most that number (D. A.
+// Levin, Y. Peres, E. L. Wilmer, Markov Chains and Mixing Times, corollary 5.5):
+// an upper bound of the mixing time.
+func coupling(t transient) Estimate {
+	if len(t.without) < fewestBlocks {
+		return missing(codeFewUnits, "too few units of both starts")
+	}
+	const goal = mixingDistance
+	of := func(mean []float64) (float64, bool) {
+		for i := 1; i < len(mean); i++ {
+			if mean[i] > goal {
+				continue
+			}
+			d := math.Max(mean[i], goal/10)
+			f := math.Log(mean[i-1]/goal) / math.Log(mean[i-1]/d)
+			return t.times[i-1] + f*(t.times[i]-t.times[i-1]), true
+		}
+		return 0, false
+	}
+	v, ok := of(t.mean)
+	without, ok2 := resampled(len(t.without), func(u int) (float64, bool) { return of(t.without[u]) })
+	if !ok || !ok2 {
+		return missing(codeNotReached, "half the difference does not fall to 1/4 within the recorded time")
+	}
+	column := make([]float64, len(t.without))
+	at := lagNear(t.times, v)
+	for u, row := range t.without {
+		column[u] = row[at]
+	}
+	if jackknife(column) > goal/2 {
+		return missing(codeNoise, "the difference is not known to 1/8: more units are needed")
+	}
+	return symmetric(v, jackknife(without), len(t.without))
+}
