@@ -97,7 +97,7 @@ var contractKeys = map[string][]string{
 
 const contractStudy = `
 [lattice]
-size = [10]
+size = [8]
 
 [hamiltonian]
 model = "ising"

@@ -4,6 +4,7 @@ import (
 	"errors"
 	"fmt"
 	"io"
+	"math"
 	"strings"
 
 	"sojourn/configs"
@@ -153,13 +154,21 @@ func exactText(s *configs.Study, points []*prepared, x *exactJSON) string {
 		fmt.Fprintf(&b, "  %s\n", line)
 		t := newSheet("observable", "mean", "variance", "tau_initial", "tau_int", "tau_slowest", "of 1 %", "of 20 %")
 		for _, o := range p.Observables {
-			t.add(o.Name, plain(o.Mean), plain(o.Variance), timeText(o.TauInitial), timeText(o.TauInt), timeText(o.TauSlowest), timeText(o.Tau1), timeText(o.Tau20))
+			t.add(o.Name, plain(rounded(o.Mean, o.Variance)), plain(o.Variance), timeText(o.TauInitial), timeText(o.TauInt), timeText(o.TauSlowest), timeText(o.Tau1), timeText(o.Tau20))
 		}
 		t.write(&b, "  ")
 	}
 	b.WriteString("\ntau_slowest is the slowest mode of any weight in the observable; beside it, the time beyond which slower\n" +
 		"modes together carry less than that share of its variance. 1/gap is that of the commuting observables.\n")
 	return b.String()
+}
+
+// rounded is a mean, or 0 where it differs from it by rounding errors only.
+func rounded(mean, variance float64) float64 {
+	if math.Abs(mean) < 1e-12*math.Sqrt(variance) {
+		return 0
+	}
+	return mean
 }
 
 // timeText prints a relaxation time, which an observable without variance lacks.

@@ -123,20 +123,33 @@ func (q *prepared) calibrate() (load, error) {
 	short.Settle = 0
 	for steps := 64.0; ; steps *= 2 {
 		short.Span = math.Min(q.plan.Span, steps*t.Step)
-		e, err := q.engine(0)
+		gone, err := q.timed(short)
 		if err != nil {
 			return load{}, err
 		}
-		label := observables.Label{Start: string(q.start(0)), Engine: t.EngineName}
-		from := time.Now()
-		if _, err := observables.Record(context.Background(), e, q.generator, q.observables, q.config.Pairs, short, label, nil); err != nil {
+		if gone < enough && short.Span < q.plan.Span {
+			continue
+		}
+		// The faster of two is less disturbed by what else the machine does.
+		again, err := q.timed(short)
+		if err != nil {
 			return load{}, err
 		}
-		if gone := time.Since(from); gone > enough || short.Span >= q.plan.Span {
-			whole := (t.Settle + t.Span) * float64(t.Count)
-			return load{jumps: rate * whole, seconds: gone.Seconds() / short.Span * whole}, nil
-		}
+		whole := (t.Settle + t.Span) * float64(t.Count)
+		return load{jumps: rate * whole, seconds: min(gone, again).Seconds() / short.Span * whole}, nil
 	}
+}
+
+// timed records the first trajectory under a plan and returns how long it took.
+func (q *prepared) timed(plan observables.Plan) (time.Duration, error) {
+	e, err := q.engine(0)
+	if err != nil {
+		return 0, err
+	}
+	label := observables.Label{Start: string(q.start(0)), Engine: q.config.Trajectory.EngineName}
+	from := time.Now()
+	_, err = observables.Record(context.Background(), e, q.generator, q.observables, q.config.Pairs, plan, label, nil)
+	return time.Since(from), err
 }
 
 // jumpRate is the number of jumps per unit time at the end of a stretch that is

@@ -4,6 +4,7 @@ import (
 	"fmt"
 	"io"
 	"os"
+	"strconv"
 	"strings"
 	"sync"
 	"time"
@@ -86,9 +87,18 @@ func (p *progress) finish() {
 	p.wait.Wait()
 }
 
+// isTerminal reports whether w is a terminal of known width.
 func isTerminal(w io.Writer) bool {
 	f, ok := w.(*os.File)
-	return ok && cupwriter.New(f, false).IsTerminal()
+	if !ok {
+		return false
+	}
+	t := cupwriter.New(f, false)
+	if !t.IsTerminal() {
+		return false
+	}
+	width, _, err := t.GetTermSize()
+	return err == nil && width > 0
 }
 
 func (p *progress) lines() {
@@ -162,7 +172,7 @@ func (p *progress) sentence(now time.Time) string { return p.units() + ", " + p.
 func (p *progress) units() string {
 	p.mu.Lock()
 	defer p.mu.Unlock()
-	return fmt.Sprintf("%d of %d units", p.now.done, p.now.total)
+	return fmt.Sprintf("%*d of %d units", len(strconv.Itoa(p.now.total)), p.now.done, p.now.total)
 }
 
 // pace is the speed over the last seconds and the time left at the average
