@@ -69,7 +69,7 @@ func LaneBytes(g *Generator) (int64, error) {
 }
 
 func (p *lanePlan) bytes() int64 {
-	ahead := attemptsAhead * 8 * (p.width + chanceBits + p.draws() + p.hits + 2)
+	ahead := attemptsAhead * 8 * (p.columns + chanceBits + p.hits + 5)
 	return 8*int64(p.layout.size) + int64(ahead) + p.g.tableBytes()
 }
 

@@ -5,9 +5,6 @@ import (
 	"math/bits"
 )
 
-// attemptsAhead is how many attempts are drawn at a time.
-const attemptsAhead = 128
-
 // attempt is a move of a seat that all lanes try.
 type attempt struct {
 	base uint32 // first word of the cell
@@ -22,12 +19,15 @@ type attempts struct {
 	plan *lanePlan
 	src  source
 	bulk bulk
-	gap  uint64 // bits of the words of acceptance until the next odd one
 
-	list [attemptsAhead]attempt
-	rows []uint64 // attempt, place in a row
-	hits []uint32 // attempt, hit: words of lines
-	raw  []uint64 // random words
+	list    [attemptsAhead]attempt
+	columns []wordColumn // of acceptance words
+	hits    []uint32     // attempt, hit: words of lines
+
+	raw   [chanceBits]wordColumn
+	cells wordColumn
+	which wordColumn // only if there are several moves
+	extra []uint64
 
 	begin, end float64 // the last is made at end
 	key        uint64  // of the times in between
@@ -39,21 +39,19 @@ type attempts struct {
 type lanePosition struct {
 	src  source
 	bulk bulk
-	gap  uint64
 }
 
-func (a *attempts) position() lanePosition { return lanePosition{a.src, a.bulk, a.gap} }
+func (a *attempts) position() lanePosition { return lanePosition{a.src, a.bulk} }
 
 func newAttempts(p *lanePlan, src source) attempts {
 	a := attempts{plan: p, src: src}
 	a.bulk = newBulk(&a.src)
-	a.gap = a.nextGap()
-	a.rows = make([]uint64, attemptsAhead*p.width)
-	for i := range attemptsAhead {
-		a.rows[(i+1)*p.width-1] = math.MaxUint64
+	a.columns = make([]wordColumn, p.columns)
+	for i := range a.columns[1] {
+		a.columns[1][i] = math.MaxUint64
 	}
 	a.hits = make([]uint32, attemptsAhead*p.hits)
-	a.raw = make([]uint64, attemptsAhead*(chanceBits+p.draws()))
+	a.extra = make([]uint64, p.extra.most())
 	return a
 }
 
@@ -66,118 +64,124 @@ func (a *attempts) draw(begin float64) {
 	}
 	a.end = begin + a.gamma()/a.plan.clock
 	a.key = a.src.next()
-	a.bulk.fill(a.raw)
-	if len(a.plan.moves) > 1 {
-		a.drawMoves()
+	for k := range a.raw {
+		a.bulk.fill(a.raw[k][:])
+	}
+	a.drawPlaces()
+	if len(a.plan.sets) == 1 {
+		a.drawWords(&a.plan.sets[0])
 	} else {
-		a.drawCells()
+		a.drawMixedWords()
 	}
-	a.drawRest()
+	a.strew()
 }
 
-// drawCells draws attempts of the only move of the cell.
-func (a *attempts) drawCells() {
+// drawPlaces draws the cells, uniformly, and the moves, by their clocks.
+func (a *attempts) drawPlaces() {
 	p := a.plan
-	set := &p.moves[0].chances
+	a.bulk.fill(a.cells[:])
+	moves := uint32(len(p.moves))
+	if moves > 1 {
+		a.bulk.fill(a.which[:])
+	}
+	planes := uint32(p.layout.planes)
 	for i := range a.list {
-		raw := a.raw[i*(chanceBits+1):][:chanceBits+1]
-		row, rest := bits.Mul64(raw[chanceBits], p.rows)
+		row, rest := bits.Mul64(a.cells[i], p.rows)
 		col, _ := bits.Mul64(rest, p.cols)
-		a.place(i, int(row), int(col), 0)
-		a.words(i, set, (*[chanceBits]uint64)(raw))
+		move := (p.zoneRow[row] + p.zoneCol[col]) * moves
+		if moves > 1 {
+			move += p.choice.draw(a.which[i])
+		}
+		a.list[i] = attempt{uint32(row*p.cols+col) * planes, move}
+		if p.hits > 0 {
+			a.findHits(i, int(row), int(col))
+		}
 	}
 }
 
-// drawMoves draws attempts of several moves, in proportion to their clocks.
-func (a *attempts) drawMoves() {
+// findHits notes which words of lines an attempt changes; the spare word fills
+// up the list.
+func (a *attempts) findHits(i, row, col int) {
 	p := a.plan
-	for i := range a.list {
-		raw := a.raw[i*(chanceBits+2):][:chanceBits+2]
-		row, rest := bits.Mul64(raw[chanceBits], p.rows)
-		col, _ := bits.Mul64(rest, p.cols)
-		move := int(p.choice.draw(raw[chanceBits+1]))
-		a.place(i, int(row), int(col), move)
-		a.words(i, &p.moves[move].chances, (*[chanceBits]uint64)(raw))
-	}
-}
-
-// place notes that attempt i is the given move in the cell at row and col.
-func (a *attempts) place(i, row, col, move int) {
-	p := a.plan
-	zone := p.zoneRow[row] + p.zoneCol[col]
-	m := zone*uint32(len(p.moves)) + uint32(move)
-	a.list[i] = attempt{uint32(row*int(p.cols)+col) * uint32(p.layout.planes), m}
-	if p.hits == 0 {
-		return
-	}
 	hits := a.hits[i*p.hits:][:p.hits]
 	for h := range hits {
 		hits[h] = p.layout.spare
 	}
-	mv := &p.zoned[m]
+	mv := &p.zoned[a.list[i].move]
 	for h := mv.firstHit; h < mv.lastHit; h++ {
 		hits[h-mv.firstHit] = p.hitWord(h, row, col)
 	}
 }
 
-// words fills the row of attempt i.
-func (a *attempts) words(i int, set *chanceSet, raw *[chanceBits]uint64) {
-	row := a.rows[i*a.plan.width:][:a.plan.width]
+// drawWords makes the words of acceptance, all attempts having the same chances.
+func (a *attempts) drawWords(set *chanceSet) {
+	n := 2 + len(set.direct)
 	for d := range set.direct {
-		row[d] = set.direct[d].word(raw)
-	}
-	if set.turned > 0 {
-		n := len(set.direct)
-		for d, w := range row[:set.turned] {
-			row[n+d] = ^w
+		var turned *wordColumn
+		if d < set.turned {
+			turned = &a.columns[n+d]
 		}
+		set.direct[d].fill(&a.raw, &a.columns[2+d], turned)
 	}
 	if set.even {
-		row[len(set.direct)+set.turned] = raw[0]
+		a.columns[n+set.turned] = a.raw[0]
 	}
 }
 
-// drawRest turns on the bits that the words of acceptance lack. Bits to look at
-// come with probability plan.rest among the bits of all attempts; such a bit is
-// turned on in the words whose own rest allows it.
-func (a *attempts) drawRest() {
-	const all = attemptsAhead * lanesPerWord
-	at := a.gap
-	for at < all {
-		i, bit := at/lanesPerWord, uint64(1)<<(at%lanesPerWord)
-		move := a.list[i].move % uint32(len(a.plan.moves))
-		set := &a.plan.moves[move].chances
-		row := a.rows[int(i)*a.plan.width:][:a.plan.width]
-		u := uniform(a.src.next()) * a.plan.rest
+// drawMixedWords makes the words of acceptance attempt by attempt.
+func (a *attempts) drawMixedWords() {
+	for i := range a.list {
+		set := a.set(i)
+		n := 2 + len(set.direct)
 		for d := range set.direct {
-			c := &set.direct[d]
-			if u >= c.rest {
-				continue
-			}
-			if c.inverted {
-				row[d] &^= bit
-			} else {
-				row[d] |= bit
-			}
+			y := set.direct[d].word(&a.raw, i)
+			a.columns[2+d][i] = y
 			if d < set.turned {
-				row[len(set.direct)+d] &^= bit
+				a.columns[n+d][i] = ^y
 			}
 		}
-		at += 1 + a.nextGap()
+		if set.even {
+			a.columns[n+set.turned][i] = a.raw[0][i]
+		}
 	}
-	a.gap = at - all
 }
 
-// nextGap returns how many bits are passed over: a geometric number.
-func (a *attempts) nextGap() uint64 {
-	if a.plan.rest == 0 {
-		return math.MaxInt64
+// set returns the chances of attempt i.
+func (a *attempts) set(i int) *chanceSet {
+	move := a.list[i].move % uint32(len(a.plan.moves))
+	return &a.plan.sets[a.plan.moves[move].set]
+}
+
+// strew turns on the bits that the words of acceptance still lack. Points fall on
+// the bits of all attempts, as many as plan.rest to a bit on average, and a
+// chance heeds those that its own rest allows.
+func (a *attempts) strew() {
+	p := a.plan
+	if p.rest == 0 {
+		return
 	}
-	n := a.src.exponential() * a.plan.gapScale
-	if n >= math.MaxInt64 {
-		return math.MaxInt64
+	points := a.extra[:p.extra.draw(a.src.next())]
+	a.bulk.fill(points)
+	const lowBits = 7 + 6 // which attempt, and which lane
+	set := &p.sets[0]
+	for _, u := range points {
+		i, bit := u>>6%attemptsAhead, uint64(1)<<(u%lanesPerWord)
+		if len(p.sets) > 1 {
+			set = a.set(int(i))
+		}
+		u >>= lowBits
+		n := 2 + len(set.direct)
+		for d := range set.direct {
+			c := &set.direct[d]
+			// All ones if u is below the share of points that the chance heeds.
+			on := bit & uint64(int64(u-c.heeds)>>63)
+			w := &a.columns[2+d][i]
+			*w = (*w ^ c.flip | on) ^ c.flip
+			if d < set.turned {
+				a.columns[n+d][i] &^= on
+			}
+		}
 	}
-	return uint64(n)
 }
 
 // gamma returns the sum of attemptsAhead exponential variates of mean 1: a gamma

@@ -5,24 +5,24 @@ import (
 	"sort"
 )
 
-// Words of acceptance are kept in rows, one row for each attempt, with the
-// constants 0 and 1 in the last two places.
-const maxRow = 64
+// maxColumns is the largest number of words of acceptance that an attempt may
+// have. The first is 0, the second all ones: for what never or always happens.
+const maxColumns = 64
 
-// chanceSet holds the distinct probabilities with which attempts of one move are
-// accepted. The row of an attempt begins with the words of direct, then
-// the complements of the first of them, then perhaps an even chance.
+// chanceSet holds the distinct probabilities with which attempts of some moves
+// are accepted. Behind the two constants stand the words of direct, then the
+// complements of the first of them, then perhaps an even chance.
 type chanceSet struct {
-	clock  float64 // rate of the attempts, at least every rate of the move
+	clock  float64 // rate of the attempts, at least every rate of the moves
 	direct []chance
 	small  []float64 // probabilities of direct, before inversion
 	turned int       // complements that follow: of direct[:turned]
 	even   bool      // a word of probability 1/2 follows
 }
 
-// entries returns how many words of a row the set fills.
-func (c *chanceSet) entries() int {
-	n := len(c.direct) + c.turned
+// columns returns how many words an attempt has.
+func (c *chanceSet) columns() int {
+	n := 2 + len(c.direct) + c.turned
 	if c.even {
 		n++
 	}
@@ -33,27 +33,22 @@ func (c *chanceSet) entries() int {
 // is then within an ulp of 1 of the other, as exact as a number near 1 is.
 const sameChance = 0x1p-52
 
-// newChanceSet chooses the clock for a move with the given rates. The lowest is
-// the largest rate. A somewhat faster clock can make probabilities
-// complements of each other (heat-bath rates add up to Gamma), and a word and
-// its complement cost little more than one word.
-func newChanceSet(rates []float64) chanceSet {
-	rates = distinct(rates)
-	n := len(rates)
-	if n == 0 || rates[n-1] == 0 {
-		return chanceSet{}
+// chanceClock chooses the rate of attempts at a move with the given distinct
+// rates, increasing. The lowest is the largest rate. With a somewhat faster one
+// the probabilities may be complements of each other (heat-bath rates add up to
+// Gamma), and a word with its complement costs little more than one word.
+func chanceClock(rates []float64) float64 {
+	if len(rates) == 0 {
+		return 0
 	}
-	best := setAt(rates[n-1], rates)
-	for i, r := range rates {
-		for _, s := range rates[i:] {
-			if clock := r + s; clock > rates[n-1] && clock <= 2*rates[n-1] {
-				if other := setAt(clock, rates); other.cost() < best.cost()*(1-1e-9) {
-					best = other
-				}
-			}
+	top := rates[len(rates)-1]
+	if paired := top + rates[0]; rates[0] > 0 && len(rates) > 1 {
+		slow, fast := newChanceSet(top, rates), newChanceSet(paired, rates)
+		if fast.cost() < slow.cost() {
+			return paired
 		}
 	}
-	return best
+	return top
 }
 
 // cost estimates the work of a unit of time, in nanoseconds per cell: of
@@ -75,9 +70,9 @@ func distinct(rates []float64) []float64 {
 	return out[:n]
 }
 
-// setAt sorts the probabilities rate/clock into those made directly, those that
-// are complements, and 1/2.
-func setAt(clock float64, rates []float64) chanceSet {
+// newChanceSet sorts the probabilities rate/clock of distinct rates, increasing,
+// into those made directly, those that are complements, and 1/2.
+func newChanceSet(clock float64, rates []float64) chanceSet {
 	set := chanceSet{clock: clock}
 	var low, high []float64 // high as distance from 1
 	for _, r := range rates {
@@ -120,25 +115,25 @@ func nearest(list []float64, p float64) int {
 	return -1
 }
 
-// place returns where the row has the word for a rate; the constants are in
-// the last two of width places.
-func (c *chanceSet) place(rate float64, width int) uint8 {
+// column returns which word has the probability of a rate.
+func (c *chanceSet) column(rate float64) uint8 {
+	if rate <= 0 || c.clock == 0 {
+		return 0
+	}
 	p := rate / c.clock
 	switch {
-	case p <= 0:
-		return uint8(width - 2)
 	case p >= 1:
-		return uint8(width - 1)
+		return 1
 	case math.Abs(p-0.5) <= sameChance:
-		return uint8(len(c.direct) + c.turned)
+		return uint8(2 + len(c.direct) + c.turned)
 	}
 	for i := range c.direct {
 		d := c.small[i]
 		switch {
 		case p < 0.5 && !c.direct[i].inverted && d == p, p > 0.5 && c.direct[i].inverted && d == 1-p:
-			return uint8(i)
+			return uint8(2 + i)
 		case p > 0.5 && i < c.turned && math.Abs(1-p-d) <= sameChance:
-			return uint8(len(c.direct) + i)
+			return uint8(2 + len(c.direct) + i)
 		}
 	}
 	panic("kinetic: a rate without a chance")

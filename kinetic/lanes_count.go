@@ -3,40 +3,15 @@ package kinetic
 import "math/bits"
 
 // laneCounter counts, in each lane, the words in which its bit is 1: bit l of
-// place[k] is bit k of the count of lane l. Carries are saved over 16 words
-// before they are carried on (S. Harley's method; H. S. Warren, Hacker's Delight,
-// 2nd ed., section 5-1).
+// place[k] is bit k of the count of lane l. Carries are saved: a place takes two
+// words at a time, so one of each pair waits (S. Harley's method; H. S. Warren,
+// Hacker's Delight, 2nd ed., section 5-1).
 type laneCounter struct {
-	place [64]uint64
-	top   int // places in use
-}
-
-// add counts words[0], words[stride], ... of n words, each joined by exclusive
-// or with those at the other differences.
-func (c *laneCounter) add(words []uint64, at int, stride, n int, differences []int32) {
-	switch len(differences) {
-	case 1:
-		c.addOne(words[at+int(differences[0]):], stride, n)
-	case 2:
-		c.addTwo(words, at+int(differences[0]), at+int(differences[1]), stride, n)
-	default:
-		for range n {
-			w := uint64(0)
-			for _, d := range differences {
-				w ^= words[at+int(d)]
-			}
-			c.carry(0, w)
-			at += stride
-		}
-	}
-}
-
-// carry adds a word of weight 2^k.
-func (c *laneCounter) carry(k int, w uint64) {
-	for ; w != 0; k++ {
-		c.place[k], w = c.place[k]^w, c.place[k]&w
-		c.top = max(c.top, k+1)
-	}
+	place   [48]uint64
+	wait    [48]uint64
+	waiting uint64 // bit k is set if a word waits at place k
+	some    [8]uint64
+	n       int // words in some
 }
 
 // fullAdd adds three bits.
@@ -45,51 +20,64 @@ func fullAdd(a, b, c uint64) (sum, carry uint64) {
 	return u ^ c, a&b | u&c
 }
 
-// addBlock counts eight words.
-func (c *laneCounter) addBlock(w *[8]uint64) {
+// add counts n words.
+func (c *laneCounter) add(words []uint64) {
 	one, two, four := c.place[0], c.place[1], c.place[2]
-	one, a := fullAdd(one, w[0], w[1])
-	one, b := fullAdd(one, w[2], w[3])
-	two, f := fullAdd(two, a, b)
-	one, a = fullAdd(one, w[4], w[5])
-	one, b = fullAdd(one, w[6], w[7])
-	two, g := fullAdd(two, a, b)
-	four, e := fullAdd(four, f, g)
+	for ; len(words) >= 8; words = words[8:] {
+		w := (*[8]uint64)(words)
+		var p, q, r, s, carry uint64
+		one, p = fullAdd(one, w[0], w[1])
+		one, q = fullAdd(one, w[2], w[3])
+		two, r = fullAdd(two, p, q)
+		one, p = fullAdd(one, w[4], w[5])
+		one, q = fullAdd(one, w[6], w[7])
+		two, s = fullAdd(two, p, q)
+		four, carry = fullAdd(four, r, s)
+		c.push(carry)
+	}
 	c.place[0], c.place[1], c.place[2] = one, two, four
-	c.top = max(c.top, 3)
-	c.carry(3, e)
-}
-
-func (c *laneCounter) addOne(words []uint64, stride, n int) {
-	var w [8]uint64
-	at := 0
-	for ; n >= 8; n -= 8 {
-		for i := range w {
-			w[i] = words[at]
-			at += stride
-		}
-		c.addBlock(&w)
-	}
-	for ; n > 0; n-- {
-		c.carry(0, words[at])
-		at += stride
+	for _, w := range words {
+		c.addWord(w)
 	}
 }
 
-func (c *laneCounter) addTwo(words []uint64, x, y int, stride, n int) {
-	var w [8]uint64
-	for ; n >= 8; n -= 8 {
-		for i := range w {
-			w[i] = words[x] ^ words[y]
-			x += stride
-			y += stride
-		}
-		c.addBlock(&w)
+// addPairs counts the exclusive or of two runs of words.
+func (c *laneCounter) addPairs(x, y []uint64) {
+	one, two, four := c.place[0], c.place[1], c.place[2]
+	for ; len(x) >= 8 && len(y) >= 8; x, y = x[8:], y[8:] {
+		v, w := (*[8]uint64)(x), (*[8]uint64)(y)
+		var p, q, r, s, carry uint64
+		one, p = fullAdd(one, v[0]^w[0], v[1]^w[1])
+		one, q = fullAdd(one, v[2]^w[2], v[3]^w[3])
+		two, r = fullAdd(two, p, q)
+		one, p = fullAdd(one, v[4]^w[4], v[5]^w[5])
+		one, q = fullAdd(one, v[6]^w[6], v[7]^w[7])
+		two, s = fullAdd(two, p, q)
+		four, carry = fullAdd(four, r, s)
+		c.push(carry)
 	}
-	for ; n > 0; n-- {
-		c.carry(0, words[x]^words[y])
-		x += stride
-		y += stride
+	c.place[0], c.place[1], c.place[2] = one, two, four
+	for i, w := range x {
+		c.addWord(w ^ y[i])
+	}
+}
+
+// push takes a word of weight 8.
+func (c *laneCounter) push(w uint64) {
+	k := 3
+	for ; c.waiting>>(k&63)&1 != 0; k++ {
+		c.place[k], w = fullAdd(c.place[k], c.wait[k], w)
+	}
+	c.waiting = (c.waiting>>3 + 1) << 3 // as a binary counter
+	c.wait[k] = w
+}
+
+// addWord keeps a word until there are eight.
+func (c *laneCounter) addWord(w uint64) {
+	c.some[c.n&7] = w
+	if c.n++; c.n == 8 {
+		c.n = 0
+		c.add(c.some[:])
 	}
 }
 
@@ -104,11 +92,37 @@ func init() {
 	}
 }
 
+// settle adds up the words that wait, and returns the places in use.
+func (c *laneCounter) settle() []uint64 {
+	for _, w := range c.some[:c.n] {
+		c.carry(0, w)
+	}
+	for k := range c.wait {
+		if c.waiting>>k&1 != 0 {
+			c.carry(k, c.wait[k])
+		}
+	}
+	c.n, c.waiting = 0, 0
+	top := len(c.place)
+	for top > 0 && c.place[top-1] == 0 {
+		top--
+	}
+	return c.place[:top]
+}
+
+// carry adds a word of weight 2^k.
+func (c *laneCounter) carry(k int, w uint64) {
+	for ; w != 0; k++ {
+		c.place[k], w = c.place[k]^w, c.place[k]&w
+	}
+}
+
 // addTo adds weight times the count of each lane to dst[lane*step], and empties
 // the counter.
 func (c *laneCounter) addTo(dst []int64, step int, weight int64) {
-	for low := 0; low < c.top; low += 8 {
-		places := c.place[low:min(low+8, c.top)]
+	place := c.settle()
+	for low := 0; low < len(place); low += 8 {
+		places := place[low:min(low+8, len(place))]
 		for group := range 8 {
 			var v uint64 // byte i: 8 bits of the count of lane 8*group+i
 			for k, w := range places {
@@ -119,75 +133,93 @@ func (c *laneCounter) addTo(dst []int64, step int, weight int64) {
 			}
 		}
 	}
-	clear(c.place[:c.top])
-	c.top = 0
+	clear(place)
 }
 
-// patternCounter counts the patterns of n words by bit position, over all lanes.
-// For few words it counts the lanes in which all words of a subset have a 1,
-// and gets the patterns from these by inclusion and exclusion; else it reads
-// the pattern of every lane.
-type patternCounter struct {
-	n      int
-	subset [1 << subsetWords]int64
-	all    [1 << subsetWords]uint64
-}
+// gathered is how many seats are read together.
+const gathered = 64
 
-// subsetWords is the largest number of words whose subsets are fewer than the
+// slotColumns holds by slot the words of some seats.
+type slotColumns [MaxBits][gathered]uint64
+
+// subsetSlots is the largest number of slots whose subsets are fewer than the
 // steps of reading 64 patterns.
-const subsetWords = 6
+const subsetSlots = 6
 
-// add counts one seat.
-func (c *patternCounter) add(words []uint64) {
-	n := 1
-	for _, w := range words {
-		for s := range n {
-			c.all[n+s] = c.all[s] & w
+// countSubsets adds to counts[s] the lanes and seats i < n in which all words
+// w[k][i] with bit k of s have a 1, for len(counts) = 2^slots, at least 8. The
+// subsets of the first three slots are counted together.
+func countSubsets(w *slotColumns, n int, counts []int64) {
+	x, y, z := w[0][:n], w[1][:n], w[2][:n]
+	var with [gathered]uint64
+	for s := 0; s+8 <= len(counts); s += 8 {
+		m := with[:n]
+		for i := range m {
+			m[i] = ^uint64(0)
 		}
-		n *= 2
-	}
-	for s, w := range c.all[:n] {
-		c.subset[s] += int64(bits.OnesCount64(w))
+		for k := 3; s>>k != 0; k++ {
+			if s>>k&1 != 0 {
+				for i := range m {
+					m[i] &= w[k][i]
+				}
+			}
+		}
+		var c [8]int
+		for i, v := range m {
+			a, b := v&x[i], v&y[i]
+			ab := a & b
+			c[0] += bits.OnesCount64(v)
+			c[1] += bits.OnesCount64(a)
+			c[2] += bits.OnesCount64(b)
+			c[3] += bits.OnesCount64(ab)
+			c[4] += bits.OnesCount64(v & z[i])
+			c[5] += bits.OnesCount64(a & z[i])
+			c[6] += bits.OnesCount64(b & z[i])
+			c[7] += bits.OnesCount64(ab & z[i])
+		}
+		for j, k := range c {
+			counts[s+j] += int64(k)
+		}
 	}
 }
 
-// addTo adds the counts to dst[pattern], where bit i of a pattern is bit slots[i],
-// and empties the counter.
-func (c *patternCounter) addTo(dst []int64, slots []int) {
-	n := 1 << len(slots)
-	counts := c.subset[:n]
+// addPatterns turns counts of subsets into counts of patterns by inclusion and
+// exclusion and adds them to dst, where bit i of a subset is bit slots[i] of a
+// pattern.
+func addPatterns(counts []int64, slots []int, dst []int64) {
 	for i := range slots {
-		for s := range n {
-			if s>>i&1 == 0 {
+		for s := range counts {
+			if s>>i&1 == 0 && s|1<<i < len(counts) {
 				counts[s] -= counts[s|1<<i]
 			}
 		}
 	}
-	for s, k := range counts {
+	for s, k := range counts[:1<<len(slots)] {
 		p := 0
 		for i, b := range slots {
 			p |= s >> i & 1 << b
 		}
 		dst[p] += k
 	}
-	clear(counts)
 }
 
-// countLanes adds one to dst for the pattern of every lane, where bit b of a
-// pattern is in words[b].
-func countLanes(words []uint64, dst []int64) {
-	for group := 0; group < lanesPerWord; group += 8 {
-		var low, high uint64
-		for b, w := range words {
-			v := spread[w>>group&255]
-			if b < 8 {
-				low |= v << b
-			} else {
-				high |= v << (b - 8)
+// countLanes adds one to dst for the pattern of every lane of seats i < n, where
+// bit k of w, by slot, is bit slots[k] of a pattern.
+func countLanes(w *slotColumns, n int, slots []int, dst []int64) {
+	for i := range n {
+		for group := 0; group < lanesPerWord; group += 8 {
+			var low, high uint64
+			for k, b := range slots {
+				v := spread[w[k][i]>>group&255]
+				if b < 8 {
+					low |= v << b
+				} else {
+					high |= v << (b - 8)
+				}
 			}
-		}
-		for i := 0; i < 64; i += 8 {
-			dst[low>>i&255|high>>i&255<<8]++
+			for j := 0; j < 64; j += 8 {
+				dst[low>>j&255|high>>j&255<<8]++
+			}
 		}
 	}
 }

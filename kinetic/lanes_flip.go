@@ -21,7 +21,7 @@ type fastMove struct {
 	at   [8]int32  // by term: its word, or the word of its other site
 	mask [8]uint64 // by levels: 0 for a term that the move lacks
 	sign [8]uint64
-	leaf [16]uint8 // by number of terms that cost energy
+	leaf [9]uint8 // by number of terms that cost energy
 }
 
 // chooseKernel finds the first special kernel that runs every move.
@@ -33,7 +33,7 @@ func (p *lanePlan) chooseKernel() {
 	for i, k := range kernels {
 		fits := true
 		for z := range p.zoned {
-			if p.moves[z%len(p.moves)].chances.clock > 0 {
+			if p.clockOf(z%len(p.moves)) > 0 {
 				fits = fits && p.setFast(&p.zoned[z], 4*(i+1))
 			}
 		}
@@ -88,9 +88,6 @@ func (p *lanePlan) setFast(mv *zonedMove, n int) bool {
 			return false
 		}
 	}
-	for i := range f.leaf {
-		f.leaf[i] = uint8(p.width - 2)
-	}
 	copy(f.leaf[:], p.leaves[mv.leaf:mv.leaf+mv.combos])
 	return true
 }
@@ -109,7 +106,7 @@ func (p *lanePlan) moving() float64 {
 			cost += 6 + 4*words
 		}
 		m := z % len(p.moves)
-		worst[m] = max(worst[m], p.moves[m].chances.clock*cost)
+		worst[m] = max(worst[m], p.clockOf(m)*cost)
 	}
 	sum := 0.0
 	for _, w := range worst {
@@ -117,6 +114,9 @@ func (p *lanePlan) moving() float64 {
 	}
 	return sum
 }
+
+// clockOf is the rate of attempts at a move of a cell.
+func (p *lanePlan) clockOf(move int) float64 { return p.sets[p.moves[move].set].clock }
 
 // run makes attempts from..to of the present ones.
 func (e *lanes) run(from, to int) {
@@ -172,19 +172,19 @@ func counts4(a, b, c, d uint64) (one, two, four uint64) {
 	return ab ^ cd, p ^ q ^ r, p & q
 }
 
-// pick4 returns the word in row that each bit's count, 0 to 4, chooses.
-func pick4(one, two, four uint64, row *[16]uint64, leaf *[16]uint8) uint64 {
-	l0, l1 := row[leaf[0]&15], row[leaf[1]&15]
-	l2, l3 := row[leaf[2]&15], row[leaf[3]&15]
+// pick4 returns the bits of the columns that each bit's count, 0 to 4, chooses.
+func pick4(one, two, four uint64, columns []wordColumn, i int, leaf *[9]uint8) uint64 {
+	l0, l1 := columns[leaf[0]][i], columns[leaf[1]][i]
+	l2, l3 := columns[leaf[2]][i], columns[leaf[3]][i]
 	l0 ^= one & (l0 ^ l1)
 	l2 ^= one & (l2 ^ l3)
 	l0 ^= two & (l0 ^ l2)
-	return l0 ^ four&(l0^row[leaf[4]&15])
+	return l0 ^ four&(l0^columns[leaf[4]][i])
 }
 
 func (e *lanes) runFlips4(from, to int) {
 	words, zoned := e.words, e.plan.zoned
-	width := e.plan.width
+	columns := e.next.columns
 	jumps := 0
 	for i := from; i < to; i++ {
 		a := e.next.list[i]
@@ -195,7 +195,7 @@ func (e *lanes) runFlips4(from, to int) {
 		one, two, four := counts4(
 			words[uint32(base+mv.at[0])]^v^mv.sign[0], words[uint32(base+mv.at[1])]^v^mv.sign[1],
 			words[uint32(base+mv.at[2])]^v^mv.sign[2], words[uint32(base+mv.at[3])]^v^mv.sign[3])
-		accepted := pick4(one, two, four, (*[16]uint64)(e.next.rows[i*width:]), &mv.leaf)
+		accepted := pick4(one, two, four, columns, i, &mv.leaf)
 		words[own] = v ^ accepted
 		jumps += bits.OnesCount64(accepted)
 		if e.plan.hits > 0 {
@@ -207,7 +207,7 @@ func (e *lanes) runFlips4(from, to int) {
 
 func (e *lanes) runLevels4(from, to int) {
 	words, zoned := e.words, e.plan.zoned
-	width := e.plan.width
+	columns := e.next.columns
 	jumps := 0
 	for i := from; i < to; i++ {
 		a := e.next.list[i]
@@ -220,7 +220,7 @@ func (e *lanes) runLevels4(from, to int) {
 		one, two, four := counts4(
 			w0&mv.mask[0]^mv.sign[0], w1&mv.mask[1]^mv.sign[1],
 			w2&mv.mask[2]^mv.sign[2], w3&mv.mask[3]^mv.sign[3])
-		accepted := pick4(one, two, four, (*[16]uint64)(e.next.rows[i*width:]), &mv.leaf)
+		accepted := pick4(one, two, four, columns, i, &mv.leaf)
 		*p0 = w0 ^ accepted&mv.mask[0]
 		*p1 = w1 ^ accepted&mv.mask[1]
 		*p2 = w2 ^ accepted&mv.mask[2]
@@ -277,10 +277,9 @@ func (e *lanes) accepted(i int, mv *zonedMove, base int32) uint64 {
 			}
 		}
 	}
-	row := e.next.rows[i*p.width:][:p.width]
 	val := e.values[:mv.combos]
 	for c, leaf := range p.leaves[mv.leaf:][:mv.combos] {
-		val[c] = row[leaf]
+		val[c] = e.next.columns[leaf][i]
 	}
 	for g := len(mv.groups) - 1; g >= 0; g-- {
 		n := int(mv.groups[g])

@@ -30,11 +30,12 @@ type lanePlan struct {
 	first  []int      // by seat: its first move
 	choice aliases    // of a move, by clock
 	clock  float64    // attempts per unit time on the lattice
-	width  int        // of a row of acceptance words
-	hits   int        // lines that an attempt changes at most
+	sets   []chanceSet
+	hits   int // lines that an attempt changes at most
 
-	rest     float64 // largest rest of a chance
-	gapScale float64 // mean distance between bits that come up with it, as exponential
+	columns int     // words of acceptance of an attempt, at most
+	rest    float64 // largest rest of a chance
+	extra   poisson // number of points strewn over the attempts drawn together
 
 	rows, cols       uint64
 	zoneRow, zoneCol []uint32
@@ -53,7 +54,7 @@ type lanePlan struct {
 // planMove is a move of the cell.
 type planMove struct {
 	seat, move int
-	chances    chanceSet
+	set        int // of its chances
 }
 
 // wordList is a range of lanePlan.words.
@@ -76,8 +77,8 @@ type laneTerm struct {
 
 // zonedMove is a move in a zone. The rate depends on how many terms of each
 // group (equal coupling up to sign) cost energy: combinations of these numbers
-// are counted with the last group fastest, and leaves has for each the place of
-// the acceptance word in its row.
+// are counted with the last group fastest, and leaves has for each the column of
+// the acceptance word.
 type zonedMove struct {
 	changes             wordList // words changed; from tracked on, tracked terms only
 	tracked             uint32
@@ -149,57 +150,74 @@ func newLanePlanIn(g *Generator, flips bool) (*lanePlan, error) {
 
 // setChances finds the clocks of the moves and the chances of their attempts.
 func (p *lanePlan) setChances() error {
-	g := p.g
-	rates := make([][]float64, len(p.moves))
-	for i := range g.Shapes {
-		s := &g.Shapes[i]
-		for m, list := range s.Rate {
-			at := p.first[s.Seat] + m
-			for pattern, r := range list {
-				if s.possible(g, pattern) {
-					rates[at] = append(rates[at], r)
-				}
-			}
-			rates[at] = distinct(rates[at])
-			if n := len(rates[at]); n > maxRow {
-				return &LaneLimit{"rates of one bath operator on a site", n, maxRow}
+	rates := p.ratesOfMoves()
+	var clocks []float64
+	var union [][]float64 // of the rates of the moves of a set
+	for i, list := range rates {
+		clock := chanceClock(list)
+		set := -1
+		for k, other := range clocks {
+			if math.Abs(clock-other) <= 1e-14*other {
+				set = k
 			}
 		}
+		if set < 0 {
+			set = len(clocks)
+			clocks = append(clocks, clock)
+			union = append(union, nil)
+		}
+		clocks[set] = math.Max(clocks[set], clock)
+		union[set] = append(union[set], list...)
+		p.moves[i].set = set
 	}
-	var weights []float64
-	entries := 0
-	for i := range p.moves {
-		c := newChanceSet(rates[i])
-		p.moves[i].chances = c
-		entries = max(entries, c.entries())
-		weights = append(weights, c.clock)
-		for _, d := range c.direct {
+	p.columns = 2
+	for k, clock := range clocks {
+		set := newChanceSet(clock, distinct(union[k]))
+		p.columns = max(p.columns, set.columns())
+		p.sets = append(p.sets, set)
+		for _, d := range set.direct {
 			p.rest = math.Max(p.rest, d.rest)
 		}
 	}
-	p.width = 16
-	for p.width < entries+2 {
-		p.width *= 2
-	}
-	if p.width > maxRow {
-		return &LaneLimit{"probabilities of one bath operator on a site", entries, maxRow - 2}
+	if p.columns > maxColumns {
+		return &LaneLimit{"probabilities of an attempt", p.columns - 2, maxColumns - 2}
 	}
 	if p.rest > 0 {
-		p.gapScale = -1 / math.Log1p(-p.rest)
+		p.extra = newPoisson(p.rest * attemptsAhead * lanesPerWord)
+	}
+	for k := range p.sets {
+		for d := range p.sets[k].direct {
+			c := &p.sets[k].direct[d]
+			c.heeds = uint64(c.rest / p.rest * (1 << 51))
+		}
+	}
+	var weights []float64
+	for i := range p.moves {
+		weights = append(weights, clocks[p.moves[i].set])
 	}
 	if len(weights) > 0 {
 		p.choice.set(weights)
-		p.clock = p.choice.sum * float64(g.Cells())
+		p.clock = p.choice.sum * float64(p.g.Cells())
 	}
 	return nil
 }
 
-// draws returns how many random words choose an attempt.
-func (p *lanePlan) draws() int {
-	if len(p.moves) > 1 {
-		return 2
+// ratesOfMoves lists the distinct rates of every move of the cell, increasing.
+func (p *lanePlan) ratesOfMoves() [][]float64 {
+	rates := make([][]float64, len(p.moves))
+	for i := range p.g.Shapes {
+		s := &p.g.Shapes[i]
+		for m, list := range s.Rate {
+			at := p.first[s.Seat] + m
+			for pattern, r := range list {
+				if s.possible(p.g, pattern) {
+					rates[at] = append(rates[at], r)
+				}
+			}
+			rates[at] = distinct(rates[at])
+		}
 	}
-	return 1
+	return rates
 }
 
 // addPlace compiles one seat of one zone.
@@ -289,7 +307,7 @@ func (p *lanePlan) addMove(pl *Place, seat, m int, terms [][]int32) error {
 	}
 	out.lastTerm = uint32(len(p.terms))
 	out.leaf = uint32(len(p.leaves))
-	chances := &p.moves[p.first[seat]+m].chances
+	chances := &p.sets[p.moves[p.first[seat]+m].set]
 	leaves := make([]uint8, out.combos)
 	for costly := range 1 << n {
 		pattern, combo, at := 0, 0, 0
@@ -305,18 +323,11 @@ func (p *lanePlan) addMove(pl *Place, seat, m int, terms [][]int32) error {
 			}
 			pattern |= level << b
 		}
-		leaves[combo] = p.leafOf(chances, shape.Rate[m][pattern])
+		leaves[combo] = chances.column(shape.Rate[m][pattern])
 	}
 	p.leaves = append(p.leaves, leaves...)
 	p.zoned = append(p.zoned, out)
 	return nil
-}
-
-func (p *lanePlan) leafOf(c *chanceSet, rate float64) uint8 {
-	if c.clock == 0 {
-		return uint8(p.width - 2)
-	}
-	return c.place(rate, p.width)
 }
 
 // energyGroups sorts the energy terms among slots of a seat into groups of equal

@@ -56,7 +56,7 @@ func (e *lanes) count() {
 		c.addTo(e.sums[f:], width, -2)
 	}
 	for l, line := range g.Lines {
-		c.addOne(e.words[p.layout.lines[l]:], 1, line.Positions)
+		c.add(e.words[p.layout.lines[l]:][:line.Positions])
 		c.addTo(e.sums[len(g.Families)+l:], width, -2)
 	}
 }
@@ -64,16 +64,67 @@ func (e *lanes) count() {
 // countFamily counts the terms of a family at level 1.
 func (e *lanes) countFamily(f int, c *laneCounter) {
 	p := e.plan
-	planes := p.layout.planes
 	if !p.layout.flips {
 		if w := p.layout.level[f]; w >= 0 {
-			c.addOne(e.words[w:], planes, p.g.Cells())
+			e.countRun(c, []int32{int32(w)}, 0, p.g.Cells())
 		}
 		return
 	}
-	e.eachStretch(f, func(base, n int, words []int32) {
-		c.add(e.words, base, planes, n, words)
-	})
+	e.eachStretch(f, func(base, n int, words []int32) { e.countRun(c, words, base, n) })
+}
+
+// countRun counts terms of n cells.
+func (e *lanes) countRun(c *laneCounter, words []int32, base, n int) {
+	if e.plan.layout.planes == 1 {
+		x := e.words[base+int(words[0]):][:n]
+		switch len(words) {
+		case 1:
+			c.add(x)
+			return
+		case 2:
+			c.addPairs(x, e.words[base+int(words[1]):][:n])
+			return
+		}
+	}
+	var some [gathered]uint64
+	for n > 0 {
+		k := min(n, gathered)
+		e.gather(words, base, some[:k])
+		c.add(some[:k])
+		base += k * e.plan.layout.planes
+		n -= k
+	}
+}
+
+// gather writes the levels of terms of successive cells, given by the
+// differences of their words from the first word of the cell.
+func (e *lanes) gather(words []int32, base int, dst []uint64) {
+	planes := e.plan.layout.planes
+	if len(words) == 0 {
+		clear(dst)
+		return
+	}
+	at := base + int(words[0])
+	if len(words) == 1 {
+		for i := range dst {
+			dst[i] = e.words[at]
+			at += planes
+		}
+		return
+	}
+	with := base + int(words[1])
+	for i := range dst {
+		dst[i] = e.words[at] ^ e.words[with]
+		at += planes
+		with += planes
+	}
+	for _, d := range words[2:] {
+		at := base + int(d)
+		for i := range dst {
+			dst[i] ^= e.words[at]
+			at += planes
+		}
+	}
 }
 
 // eachStretch calls visit for runs of cells in which a seat stands for a term of
@@ -130,25 +181,24 @@ func (e *lanes) countSeats(place *lanePlace, base, n int, dst []int64) {
 	p := e.plan
 	dst = dst[int(place.shape)<<p.g.Bits:][:1<<p.g.Bits]
 	present := slotsOf(p.g.Shapes[place.shape].Present)
-	var words [MaxBits]uint64
-	var few patternCounter
-	few.all[0] = ^uint64(0)
-	for range n {
-		if len(present) <= subsetWords {
-			for i, b := range present {
-				words[i] = e.slot(place, b, int32(base))
-			}
-			few.add(words[:len(present)])
-		} else {
-			for b := range place.slots {
-				words[b] = e.slot(place, b, int32(base))
-			}
-			countLanes(words[:place.slots], dst)
+	var w slotColumns
+	var subsets [1 << subsetSlots]int64
+	counts := subsets[:max(8, 1<<min(len(present), subsetSlots))]
+	for n > 0 {
+		k := min(n, gathered)
+		for i, b := range present {
+			e.gather(p.wordsOf(p.slots[int(place.first)+b]), base, w[i][:k])
 		}
-		base += p.layout.planes
+		if len(present) <= subsetSlots {
+			countSubsets(&w, k, counts)
+		} else {
+			countLanes(&w, k, present, dst)
+		}
+		base += k * p.layout.planes
+		n -= k
 	}
-	if len(present) <= subsetWords {
-		few.addTo(dst, present)
+	if len(present) <= subsetSlots {
+		addPatterns(counts, present, dst)
 	}
 }
 
@@ -243,16 +293,24 @@ func (e *lanes) Patterns(lane int, dst []uint16) {
 // readPatterns writes the patterns of a run of seats in one place.
 func (e *lanes) readPatterns(place *lanePlace, base, n, lane int, dst []uint16) {
 	p := e.plan
-	seats, planes := len(p.g.Seats), p.layout.planes
-	for i := range n {
-		dst[i*seats] = 0
-	}
-	for b := range place.slots {
-		for _, d := range p.wordsOf(p.slots[int(place.first)+b]) {
-			at := base + int(d)
-			for i := range n {
-				dst[i*seats] ^= uint16(e.words[at]>>lane&1) << b
-				at += planes
+	seats := len(p.g.Seats)
+	var w [gathered]uint64
+	for first := 0; first < n; first += gathered {
+		some := w[:min(n-first, gathered)]
+		for b := range place.slots {
+			e.gather(p.wordsOf(p.slots[int(place.first)+b]), base+first*p.layout.planes, some)
+			at := first * seats
+			for _, v := range some {
+				if b == 0 {
+					dst[at] = 0
+				}
+				dst[at] |= uint16(v>>lane&1) << b
+				at += seats
+			}
+		}
+		if place.slots == 0 {
+			for i := range some {
+				dst[(first+i)*seats] = 0
 			}
 		}
 	}

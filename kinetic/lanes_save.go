@@ -19,7 +19,7 @@ func (e *lanes) Save(dst []byte) []byte {
 		b = append(b, pcg...)
 		bulk := e.from.bulk
 		for _, v := range []uint64{
-			bulk.a, bulk.b, bulk.c, bulk.d, e.from.gap,
+			bulk.a, bulk.b, bulk.c, bulk.d,
 			math.Float64bits(e.next.begin), math.Float64bits(e.now), uint64(e.done), e.jumps,
 		} {
 			b = binary.LittleEndian.AppendUint64(b, v)
@@ -34,7 +34,7 @@ func (e *lanes) Save(dst []byte) []byte {
 // Restore continues from a state that Save wrote, bit for bit. On error the
 // engine is as it was.
 func (e *lanes) Restore(src []byte) error {
-	size := len(savedLanes) + 32 + 16 + 9*8 + 8*int(e.plan.layout.spare) + 8
+	size := len(savedLanes) + 32 + 16 + 8*8 + 8*int(e.plan.layout.spare) + 8
 	r, err := unseal(src, savedLanes, e.plan.g, size)
 	if err != nil {
 		return err
@@ -43,7 +43,6 @@ func (e *lanes) Restore(src []byte) error {
 		return fmt.Errorf("%w: %w", ErrSaved, err)
 	}
 	e.next.bulk = bulk{r.u64(), r.u64(), r.u64(), r.u64()}
-	e.next.gap = r.u64()
 	begin := r.f64()
 	e.now = r.f64()
 	done := int(r.u64())
