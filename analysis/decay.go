@@ -193,7 +193,7 @@ func (s *planeSums) fitted() (*fitted, string) {
 	if len(f.at) < tailLeast {
 		return nil, "too few distances"
 	}
-	if s.k[1] < 2*se[1] {
+	if s.k[1] <= 2*se[1] {
 		return nil, "the covariance at distance 1 is zero within two standard errors: shorter than the lattice can show"
 	}
 	f.without = make([][]float64, len(s.without))

@@ -5,6 +5,9 @@ import (
 	"math"
 )
 
+// upDown names the half difference of starts up and down.
+const upDown = "up-down"
+
 // transient is the mean of an observable against time since one start, with and
 // without each unit.
 type transient struct {
@@ -29,9 +32,7 @@ func approaches(p *Point, results []ObservableResult, opt Options) []Approach {
 		}
 		up, down := newTransient(p, t, "up", Estimate{}), newTransient(p, t, "down", Estimate{})
 		if len(up.without) > 0 && len(down.without) > 0 {
-			a := halfDifference(up, down).approach(opt)
-			a.Coupling = coupling(halfDifference(up, down))
-			out = append(out, a)
+			out = append(out, halfDifference(up, down).approach(opt))
 		}
 	}
 	return out
@@ -71,7 +72,7 @@ func newTransient(p *Point, t *Transient, start string, limit Estimate) transien
 // halfDifference pairs the units of the two starts in their order. Its limit is
 // 0 by definition of equilibrium.
 func halfDifference(up, down transient) transient {
-	d := transient{observable: up.observable, start: "up-down", times: up.times}
+	d := transient{observable: up.observable, start: upDown, times: up.times}
 	for i := range up.mean {
 		d.mean = append(d.mean, (up.mean[i]-down.mean[i])/2)
 	}
@@ -117,7 +118,14 @@ func (t transient) approach(opt Options) Approach {
 	if !a.Time.OK {
 		a.Warnings = append(a.Warnings, warn(a.Time.Code, "no time to equilibrium: %s", a.Time.Reason))
 	}
-	a.Tau = t.lastDecay(a.Err)
+	var logs []float64
+	a.Tau, logs = t.lastDecay(a.Err)
+	if t.start == upDown {
+		var extrapolated bool
+		if a.Coupling, extrapolated = t.coupling(a.Err, a.Tau, logs); extrapolated {
+			a.Warnings = append(a.Warnings, warn(codeExtrapolated, "the coupling time %.4g is extrapolated with the last decay seen", a.Coupling.Value))
+		}
+	}
 	return a
 }
 
@@ -162,8 +170,9 @@ func (t transient) within(epsilon float64, se []float64) Estimate {
 	return symmetric(v, jackknife(without), len(t.without))
 }
 
-// lastDecay averages exponential tails of mean - limit, as for C(t).
-func (t transient) lastDecay(se []float64) Estimate {
+// lastDecay averages exponential tails of mean - limit, as for C(t). It returns
+// ln tau without each unit too.
+func (t transient) lastDecay(se []float64) (Estimate, []float64) {
 	sign := math.Copysign(1, t.mean[0]-t.limit.Value)
 	f := &fitted{step: 1, tau: 1, total: 1}
 	next := 0.0
@@ -182,7 +191,7 @@ func (t transient) lastDecay(se []float64) Estimate {
 		next = t.times[i] * 1.25
 	}
 	if len(f.at) < fewestFit || len(t.without) < 8 {
-		return missing(codeNoise, "fewer than 4 times of the decay stand out of noise, or fewer than 8 units")
+		return missing(codeNoise, "fewer than 4 times of the decay stand out of noise, or fewer than 8 units"), nil
 	}
 	f.without = make([][]float64, len(t.without))
 	for u, mean := range t.without {
@@ -202,28 +211,28 @@ func (t transient) lastDecay(se []float64) Estimate {
 	}
 	var ok bool
 	if f.cov, ok = shrunkCovariance(f.without, model); !ok {
-		return missing(codeNoise, "the errors of the mean are degenerate")
+		return missing(codeNoise, "the errors of the mean are degenerate"), nil
 	}
 	tl, ok := newTails(f)
 	if !ok {
-		return missing(codeNoise, "the errors of the mean are degenerate")
+		return missing(codeNoise, "the errors of the mean are degenerate"), nil
 	}
 	ln, spread, ok := tl.average(f.y, true)
 	if !ok {
-		return missing(codeNoise, "no decay can be fitted")
+		return missing(codeNoise, "no decay can be fitted"), nil
 	}
 	logs, ok := resampled(len(f.without), func(u int) (float64, bool) {
 		ln, _, ok := tl.average(f.without[u], false)
 		return ln, ok
 	})
 	if !ok {
-		return missing(codeNoise, "no decay can be fitted without one of the units")
+		return missing(codeNoise, "no decay can be fitted without one of the units"), nil
 	}
 	se2 := math.Hypot(jackknife(logs), math.Sqrt(spread))
 	if se2 > noisyLog {
-		return missing(codeNoise, "its error would exceed the value")
+		return missing(codeNoise, "its error would exceed the value"), nil
 	}
-	return logarithmic(ln, se2, len(f.without))
+	return logarithmic(ln, se2, len(f.without)), logs
 }
 
 // coupling is when half the difference of the two total magnetisations falls to
@@ -232,35 +241,27 @@ func (t transient) lastDecay(se []float64) Estimate {
 // number of sites on which they disagree; at time t the distance in total
 // variation from equilibrium, from any start, is at most that number (D. A.
 // Levin, Y. Peres, E. L. Wilmer, Markov Chains and Mixing Times, corollary 5.5):
-// an upper bound of the mixing time.
-func coupling(t transient) Estimate {
-	if len(t.without) < fewestBlocks {
-		return missing(codeFewUnits, "too few units of both starts")
+// an upper bound of the mixing time. Where the difference is lost in noise
+// before, it is extrapolated from the last time at which it is ten standard
+// errors large, with the last decay seen.
+func (t transient) coupling(se []float64, tau Estimate, logs []float64) (e Estimate, extrapolated bool) {
+	const goal, clear = mixingDistance, 10
+	from := 0
+	for from+1 < len(t.mean) && t.mean[from+1] > math.Max(goal, clear*se[from+1]) {
+		from++
 	}
-	const goal = mixingDistance
-	of := func(mean []float64) (float64, bool) {
-		for i := 1; i < len(mean); i++ {
-			if mean[i] > goal {
-				continue
-			}
-			d := math.Max(mean[i], goal/10)
-			f := math.Log(mean[i-1]/goal) / math.Log(mean[i-1]/d)
-			return t.times[i-1] + f*(t.times[i]-t.times[i-1]), true
-		}
-		return 0, false
+	if from+1 == len(t.mean) {
+		return missing(codeNotReached, "half the difference does not fall to 1/4 within the recorded time"), false
 	}
-	v, ok := of(t.mean)
-	without, ok2 := resampled(len(t.without), func(u int) (float64, bool) { return of(t.without[u]) })
-	if !ok || !ok2 {
-		return missing(codeNotReached, "half the difference does not fall to 1/4 within the recorded time")
+	if t.mean[from] <= clear*se[from] || !tau.OK {
+		return missing(codeNoise, "half the difference is lost in noise before it falls to 1/4"), false
 	}
-	column := make([]float64, len(t.without))
-	at := lagNear(t.times, v)
-	for u, row := range t.without {
-		column[u] = row[at]
+	at := func(mean, ln float64) float64 { return t.times[from] + math.Exp(ln)*math.Log(mean/goal) }
+	without, ok := resampled(len(t.without), func(u int) (float64, bool) {
+		return at(t.without[u][from], logs[u]), t.without[u][from] > 0
+	})
+	if !ok {
+		return missing(codeNoise, "half the difference is lost in noise without one of the units"), false
 	}
-	if jackknife(column) > goal/2 {
-		return missing(codeNoise, "the difference is not known to 1/8: more units are needed")
-	}
-	return symmetric(v, jackknife(without), len(t.without))
+	return symmetric(at(t.mean[from], math.Log(tau.Value)), jackknife(without), len(without)), t.mean[from+1] > goal
 }

@@ -229,8 +229,12 @@ func (t *Trend) poor() {
 	}
 }
 
-// decisive is the weight from which a regime is named.
-const decisive = 0.9
+// A regime is named from this weight on; "flat" needs an exponent that is zero
+// within this error.
+const (
+	decisive = 0.9
+	flatness = 0.15
+)
 
 // sizeRegime puts the weights into words that do not overclaim.
 func sizeRegime(t *Trend) string {
@@ -249,9 +253,11 @@ func sizeRegime(t *Trend) string {
 		}
 		return "changes with the size " + span + ": not yet the length of a large lattice"
 	}
+	if z, ok := t.exponent(); ok && t.Models[0].Name == "constant" && math.Abs(z.Value) < 2*z.Err && z.Err < flatness {
+		return fmt.Sprintf("flat %s within errors (a power of L would have exponent %.2f(%.2f)): consistent with a gap that stays open, as far as this observable sees; it does not show rapid mixing",
+			span, z.Value, z.Err)
+	}
 	switch {
-	case kinds["constant"] > decisive:
-		return "flat " + span + ": consistent with a gap that stays open, as far as this observable sees; it does not show rapid mixing"
 	case kinds["power"] > decisive:
 		return "grows like a power of L " + span
 	case kinds["exponential"] > decisive:
@@ -268,6 +274,16 @@ func sizeRegime(t *Trend) string {
 		}
 	}
 	return "these sizes and errors do not decide between " + strings.Join(open, ", ")
+}
+
+// exponent is z of the fitted power.
+func (t *Trend) exponent() (Parameter, bool) {
+	for _, m := range t.Models {
+		if m.Name == "power" {
+			return m.Parameters[1], true
+		}
+	}
+	return Parameter{}, false
 }
 
 func kindOf(name string) string {

@@ -37,6 +37,7 @@ const (
 	codeLowerBound    = "lower_bound"
 	codeFrozen        = "frozen"
 	codePoorFit       = "poor_fit"
+	codeExtrapolated  = "extrapolated"
 )
 
 // WarningKinds lists every warning code that results can carry.
@@ -66,6 +67,7 @@ var WarningKinds = []WarningKind{
 	{codeNotReached, "the mean did not come close to its limit within the recorded time", ""},
 	{codeLowerBound, "the value is a lower bound on 1/gap", ""},
 	{codePoorFit, "no form fits the trend", "best chi^2 above its degrees of freedom by 4 standard deviations"},
+	{codeExtrapolated, "a time lies beyond what was recorded clearly and was extrapolated", ""},
 	{codeFrozen, "no jumps happened in a trajectory", ""},
 }
 
