@@ -86,6 +86,7 @@ func (d *decoder) unfold(root *node) (combinations []combination, scanned []stri
 	}
 	model := d.modelName(root)
 	columns := map[string]string{}
+	var keys []string
 	for _, t := range scans {
 		s := scanReader{d: d, root: root, model: model, section: "scan"}
 		if cases != nil {
@@ -93,6 +94,7 @@ func (d *decoder) unfold(root *node) (combinations []combination, scanned []stri
 		}
 		s.table(t, "")
 		for _, a := range s.axes {
+			keys = append(keys, a.target.key)
 			if !slices.Contains(scanned, a.name) {
 				scanned = append(scanned, a.name)
 			}
@@ -109,6 +111,13 @@ func (d *decoder) unfold(root *node) (combinations []combination, scanned []stri
 			continue
 		}
 		combinations = append(combinations, d.product(s.axes, t.at, s.section, maxPoints-len(combinations))...)
+	}
+	if len(combinations) == 0 {
+		// The study will be read without its scan, for what else is wrong; its
+		// tables need not have what the scan would set.
+		for _, key := range keys {
+			d.meant[key] = true
+		}
 	}
 	return combinations, scanned
 }
@@ -197,10 +206,6 @@ func (s *scanReader) entry(name string, e *entry) {
 		s.failed = s.failed || v.bad
 	}
 	s.axes = append(s.axes, axis{dotted, to, e.at, values})
-	if s.failed {
-		// There will be no points: the tables need not have what is scanned.
-		s.d.meant[to.key] = true
-	}
 }
 
 // resolve finds what a name in a scan stands for.
@@ -227,7 +232,7 @@ func (s *scanReader) resolve(name string, e *entry) (dotted string, key Key, to 
 				break
 			}
 			if !key.Scan {
-				s.fault(e.at, name, "cannot be scanned: only numbers can")
+				s.fault(e.at, name, "is not a number that a scan can vary")
 				return "", key, to, false
 			}
 			return dotted, key, s.target(sec.Name, parts[1]), true

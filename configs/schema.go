@@ -65,6 +65,8 @@ func (r Range) String() string {
 	switch {
 	case !r.Set:
 		return ""
+	case r.Min == r.Max:
+		return formatNumber(r.Min)
 	case r.Exclusive:
 		return "above " + formatNumber(r.Min)
 	case math.IsInf(r.Max, 1):

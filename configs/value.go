@@ -6,6 +6,7 @@ import (
 	"slices"
 	"strconv"
 	"strings"
+	"unicode"
 )
 
 var namePattern = regexp.MustCompile(`^[A-Za-z][A-Za-z0-9_-]*$`)
@@ -81,6 +82,8 @@ func (d *decoder) checkText(k Key, t Type, n *node, path string) {
 	switch {
 	case n.kind != kindText:
 		d.wrong(n, path, "takes %s, not %s", t, n.shown())
+	case t == Text && strings.ContainsFunc(n.text, unicode.IsControl) && k.Name == "title":
+		d.wrong(n, path, "is more than one line of text")
 	case t == Name && !namePattern.MatchString(n.text):
 		d.wrong(n, path, "%s is not a name: a letter, then letters, digits, _ and -", n.shown())
 	case t == Word && !slices.Contains(k.Words, n.text):

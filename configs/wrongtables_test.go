@@ -45,6 +45,7 @@ var wrongKeys = []wrong{
 }
 
 var wrongValues = []wrong{
+	{name: "title of two lines", old: `"Coldest shelf"`, new: `▸"Coldest\nshelf"`, want: []string{"title: is more than one line of text"}},
 	{name: "string for a number", old: "beta = 0.4", new: `beta = ▸"0.4"`, want: []string{"bath.beta: takes a number, not a string: leave out the quotes"}},
 	{name: "word for a number", old: "beta = 0.4", new: `beta = ▸"cold"`, want: []string{"bath.beta: takes a number, not \"cold\""}},
 	{name: "number for a word", old: "[trajectory]", new: "[trajectory]\nstart = ▸1", want: []string{"trajectory.start: takes a word, not 1"}},
@@ -100,6 +101,7 @@ var wrongHamiltonians = []wrong{
 	{name: "cut terms that do not commute", from: swap(spelt, "size = [8, 8]", "size = [8, 8]\nboundary = \"open\""), old: starHead + `x = ["1 + x^-1", "1 + y^-1"]` + "\n[[hamiltonian.tracked]]\nname = \"loop\"", new: starHead + "cut = \"truncate\"\n" + `x = ["1 + x^-1", "1 + y^-1"]` + "\n[[hamiltonian.tracked]]\nname = ▸\"loop\"", want: []string{"hamiltonian.tracked: does not commute with the family star as cut at an open edge"}},
 	{name: "tracked operator that does not commute", from: spelt, old: `name = "loop"` + "\n" + `z = ["line x", "0"]`, new: `name = ▸"loop"` + "\n" + `z = ["1", "0"]`, want: []string{"hamiltonian.tracked: the tracked operator loop does not commute with the family star"}},
 	{name: "no families", old: "sites_per_cell = 2", new: "", from: "[lattice]\nsize = [8]\n[▸hamiltonian]\nmodel = \"custom\"\nsites_per_cell = 2\n[bath]\nbeta = 1\n", want: []string{"hamiltonian.family: is missing"}},
+	{name: "term that does not fit", from: swap(spelt, "size = [8, 8]", "size = [8, 3]\nboundary = \"open\""), old: "beta = 0.4", new: "beta = 0.4\n[[observable]]\nkind = \"terms\"\nfamily = ▸\"tall\"\n[[hamiltonian.family]]\nname = \"tall\"\nz = [\"1 + y^3\", \"0\"]", want: []string{"observable.family: \"tall\" has no term on this lattice"}},
 	{name: "two orders", from: spelt, old: `z = ["line x", "0"]`, new: "z = [\"line x\", \"0\"]\norder = ▸true", want: []string{"hamiltonian.tracked.order: runs along whole axes"}},
 }
 
@@ -208,7 +210,9 @@ var wrongScans = []wrong{
 	{name: "misspelt parameter", old: "beta = 0.4", new: "[scan]\n▸bata = [1.0]\n", want: []string{"scan.bata: did you mean beta?"}},
 	{name: "parameter without its table", old: "[trajectory]", new: "[scan]\n▸field = [1.0]\n[trajectory]", want: []string{"scan.field: did you mean \"hamiltonian.field\"?"}},
 	{name: "parameter of another model", old: "[trajectory]", new: "[scan]\n▸\"hamiltonian.star\" = [1.0]\n[trajectory]", want: []string{"scan.hamiltonian.star: the model ising has no star; toric-code has it"}},
-	{name: "word", old: "[trajectory]", new: "[scan]\nbath.▸law = [\"ohmic\"]\n[trajectory]", want: []string{"scan.bath.law: cannot be scanned: only numbers can"}},
+	{name: "word", old: "[trajectory]", new: "[scan]\nbath.▸law = [\"ohmic\"]\n[trajectory]", want: []string{"scan.bath.law: is not a number that a scan can vary"}},
+	{name: "one wrong among others", old: "beta = 0.4", new: "[scan]\nbeta = [0.3, 0.4]\n▸colour = [1]\n", want: []string{"scan.colour: cannot be scanned"}},
+	{name: "levels", from: spelt, old: "beta = 0.4", new: "beta = 0.4\n[scan]\n▸\"hamiltonian.levels\" = [2, 3]", want: []string{"scan.hamiltonian.levels: is not a number that a scan can vary"}},
 	{name: "no values", old: "[trajectory]", new: "[scan]\nbeta = ▸[]\n[trajectory]", want: []string{"scan.beta: is an empty list of values"}},
 	{name: "value of the wrong type", old: "[trajectory]", new: "[scan]\nbeta = [0.1, ▸\"0.2\", ▸[0.3]]\n[trajectory]", want: []string{"scan.beta: leave out the quotes", "scan.beta: takes a number"}},
 	{name: "value out of range", old: "[trajectory]", new: "[scan]\nbeta = [0.1, ▸-0.2]\nsize = [4, [4, ▸0]]\n[trajectory]", want: []string{"scan.beta: -0.2 is out of range", "scan.size: 0 is out of range"}},
