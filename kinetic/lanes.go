@@ -26,8 +26,12 @@ type lanes struct {
 
 	sums   []int64 // lane-major, of families and lines
 	fresh  bool    // sums belong to the present state
-	values []uint64
+	census *patternCounter
 	sink   uint64
+
+	// Scratch of runAny.
+	values  []uint64
+	atLeast [maxLaneSlots][maxLaneSlots + 1]uint64
 }
 
 // NewLanes returns the lane engine, with 64 trajectories: the given unit of the

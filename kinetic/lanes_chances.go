@@ -74,6 +74,9 @@ func distinct(rates []float64) []float64 {
 // into those made directly, those that are complements, and 1/2.
 func newChanceSet(clock float64, rates []float64) chanceSet {
 	set := chanceSet{clock: clock}
+	if clock == 0 {
+		return set
+	}
 	var low, high []float64 // high as distance from 1
 	for _, r := range rates {
 		p := r / clock

@@ -139,78 +139,131 @@ func (c *laneCounter) addTo(dst []int64, step int, weight int64) {
 // gathered is how many seats are read together.
 const gathered = 64
 
-// slotColumns holds by slot the words of some seats.
-type slotColumns [MaxBits][gathered]uint64
-
 // subsetSlots is the largest number of slots whose subsets are fewer than the
 // steps of reading 64 patterns.
-const subsetSlots = 6
+const subsetSlots = 8
 
-// countSubsets adds to counts[s] the lanes and seats i < n in which all words
-// w[k][i] with bit k of s have a 1, for len(counts) = 2^slots, at least 8. The
-// subsets of the first three slots are counted together.
-func countSubsets(w *slotColumns, n int, counts []int64) {
-	x, y, z := w[0][:n], w[1][:n], w[2][:n]
-	var with [gathered]uint64
-	for s := 0; s+8 <= len(counts); s += 8 {
-		m := with[:n]
+// patternCounter counts the patterns of seats over all lanes, some seats of one
+// shape at a time.
+type patternCounter struct {
+	g     *Generator
+	shape int
+	slots []int                     // that exist
+	words [MaxBits][gathered]uint64 // by slot that exists, and seat
+	n     int                       // seats in words
+	some  [1 << subsetSlots]int64   // lanes in which all words of a subset have a 1
+	with  [gathered]uint64
+}
+
+func newPatternCounter(g *Generator) *patternCounter { return &patternCounter{g: g, shape: -1} }
+
+// begin makes the counter ready for seats of a shape.
+func (c *patternCounter) begin(shape int, dst []int64) {
+	if c.shape == shape {
+		return
+	}
+	c.finish(dst)
+	c.shape = shape
+	c.slots = slotsOf(c.g.Shapes[shape].Present)
+}
+
+// room makes room for up to n seats: those from first, k in number, are to be
+// written to words.
+func (c *patternCounter) room(n int, dst []int64) (first, k int) {
+	if c.n == gathered {
+		c.count(dst)
+	}
+	first = c.n
+	k = min(n, gathered-first)
+	c.n += k
+	return first, k
+}
+
+// count counts the seats in words.
+func (c *patternCounter) count(dst []int64) {
+	if len(c.slots) <= subsetSlots {
+		c.countSubsets()
+	} else {
+		c.countLanes(dst[c.shape<<c.g.Bits:])
+	}
+	c.n = 0
+}
+
+// finish adds what was counted to dst, and empties the counter.
+func (c *patternCounter) finish(dst []int64) {
+	if c.n > 0 {
+		c.count(dst)
+	}
+	if c.shape >= 0 && len(c.slots) <= subsetSlots {
+		c.addPatterns(dst[c.shape<<c.g.Bits:])
+	}
+	c.shape = -1
+}
+
+// countSubsets counts the lanes in which all words of a subset of slots have a
+// 1. The subsets of the first three slots are counted together.
+func (c *patternCounter) countSubsets() {
+	n := c.n
+	x, y, z := c.words[0][:n], c.words[1][:n], c.words[2][:n]
+	m := c.with[:n]
+	for s := 0; s < max(8, 1<<len(c.slots)); s += 8 {
 		for i := range m {
 			m[i] = ^uint64(0)
 		}
 		for k := 3; s>>k != 0; k++ {
 			if s>>k&1 != 0 {
-				for i := range m {
-					m[i] &= w[k][i]
+				for i, w := range c.words[k][:n] {
+					m[i] &= w
 				}
 			}
 		}
-		var c [8]int
+		var t [8]int
 		for i, v := range m {
 			a, b := v&x[i], v&y[i]
 			ab := a & b
-			c[0] += bits.OnesCount64(v)
-			c[1] += bits.OnesCount64(a)
-			c[2] += bits.OnesCount64(b)
-			c[3] += bits.OnesCount64(ab)
-			c[4] += bits.OnesCount64(v & z[i])
-			c[5] += bits.OnesCount64(a & z[i])
-			c[6] += bits.OnesCount64(b & z[i])
-			c[7] += bits.OnesCount64(ab & z[i])
+			t[0] += bits.OnesCount64(v)
+			t[1] += bits.OnesCount64(a)
+			t[2] += bits.OnesCount64(b)
+			t[3] += bits.OnesCount64(ab)
+			t[4] += bits.OnesCount64(v & z[i])
+			t[5] += bits.OnesCount64(a & z[i])
+			t[6] += bits.OnesCount64(b & z[i])
+			t[7] += bits.OnesCount64(ab & z[i])
 		}
-		for j, k := range c {
-			counts[s+j] += int64(k)
+		for j, k := range t {
+			c.some[s+j] += int64(k)
 		}
 	}
 }
 
-// addPatterns turns counts of subsets into counts of patterns by inclusion and
-// exclusion and adds them to dst, where bit i of a subset is bit slots[i] of a
-// pattern.
-func addPatterns(counts []int64, slots []int, dst []int64) {
-	for i := range slots {
-		for s := range counts {
-			if s>>i&1 == 0 && s|1<<i < len(counts) {
-				counts[s] -= counts[s|1<<i]
+// addPatterns turns the counts of subsets into counts of patterns, by inclusion
+// and exclusion, adds these to dst, and clears them.
+func (c *patternCounter) addPatterns(dst []int64) {
+	n := 1 << len(c.slots)
+	for i := range c.slots {
+		for s := range n {
+			if s>>i&1 == 0 {
+				c.some[s] -= c.some[s|1<<i]
 			}
 		}
 	}
-	for s, k := range counts[:1<<len(slots)] {
+	for s, k := range c.some[:n] {
 		p := 0
-		for i, b := range slots {
+		for i, b := range c.slots {
 			p |= s >> i & 1 << b
 		}
 		dst[p] += k
 	}
+	clear(c.some[:])
 }
 
-// countLanes adds one to dst for the pattern of every lane of seats i < n, where
-// bit k of w, by slot, is bit slots[k] of a pattern.
-func countLanes(w *slotColumns, n int, slots []int, dst []int64) {
-	for i := range n {
+// countLanes adds one to dst for the pattern of every lane of the seats.
+func (c *patternCounter) countLanes(dst []int64) {
+	for i := range c.n {
 		for group := 0; group < lanesPerWord; group += 8 {
 			var low, high uint64
-			for k, b := range slots {
-				v := spread[w[k][i]>>group&255]
+			for k, b := range c.slots {
+				v := spread[c.words[k][i]>>group&255]
 				if b < 8 {
 					low |= v << b
 				} else {

@@ -4,6 +4,7 @@ import (
 	"fmt"
 	"math"
 	"math/bits"
+	"slices"
 )
 
 // LaneLimit says why the lane engine cannot run a generator.
@@ -42,12 +43,15 @@ type lanePlan struct {
 	runs             []stretch
 	still            []int64 // by family and line: the sum if every word were 0
 
+	lineHits []lineHit
+
 	zoned  []zonedMove // zone, move
 	places []lanePlace // zone, seat
 	slots  []wordList  // of places
 	terms  []laneTerm  // of zoned moves
 	words  []int32     // of slots, terms and moves: differences from the base
-	leaves []uint8     // of zoned moves
+	known  map[string]wordList
+	leaves []uint8 // of zoned moves
 	kernel laneKernel
 }
 
@@ -86,7 +90,9 @@ type zonedMove struct {
 	groups              []uint8 // terms in each group
 	leaf                uint32  // first of its leaves
 	combos              uint32
-	firstHit, lastHit   uint32 // in Generator.Hits
+	small               uint32   // first of its leaves laid out for small groups, or 0
+	firstHit, lastHit   uint32   // in Generator.Hits
+	near                wordList // a word of every cache line that it reads
 	fast                fastMove
 }
 
@@ -118,6 +124,7 @@ func newLanePlanIn(g *Generator, flips bool) (*lanePlan, error) {
 	p := &lanePlan{
 		g: g, layout: layout,
 		rows: uint64(len(g.Row)), cols: uint64(g.Lattice.Size[0]),
+		known: map[string]wordList{},
 	}
 	seats := len(g.Seats)
 	for _, first := range g.Row {
@@ -127,6 +134,7 @@ func newLanePlanIn(g *Generator, flips bool) (*lanePlan, error) {
 		p.zoneCol = append(p.zoneCol, uint32(g.Col[x*seats])/uint32(seats))
 	}
 	p.runs = p.stretches()
+	p.setHits()
 	p.still = p.stillSums()
 	for seat := range g.Seats {
 		p.first = append(p.first, len(p.moves))
@@ -144,6 +152,7 @@ func newLanePlanIn(g *Generator, flips bool) (*lanePlan, error) {
 			}
 		}
 	}
+	p.known = nil
 	p.chooseKernel()
 	return p, nil
 }
@@ -247,10 +256,34 @@ func (p *lanePlan) addPlace(place, seat int) error {
 	return nil
 }
 
+// cacheLines lists one of the words that a move reads from each cache line, as
+// far as differences tell.
+func (p *lanePlan) cacheLines(changes []int32, terms []laneTerm) wordList {
+	all := slices.Clone(changes)
+	for _, t := range terms {
+		all = append(all, p.wordsOf(t.wordList)...)
+	}
+	slices.Sort(all)
+	var some []int32
+	for _, w := range all {
+		if k := len(some); k == 0 || w-some[k-1] >= 8 {
+			some = append(some, w)
+		}
+	}
+	return p.list(some)
+}
+
+// list keeps words; equal lists are kept once.
 func (p *lanePlan) list(words []int32) wordList {
+	key := fmt.Sprint(words)
+	if l, ok := p.known[key]; ok {
+		return l
+	}
 	first := uint32(len(p.words))
 	p.words = append(p.words, words...)
-	return wordList{first, uint32(len(p.words))}
+	l := wordList{first, uint32(len(p.words))}
+	p.known[key] = l
+	return l
 }
 
 // showsFirst reports whether the given slot is the first in Family.Slots that
@@ -306,6 +339,7 @@ func (p *lanePlan) addMove(pl *Place, seat, m int, terms [][]int32) error {
 		}
 	}
 	out.lastTerm = uint32(len(p.terms))
+	out.near = p.cacheLines(words, p.terms[out.firstTerm:])
 	out.leaf = uint32(len(p.leaves))
 	chances := &p.sets[p.moves[p.first[seat]+m].set]
 	leaves := make([]uint8, out.combos)
@@ -326,6 +360,7 @@ func (p *lanePlan) addMove(pl *Place, seat, m int, terms [][]int32) error {
 		leaves[combo] = chances.column(shape.Rate[m][pattern])
 	}
 	p.leaves = append(p.leaves, leaves...)
+	out.small = p.smallLeaves(out.groups, leaves)
 	p.zoned = append(p.zoned, out)
 	return nil
 }
@@ -357,14 +392,37 @@ func (g *Generator) energyGroups(seat int, slots []int) (groups [][]int, n int) 
 	return groups, n
 }
 
+// lineHit is a Generator.Hit in words.
+type lineHit struct {
+	col, row         []uint32
+	first, positions uint32
+}
+
+// setHits prepares the hits.
+func (p *lanePlan) setHits() {
+	columns := map[*uint32][]uint32{}
+	for _, h := range p.g.Hits {
+		col := columns[&h.Col[0]]
+		if col == nil {
+			for x := range int(p.cols) {
+				col = append(col, h.Col[x*len(p.g.Seats)])
+			}
+			columns[&h.Col[0]] = col
+		}
+		p.lineHits = append(p.lineHits, lineHit{
+			col, h.Row, p.layout.lines[h.Line], uint32(p.g.Lines[h.Line].Positions),
+		})
+	}
+}
+
 // hitWord returns the word of a line that hit h changes at a row and column.
 func (p *lanePlan) hitWord(h uint32, row, col int) uint32 {
-	hit := &p.g.Hits[h]
-	at := hit.Col[col*len(p.g.Seats)] + hit.Row[row]
-	if int(at) >= p.g.Lines[hit.Line].Positions {
+	hit := &p.lineHits[h]
+	at := hit.col[col] + hit.row[row]
+	if at >= hit.positions {
 		return p.layout.spare
 	}
-	return p.layout.lines[hit.Line] + at
+	return hit.first + at
 }
 
 // stillSums returns the sums of families and lines that their words leave as

@@ -129,20 +129,33 @@ func (e *lanes) gather(words []int32, base int, dst []uint64) {
 
 // eachStretch calls visit for runs of cells in which a seat stands for a term of
 // family f: the words of the term, as differences from the first word of a cell,
-// the first of which is at base.
+// the first of which is at base. Runs with the same differences are joined.
 func (e *lanes) eachStretch(f int, visit func(base, n int, words []int32)) {
 	p := e.plan
 	seats := len(p.g.Seats)
-	base := 0
-	for _, zr := range p.zoneRow {
-		for _, s := range p.runs {
-			for _, ref := range p.g.Families[f].Slots {
+	planes := p.layout.planes
+	for _, ref := range p.g.Families[f].Slots {
+		base, n := 0, 0
+		var list wordList
+		for row, zr := range p.zoneRow {
+			cell := row * int(p.cols)
+			for _, s := range p.runs {
 				place := &p.places[int(zr+s.zone)*seats+ref.Seat]
-				if place.own>>ref.Slot&1 != 0 {
-					visit(base, s.n, p.wordsOf(p.slots[int(place.first)+ref.Slot]))
+				own := p.slots[int(place.first)+ref.Slot]
+				if place.own>>ref.Slot&1 == 0 || own != list {
+					if n > 0 {
+						visit(base*planes, n, p.wordsOf(list))
+					}
+					base, n, list = cell, 0, own
 				}
+				if place.own>>ref.Slot&1 != 0 {
+					n += s.n
+				}
+				cell += s.n
 			}
-			base += s.n * p.layout.planes
+		}
+		if n > 0 {
+			visit(base*planes, n, p.wordsOf(list))
 		}
 	}
 }
@@ -164,41 +177,33 @@ func (e *lanes) Energy(lane int) float64 {
 // Census counts seats by shape and pattern, over all lanes.
 func (e *lanes) Census(dst []int64) {
 	p := e.plan
+	if e.census == nil {
+		e.census = newPatternCounter(p.g)
+	}
 	seats := len(p.g.Seats)
-	base := 0
-	for _, zr := range p.zoneRow {
-		for _, s := range p.runs {
-			for seat := range seats {
+	for seat := range seats {
+		base := 0
+		for _, zr := range p.zoneRow {
+			for _, s := range p.runs {
 				e.countSeats(&p.places[int(zr+s.zone)*seats+seat], base, s.n, dst)
+				base += s.n * p.layout.planes
 			}
-			base += s.n * p.layout.planes
 		}
 	}
+	e.census.finish(dst)
 }
 
 // countSeats counts the patterns of a run of seats in one place.
 func (e *lanes) countSeats(place *lanePlace, base, n int, dst []int64) {
-	p := e.plan
-	dst = dst[int(place.shape)<<p.g.Bits:][:1<<p.g.Bits]
-	present := slotsOf(p.g.Shapes[place.shape].Present)
-	var w slotColumns
-	var subsets [1 << subsetSlots]int64
-	counts := subsets[:max(8, 1<<min(len(present), subsetSlots))]
+	p, c := e.plan, e.census
+	c.begin(int(place.shape), dst)
 	for n > 0 {
-		k := min(n, gathered)
-		for i, b := range present {
-			e.gather(p.wordsOf(p.slots[int(place.first)+b]), base, w[i][:k])
-		}
-		if len(present) <= subsetSlots {
-			countSubsets(&w, k, counts)
-		} else {
-			countLanes(&w, k, present, dst)
+		first, k := c.room(n, dst)
+		for i, b := range c.slots {
+			e.gather(p.wordsOf(p.slots[int(place.first)+b]), base, c.words[i][first:first+k])
 		}
 		base += k * p.layout.planes
 		n -= k
-	}
-	if len(present) <= subsetSlots {
-		addPatterns(counts, present, dst)
 	}
 }
 
