@@ -43,7 +43,7 @@ type exactObservableJSON struct {
 
 // diagonalised is the largest number of states whose full spectrum is computed:
 // a few seconds.
-const diagonalised = 1 << 11
+const diagonalised = 1 << 10
 
 // shownEigenvalues is how many of the lowest eigenvalues are reported.
 const shownEigenvalues = 16

@@ -36,6 +36,7 @@ type fitPointJSON struct {
 	SlowMode      slowModeJSON      `json:"slow_mode"`
 	Decay         []decayJSON       `json:"decay"`
 	Approach      []approachJSON    `json:"approach,omitempty"`
+	Mixing        *mixingJSON       `json:"mixing,omitempty"`
 	Tests         []testJSON        `json:"tests"`
 	Advice        []adviceJSON      `json:"advice,omitempty"`
 	Warnings      []warningJSON     `json:"warnings"`
@@ -104,7 +105,19 @@ type approachJSON struct {
 	TimeErr    *float64      `json:"time_err,omitempty"`
 	Tau        *float64      `json:"tau,omitempty"`
 	TauErr     *float64      `json:"tau_err,omitempty"`
+	Coupling   *float64      `json:"coupling_time,omitempty"`
+	CouplErr   *float64      `json:"coupling_time_err,omitempty"`
 	Warnings   []warningJSON `json:"warnings"`
+}
+
+// mixingJSON bounds the time to come within a distance of equilibrium, in total
+// variation, from every start; the upper bound holds only if the slow mode's time
+// is 1/gap.
+type mixingJSON struct {
+	Distance float64  `json:"distance"`
+	Lower    *float64 `json:"lower,omitempty"`
+	Upper    *float64 `json:"upper_if_gap,omitempty"`
+	Text     string   `json:"text"`
 }
 
 type testJSON struct {
@@ -209,7 +222,17 @@ func jsonOfPoint(p *finding) fitPointJSON {
 		j := approachJSON{Observable: a.Observable, Start: a.Start, Epsilon: a.Epsilon, Warnings: jsonOfWarnings(a.Warnings)}
 		j.Time, j.TimeErr = valueAndError(a.Time)
 		j.Tau, j.TauErr = valueAndError(a.Tau)
+		j.Coupling, j.CouplErr = valueAndError(a.Coupling)
 		out.Approach = append(out.Approach, j)
+	}
+	if m := &r.Mixing; m.Text != "" {
+		out.Mixing = &mixingJSON{Distance: m.Distance, Text: m.Text}
+		if m.Lower.OK {
+			out.Mixing.Lower = number(m.Lower.Value)
+		}
+		if m.Volume.OK {
+			out.Mixing.Upper = number(m.Volume.Value)
+		}
 	}
 	for _, t := range r.Tests {
 		if t.OK && finite(t.Statistic) && finite(t.Dof) {

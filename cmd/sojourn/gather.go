@@ -43,7 +43,7 @@ func newGathering(p *archive.Point, group string) *gathering {
 		spatial: map[spatialKey][]analysis.Lagged{}, displacement: map[spatialKey][]int{},
 		point: analysis.Point{
 			Beta: f.Beta, Group: group, Step: f.Step, Span: f.Span, Lanes: f.Lanes, Rate: f.MaxRate,
-			Size: f.Size, Open: f.Open, Sites: f.Sites,
+			Size: f.Size, Open: f.Open, Sites: f.Sites, EnergyRange: f.EnergyHigh - f.EnergyLow,
 		},
 	}
 	if f.LnStates != nil {

@@ -30,24 +30,20 @@ func writeReport(w io.Writer, f *findings) error {
 	if f.missing > 0 {
 		fmt.Fprintf(&b, "Incomplete: %s not yet run; everything below rests on the others.\n", plural(f.missing, "unit"))
 	}
+	said := findRepeated(f)
 	for i := range f.points {
 		b.WriteByte('\n')
-		writePoint(&b, &f.points[i])
+		writePoint(&b, &f.points[i], said)
 	}
-	if len(f.comparison.Trends) > 0 {
-		b.WriteString("\nTrends\n")
-		for i := range f.comparison.Trends {
-			writeTrend(&b, &f.comparison.Trends[i])
-		}
-	}
-	writeWarnings(&b, "study", f.comparison.Warnings)
+	writeTrends(&b, f)
 	writeOverview(&b, f)
+	writeWarnings(&b, f, said)
 	writeCaution(&b, f)
 	_, err := io.WriteString(w, b.String())
 	return err
 }
 
-func writePoint(b *strings.Builder, p *finding) {
+func writePoint(b *strings.Builder, p *finding, said *repeated) {
 	head := fmt.Sprintf("%s %s, beta %s", p.model, sizeText(p.size), shortest(p.beta))
 	for _, s := range p.scan {
 		head += ", " + s.name + " " + s.value
@@ -74,75 +70,12 @@ func writePoint(b *strings.Builder, p *finding) {
 	t.write(b, "  ")
 	writeSlowMode(b, &r.SlowMode)
 	writeDecays(b, r.Decay)
-	for i := range r.Approach {
-		writeApproach(b, &r.Approach[i])
+	writeApproaches(b, r.Approach)
+	if r.Mixing.Text != "" {
+		writeNote(b, "mixing", r.Mixing.Text)
 	}
-	writePointWarnings(b, r)
-}
-
-// writeOverview puts the slowest thing seen at each point side by side.
-func writeOverview(b *strings.Builder, f *findings) {
-	if len(f.points) < 2 {
-		return
-	}
-	b.WriteString("\nOverview\n")
-	t := newSheet("point", "beta", "size", "", "slowest observable", "tau_int", "slow mode", "1/gap", "xi", "!").text(2, 3, 4)
-	for i := range f.points {
-		p := &f.points[i]
-		r := &p.result
-		var others []string
-		for _, s := range p.scan {
-			others = append(others, s.name+" "+s.value)
-		}
-		name, tau := "", ""
-		slowest := -1
-		for k := range r.Observables {
-			if x := &r.Observables[k]; x.Integrated.OK && (slowest < 0 || x.Integrated.Value > r.Observables[slowest].Integrated.Value) {
-				slowest = k
-				name, tau = x.Name, estimate(x.Integrated)
-			}
-		}
-		xi, mark, warnings := "", "", 0
-		for k := range r.Decay {
-			if r.Decay[k].Xi.OK {
-				xi = estimate(r.Decay[k].Xi)
-				break
-			}
-		}
-		eachWarning(r, func(string, analysis.Warning) { warnings++ })
-		if warnings > 0 {
-			mark = strconv.Itoa(warnings)
-		}
-		if !r.Equilibrated {
-			mark += " not equilibrated"
-		}
-		slow := ""
-		if r.SlowMode.Tau.OK {
-			slow = estimate(r.SlowMode.Tau)
-		}
-		t.add(strconv.Itoa(p.point), shortest(p.beta), sizeText(p.size), strings.Join(others, ", "), name, tau, slow, gapBound(r), xi, mark)
-	}
-	t.write(b, "  ")
-}
-
-// gapBound is the best lower bound on 1/gap that a point gives.
-func gapBound(r *analysis.Result) string {
-	best := analysis.Bound{}
-	consider := func(x analysis.Bound) {
-		if x.OK && (!best.OK || x.Value > best.Value) {
-			best = x
-		}
-	}
-	// Only the bounds of the slow mode: the largest of several bounds at 95 %
-	// would not have that confidence.
-	consider(r.SlowMode.Bound)
-	if !best.OK {
-		consider(r.SlowMode.RayleighBound)
-	}
-	if !best.OK {
-		return ""
-	}
-	return bound(best)
+	writeAdvice(b, r)
+	said.write(b, r)
 }
 
 // floorHead is the head of the column of intervals: the share of the variance
@@ -164,8 +97,8 @@ func writeSlowMode(b *strings.Builder, m *analysis.SlowMode) {
 	if m.Bound.OK {
 		parts = append(parts, fmt.Sprintf("1/gap %s (%s %%)", bound(m.Bound), shortest(100*m.Bound.Confidence)))
 	}
-	if m.RayleighBound.OK {
-		parts = append(parts, fmt.Sprintf("Rayleigh quotient %s", bound(m.RayleighBound)))
+	if m.RayleighBound.OK && !m.Bound.OK {
+		parts = append(parts, fmt.Sprintf("1/gap %s (%s %%, Rayleigh quotient)", bound(m.RayleighBound), shortest(100*m.RayleighBound.Confidence)))
 	}
 	if len(parts) == 0 {
 		return
@@ -211,55 +144,6 @@ func writeDecays(b *strings.Builder, list []analysis.Decay) {
 	}
 }
 
-func writeApproach(b *strings.Builder, a *analysis.Approach) {
-	if !a.Time.OK && !a.Tau.OK {
-		return
-	}
-	text := a.Observable + " from start " + a.Start + ":"
-	if a.Time.OK {
-		text += fmt.Sprintf(" within %s %% of its limit after %s", shortest(100*a.Epsilon), estimate(a.Time))
-	}
-	if a.Tau.OK {
-		if a.Time.OK {
-			text += ","
-		}
-		text += " last decay seen has tau " + estimate(a.Tau)
-	}
-	writeNote(b, "approach", text)
-}
-
-func writeTrend(b *strings.Builder, t *analysis.Trend) {
-	head := t.Quantity
-	if t.Observable != "" {
-		head += " of " + t.Observable
-	}
-	head += " against " + t.Against
-	if t.Group != "" {
-		head += ", " + t.Group
-	}
-	fmt.Fprintf(b, "  %s\n", head)
-	points := make([]string, len(t.Points))
-	for i, p := range t.Points {
-		points[i] = fmt.Sprintf("%s at %s", withError(p.Y, p.Err), shortest(p.X))
-	}
-	writeNote(b, "", strings.Join(points, ", "))
-	for i := range t.Models {
-		m := &t.Models[i]
-		if m.Weight < 0.05 && i > 0 {
-			break // sorted by weight
-		}
-		text := fmt.Sprintf("%s (weight %.2f)", m.Name, m.Weight)
-		for _, p := range m.Parameters {
-			text += fmt.Sprintf(", %s = %s", p.Name, withError(p.Value, p.Err))
-		}
-		writeNote(b, "", text)
-	}
-	if t.Regime != "" {
-		writeNote(b, "", t.Regime)
-	}
-	writeWarnings(b, "trend", t.Warnings)
-}
-
 // writeNote prints a labelled paragraph under a point.
 func writeNote(b *strings.Builder, label, text string) {
 	const column = 10
@@ -270,84 +154,6 @@ func writeNote(b *strings.Builder, label, text string) {
 		b.WriteString(strings.TrimRight(fmt.Sprintf("  %-*s  %s", column, label, line), " "))
 		b.WriteByte('\n')
 	}
-}
-
-func writeWarnings(b *strings.Builder, about string, warnings []analysis.Warning) {
-	for _, w := range warnings {
-		writeWarning(b, about, w)
-	}
-}
-
-// writePointWarnings prints every warning about a point, those that say the same
-// of several things once.
-func writePointWarnings(b *strings.Builder, r *analysis.Result) {
-	var order []analysis.Warning
-	about := map[analysis.Warning][]string{}
-	eachWarning(r, func(what string, w analysis.Warning) {
-		if about[w] == nil {
-			order = append(order, w)
-		}
-		about[w] = append(about[w], what)
-	})
-	for _, w := range order {
-		writeWarning(b, strings.Join(about[w], ", "), w)
-	}
-}
-
-func writeWarning(b *strings.Builder, about string, w analysis.Warning) {
-	for i, line := range wrap(fmt.Sprintf("%s: %s [%s]", about, w.Text, w.Code), pageWidth-4, "  ") {
-		mark := "! "
-		if i > 0 {
-			mark = "  "
-		}
-		fmt.Fprintf(b, "  %s%s\n", mark, line)
-	}
-}
-
-// writeCaution says once what the numbers above do not mean.
-func writeCaution(b *strings.Builder, f *findings) {
-	b.WriteString("\nHow to read this\n")
-	say := func(text string) {
-		for i, line := range wrap(text, pageWidth-4, "  ") {
-			mark := "- "
-			if i > 0 {
-				mark = "  "
-			}
-			fmt.Fprintf(b, "  %s%s\n", mark, strings.TrimLeft(line, " "))
-		}
-	}
-	say("tau_initial and tau_int belong to the observable, with one standard error; in each row tau_initial <= tau_int <= the slowest time in the observable <= 1/gap.")
-	say("tau_slowest is a lower bound (95 %). The interval beside it holds only if the slowest mode carries that share of the observable's variance.")
-	say("No finite set of observables certifies the gap: every relaxation time from data is a lower bound on 1/gap.")
-	if hasDecay(f) {
-		say("A short xi is necessary, not sufficient, for fast mixing: do not read it as evidence that the lattice relaxes fast.")
-	}
-	if n := warned(f); n > 0 {
-		say(fmt.Sprintf("Lines marked ! say which numbers are not to be trusted, and why: %s.", plural(n, "point")))
-	}
-}
-
-func hasDecay(f *findings) bool {
-	for i := range f.points {
-		if len(f.points[i].result.Decay) > 0 {
-			return true
-		}
-	}
-	return false
-}
-
-// warned counts the points with at least one warning.
-func warned(f *findings) int {
-	n := 0
-	for i := range f.points {
-		r := &f.points[i].result
-		k := 0
-		eachWarning(r, func(string, analysis.Warning) { k++ })
-		if k > 0 || !r.Equilibrated {
-			n++
-		}
-	}
-	return n
 }
 
 func estimate(e analysis.Estimate) string {

@@ -114,7 +114,7 @@ are printed all the same, with a warning.`,
 			summary: "the same quantities without sampling, where the lattice is small",
 			about: `Enumerates the states that the jumps reach from the reference state, diagonalises the
 generator on them, and prints the gap and what run and fit estimate of each observable: a check
-on both. Lattices with more than 2048 such states are refused.`,
+on both. Lattices with more than 1024 such states are refused.`,
 			examples: []example{{"sojourn exact small.toml", "gap and relaxation times of a 3 x 3 lattice, say"}},
 			do:       (*console).exact,
 		},
