@@ -24,10 +24,12 @@ type lanes struct {
 	now   float64
 	jumps uint64
 
-	sums   []int64 // lane-major, of families and lines
-	fresh  bool    // sums belong to the present state
-	census *patternCounter
-	sink   uint64
+	sums    []int64 // lane-major, of families and lines
+	fresh   bool    // sums belong to the present state
+	counter laneCounter
+	some    [gathered]uint64
+	census  *patternCounter
+	sink    uint64
 
 	// Scratch of runAny.
 	values  []uint64

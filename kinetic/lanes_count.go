@@ -147,15 +147,22 @@ const subsetSlots = 8
 // shape at a time.
 type patternCounter struct {
 	g     *Generator
+	exist [][]int // slots, by shape
 	shape int
-	slots []int                     // that exist
+	slots []int                     // of the shape, that exist
 	words [MaxBits][gathered]uint64 // by slot that exists, and seat
 	n     int                       // seats in words
 	some  [1 << subsetSlots]int64   // lanes in which all words of a subset have a 1
 	with  [gathered]uint64
 }
 
-func newPatternCounter(g *Generator) *patternCounter { return &patternCounter{g: g, shape: -1} }
+func newPatternCounter(g *Generator) *patternCounter {
+	c := &patternCounter{g: g, shape: -1}
+	for i := range g.Shapes {
+		c.exist = append(c.exist, slotsOf(g.Shapes[i].Present))
+	}
+	return c
+}
 
 // begin makes the counter ready for seats of a shape.
 func (c *patternCounter) begin(shape int, dst []int64) {
@@ -164,7 +171,7 @@ func (c *patternCounter) begin(shape int, dst []int64) {
 	}
 	c.finish(dst)
 	c.shape = shape
-	c.slots = slotsOf(c.g.Shapes[shape].Present)
+	c.slots = c.exist[shape]
 }
 
 // room makes room for up to n seats: those from first, k in number, are to be

@@ -24,6 +24,7 @@ type laneLayout struct {
 	planes int // words of a cell
 
 	level []int            // by family: its word in the cell, -1 if no move changes it
+	words [][1]int32       // the same, as a list of one
 	shift []lattice.Offset // by family: from the cell of the word to the term's
 
 	flipX, flipZ []int // by site of the cell: its word, -1 if it has none
@@ -79,6 +80,7 @@ func (l *laneLayout) layLevels() {
 			}
 		}
 		l.level = append(l.level, word)
+		l.words = append(l.words, [1]int32{int32(word)})
 		l.shift = append(l.shift, shift)
 	}
 }

@@ -184,22 +184,11 @@ func (p *lanePlan) setChances() error {
 		set := newChanceSet(clock, distinct(union[k]))
 		p.columns = max(p.columns, set.columns())
 		p.sets = append(p.sets, set)
-		for _, d := range set.direct {
-			p.rest = math.Max(p.rest, d.rest)
-		}
 	}
 	if p.columns > maxColumns {
 		return &LaneLimit{"probabilities of an attempt", p.columns - 2, maxColumns - 2}
 	}
-	if p.rest > 0 {
-		p.extra = newPoisson(p.rest * attemptsAhead * lanesPerWord)
-	}
-	for k := range p.sets {
-		for d := range p.sets[k].direct {
-			c := &p.sets[k].direct[d]
-			c.heeds = uint64(c.rest / p.rest * (1 << 51))
-		}
-	}
+	p.setRest()
 	var weights []float64
 	for i := range p.moves {
 		weights = append(weights, clocks[p.moves[i].set])
@@ -209,6 +198,25 @@ func (p *lanePlan) setChances() error {
 		p.clock = p.choice.sum * float64(p.g.Cells())
 	}
 	return nil
+}
+
+// setRest finds how densely points are strewn for the chances of all sets.
+func (p *lanePlan) setRest() {
+	for _, set := range p.sets {
+		for _, c := range set.direct {
+			p.rest = math.Max(p.rest, c.rest)
+		}
+	}
+	if p.rest == 0 {
+		return
+	}
+	p.extra = newPoisson(p.rest * attemptsAhead * lanesPerWord)
+	for k := range p.sets {
+		for d := range p.sets[k].direct {
+			c := &p.sets[k].direct[d]
+			c.heeds = uint64(c.rest / p.rest * (1 << 51))
+		}
+	}
 }
 
 // ratesOfMoves lists the distinct rates of every move of the cell, increasing.

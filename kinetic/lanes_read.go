@@ -50,9 +50,9 @@ func (e *lanes) count() {
 	for lane := range lanesPerWord {
 		copy(e.sums[lane*width:], p.still)
 	}
-	var c laneCounter
+	c := &e.counter
 	for f := range g.Families {
-		e.countFamily(f, &c)
+		e.countFamily(f)
 		c.addTo(e.sums[f:], width, -2)
 	}
 	for l, line := range g.Lines {
@@ -62,19 +62,18 @@ func (e *lanes) count() {
 }
 
 // countFamily counts the terms of a family at level 1.
-func (e *lanes) countFamily(f int, c *laneCounter) {
-	p := e.plan
-	if !p.layout.flips {
-		if w := p.layout.level[f]; w >= 0 {
-			e.countRun(c, []int32{int32(w)}, 0, p.g.Cells())
-		}
-		return
+func (e *lanes) countFamily(f int) {
+	l := e.plan.layout
+	if l.flips {
+		e.eachStretch(f, e.countRun)
+	} else if l.level[f] >= 0 {
+		e.countRun(0, l.g.Cells(), l.words[f][:])
 	}
-	e.eachStretch(f, func(base, n int, words []int32) { e.countRun(c, words, base, n) })
 }
 
 // countRun counts terms of n cells.
-func (e *lanes) countRun(c *laneCounter, words []int32, base, n int) {
+func (e *lanes) countRun(base, n int, words []int32) {
+	c := &e.counter
 	if e.plan.layout.planes == 1 {
 		x := e.words[base+int(words[0]):][:n]
 		switch len(words) {
@@ -86,7 +85,7 @@ func (e *lanes) countRun(c *laneCounter, words []int32, base, n int) {
 			return
 		}
 	}
-	var some [gathered]uint64
+	some := &e.some
 	for n > 0 {
 		k := min(n, gathered)
 		e.gather(words, base, some[:k])
