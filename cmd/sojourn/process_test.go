@@ -205,3 +205,31 @@ func TestExtendedScanKeepsRows(t *testing.T) {
 	longer := strings.Replace(wider, "count  = 12", "count  = 20", 1)
 	sameRows(t, "grown in steps", run(longer, "grown"), run(longer, "fresh"))
 }
+
+// Where fits/ cannot be written the fit is printed all the same, with a warning;
+// a results directory that cannot be made is a failure, not a wrong request.
+func TestUnwritableDirectories(t *testing.T) {
+	dir := t.TempDir()
+	t.Chdir(dir)
+	small := strings.NewReplacer("span   = 600.0", "span   = 100.0", "[24, 24]", "[4, 4]").Replace(sharedStudy)
+	if err := os.WriteFile("study.toml", []byte(small), 0o666); err != nil {
+		t.Fatal(err)
+	}
+	if status, _, stderr := sojourn("run", "study.toml", "--quiet"); status != exitDone {
+		t.Fatalf("status %d, %s", status, stderr)
+	}
+	if err := os.RemoveAll("study/fits"); err != nil {
+		t.Fatal(err)
+	}
+	if err := os.WriteFile("study/fits", nil, 0o666); err != nil {
+		t.Fatal(err)
+	}
+	status, stdout, stderr := sojourn("fit", "study")
+	if status != exitDone || !strings.Contains(stdout, "tau_int") || !strings.Contains(stderr, "warning: the fits could not be written") {
+		t.Errorf("status %d\n%s%s", status, stdout, stderr)
+	}
+	status, _, stderr = sojourn("run", "study.toml", "--quiet", "-o", "study.toml/below")
+	if status != exitFailed || stderr == "" {
+		t.Errorf("status %d, want %d: %s", status, exitFailed, stderr)
+	}
+}
