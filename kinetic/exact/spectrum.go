@@ -22,10 +22,10 @@ type Spectrum struct {
 
 // maxDense bounds the full decomposition: its cost grows with the third power
 // of the number of states, its memory with the second.
-const maxDense = 1 << 12
+const maxDense = 1 << 11
 
-// Spectrum computes all eigenvalues and eigenvectors. Up to 4096 states are
-// accepted, which take minutes and 300 MB; 1000 take seconds.
+// Spectrum computes all eigenvalues and eigenvectors. Up to 2048 states are
+// accepted, which take a minute; 500 take a second.
 func (st *States) Spectrum() (*Spectrum, error) {
 	n := st.Len()
 	if n > maxDense {
