@@ -8,3 +8,5 @@ import (
 )
 
 func TestClassesSuite(t *testing.T) { kinetictest.Suite(t, kinetic.NewClasses) }
+
+func TestClassesLevels(t *testing.T) { kinetictest.SuiteLevels(t, kinetic.NewClasses) }

@@ -78,7 +78,7 @@ func (k *compiler) checkCommutation() error {
 	return nil
 }
 
-func (k *compiler) cuts(p party) bool { return p.cut == Truncate && !k.spec.Lattice.Periodic() }
+func (k *compiler) cuts(p party) bool { return p.cut.Truncates(k.spec.Lattice) }
 
 // reduced returns a lattice on which operators meet as they do on the real one:
 // long axes are shortened to where an operator can neither meet itself around
@@ -94,6 +94,9 @@ func (k *compiler) reduced(parties []party) lattice.Lattice {
 			}
 		}
 		enough := 4*(hi-lo) + 3
+		if k.spec.Absent != nil {
+			enough += 2
+		}
 		if n > enough+1 {
 			l.Size[a] = enough + (n-enough)%2
 		}
@@ -129,7 +132,7 @@ func checkPair(s Spec, a, b party) error {
 				from, to := s.Lattice.Coord(cell), s.Lattice.Coord(s.PositionCell(b.op, other))
 				return &NotCommuting{
 					A: a.name, B: b.name, Tracked: b.tracked, Offset: to.Add(from.Neg()),
-					Boundary: a.cut == Truncate || b.cut == Truncate,
+					Boundary: a.cut.Truncates(s.Lattice) || b.cut.Truncates(s.Lattice),
 				}
 			}
 		}

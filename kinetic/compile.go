@@ -27,8 +27,12 @@ type TooManyTerms struct {
 }
 
 func (e *TooManyTerms) Error() string {
-	return fmt.Sprintf("the bath operators on site %d of the cell change %d terms and tracked operators, %d bits; at most %d are supported",
-		e.Site, e.Terms, e.Bits, MaxBits)
+	most := "too many for 2 levels"
+	if e.Terms <= MaxBits {
+		most = fmt.Sprintf("with %d terms, up to %d levels", e.Terms, 1<<(MaxBits/e.Terms))
+	}
+	return fmt.Sprintf("the bath operators on site %d of the cell change %d terms and tracked operators, whose levels take %d bits; at most %d are supported: %s",
+		e.Site, e.Terms, e.Bits, MaxBits, most)
 }
 
 type compiler struct {
@@ -59,6 +63,12 @@ func Compile(spec Spec) (*Generator, error) {
 	}
 	if spec.Levels < 2 || spec.Levels > 16 {
 		return nil, fmt.Errorf("%d levels; 2 to 16 are possible", spec.Levels)
+	}
+	if err := spec.checkAbsent(); err != nil {
+		return nil, err
+	}
+	if err := spec.checkInverses(); err != nil {
+		return nil, err
 	}
 	k.spec.Families = nil
 	for _, f := range spec.Families {
@@ -97,14 +107,20 @@ func (k *compiler) collect() error {
 		if err := checkDisorder(f, k.spec); err != nil {
 			return err
 		}
-		k.add(family{f.Name, f.Group, f.Operator.Factors(), f.Cut, energy, false})
+		if err := f.Cut.check(k.spec.Lattice.Axes); err != nil {
+			return fmt.Errorf("family %q: %w", f.Name, err)
+		}
+		k.add(family{
+			name: f.Name, group: f.Group, factors: f.Operator.Factors(), keep: f.Cut.rules(),
+			absent: k.spec.Absent, energy: energy,
+		})
 	}
 	for _, t := range k.spec.Tracked {
 		if t.Operator.Extended() {
 			k.addLine(t)
 			continue
 		}
-		k.add(family{t.Name, "", t.Operator.Factors(), Drop, nil, t.Order})
+		k.add(family{name: t.Name, factors: t.Operator.Factors(), absent: k.spec.Absent, order: t.Order})
 	}
 	return nil
 }
@@ -261,6 +277,12 @@ func (k *compiler) reach() (reach [lattice.MaxAxes]int) {
 		reach[a] = influence[a]
 		if k.g.Lattice.Open[a] {
 			reach[a] += edge[a]
+		}
+	}
+	for _, r := range k.spec.Absent {
+		// What a site feels of the edge lies one cell further inside.
+		if k.g.Lattice.Open[r.Axis] {
+			reach[r.Axis] = max(reach[r.Axis], influence[r.Axis]+edge[r.Axis]+1)
 		}
 	}
 	return reach

@@ -128,8 +128,13 @@ type Shape struct {
 	// the changes of the counts by level.
 	Delta  []int8
 	turned []uint16 // by move: the slots that it changes (q = 2)
-	// LineHits[m][l] is how many positions of line l the move changes.
-	LineHits [][]int
+	// Change[m][b] is what move m adds to the level in slot b, mod q: 0 if that
+	// does not exist.
+	Change [][]uint8
+	// LineHits[m][l] is how many positions of line l the move changes, and
+	// LineChanges[m][l] what it adds to their levels, in increasing order.
+	LineHits    [][]int
+	LineChanges [][][]uint8
 
 	acts []bool // by move: whether it changes any term or line
 }

@@ -2,6 +2,7 @@ package kinetic
 
 import (
 	"math"
+	"slices"
 	"sort"
 
 	"sojourn/kinetic/lattice"
@@ -12,6 +13,7 @@ import (
 type line struct {
 	name    string
 	factors []pauli.Factor
+	absent  []Absence
 	extent  [lattice.MaxAxes]bool
 	stride  [lattice.MaxAxes]int // of the position, 0 along the extent
 }
@@ -20,7 +22,7 @@ type line struct {
 const missing = 1 << 30
 
 func (k *compiler) addLine(t TrackedSpec) {
-	l := line{name: t.Name, factors: t.Operator.Factors(), extent: t.Operator.Extent}
+	l := line{name: t.Name, factors: t.Operator.Factors(), absent: k.spec.Absent, extent: t.Operator.Extent}
 	positions := 1
 	for a, n := range k.g.Lattice.Size {
 		if !l.extent[a] {
@@ -45,9 +47,10 @@ func (k *compiler) addLine(t TrackedSpec) {
 	k.g.Lines = append(k.g.Lines, out)
 }
 
-// exists reports whether all factors of the instance through the cell lie
-// inside the lattice, across its extent. (Along an open axis of its extent the
-// operator is complete only if its cross-section has no offsets there.)
+// exists reports whether all factors of the instance through the cell lie on
+// sites of the lattice. (Along an open axis of its extent the operator is
+// complete only if its cross-section has no offsets there, and meets no edge
+// at which a site is absent.)
 func (l *line) exists(lat lattice.Lattice, cell int) bool {
 	c := lat.Coord(cell)
 	for a := range c {
@@ -65,15 +68,15 @@ func (l *line) coordinate(lat lattice.Lattice, a, x int) (int, bool) {
 		return x, true
 	}
 	for _, f := range l.factors {
-		y := x + f.Exp[a]
+		lo, hi := siteRange(lat, l.absent, f.Site, a)
 		if l.extent[a] {
-			y = f.Exp[a] // any coordinate but 0 would leave one end bare
-			if y != 0 {
+			// Any offset would leave one end bare.
+			if f.Exp[a] != 0 || lo > 0 || hi < lat.Size[a]-1 {
 				return x, false
 			}
 			continue
 		}
-		if y < 0 || y >= lat.Size[a] {
+		if y := x + f.Exp[a]; y < lo || y > hi {
 			return x, false
 		}
 	}
@@ -165,11 +168,12 @@ func (k *compiler) position(x cross, c lattice.Offset) (p int, ok bool) {
 	return int(sum), true
 }
 
-// lineHits counts, by move and line, the positions whose level changes.
-func (k *compiler) lineHits(c lattice.Offset, seat int) [][]int {
-	out := make([][]int, len(k.g.Seats[seat].Moves))
+// lineChanges lists, by move and line, what is added to the levels of the
+// positions that change, in increasing order.
+func (k *compiler) lineChanges(c lattice.Offset, seat int) [][][]uint8 {
+	out := make([][][]uint8, len(k.g.Seats[seat].Moves))
 	for m := range out {
-		out[m] = make([]int, len(k.lines))
+		out[m] = make([][]uint8, len(k.lines))
 		type instance struct{ line, position int }
 		change := map[instance]int{}
 		for _, x := range k.crossings(seat, m) {
@@ -178,9 +182,12 @@ func (k *compiler) lineHits(c lattice.Offset, seat int) [][]int {
 			}
 		}
 		for at, d := range change {
-			if d%k.g.Levels != 0 {
-				out[m][at.line]++
+			if d %= k.g.Levels; d != 0 {
+				out[m][at.line] = append(out[m][at.line], uint8(d))
 			}
+		}
+		for _, l := range out[m] {
+			slices.Sort(l)
 		}
 	}
 	return out

@@ -12,21 +12,29 @@ type family struct {
 	name    string
 	group   string
 	factors []pauli.Factor
-	cut     Cut
+	keep    [lattice.MaxAxes]bool // by axis: whether factors that leave along it are cut off
+	absent  []Absence
 	energy  []*big.Rat // nil for tracked operators
 	order   bool
 }
 
-// exists reports whether the family has a term at cell t: with all its factors
-// inside the lattice, or with at least one if it is truncated (see Spec.Term).
+// exists reports whether the family has a term at cell t: one that no axis
+// drops, with at least one of its factors inside the lattice (see Spec.Term).
 func (f *family) exists(l lattice.Lattice, t lattice.Offset) bool {
-	truncate := f.cut == Truncate
+	inside := len(f.factors) == 0
 	for _, factor := range f.factors {
-		if _, inside := l.Wrap(t, factor.Exp); inside == truncate {
-			return truncate
+		_, outside, ok := wrapSite(l, f.absent, t, factor.Exp, factor.Site)
+		if ok {
+			inside = true
+			continue
+		}
+		for a := range outside {
+			if outside[a] && !f.keep[a] {
+				return false
+			}
 		}
 	}
-	return !truncate || len(f.factors) == 0
+	return inside
 }
 
 // at returns the powers with which the term at cell t acts on the given site of
@@ -36,7 +44,7 @@ func (f *family) at(l lattice.Lattice, t lattice.Offset, site int, c lattice.Off
 		if factor.Site != site {
 			continue
 		}
-		if d, ok := l.Wrap(t, factor.Exp); ok && d == c {
+		if d, _, ok := wrapSite(l, f.absent, t, factor.Exp, site); ok && d == c {
 			x += factor.X
 			z += factor.Z
 		}
@@ -47,23 +55,24 @@ func (f *family) at(l lattice.Lattice, t lattice.Offset, site int, c lattice.Off
 // count returns how many terms exist.
 func (f *family) count(l lattice.Lattice) int {
 	n := 1
-	if f.cut == Truncate && !l.Periodic() {
-		n = 0
-		for c := range l.Cells() {
-			if f.exists(l, l.Coord(c)) {
-				n++
-			}
-		}
-		return n
-	}
 	for a, length := range l.Size {
-		if l.Open[a] {
-			lo, hi := 0, 0
-			for _, factor := range f.factors {
-				lo = min(lo, factor.Exp[a])
-				hi = max(hi, factor.Exp[a])
+		if l.Open[a] && f.keep[a] {
+			n = 0
+			for c := range l.Cells() {
+				if f.exists(l, l.Coord(c)) {
+					n++
+				}
 			}
-			length = max(0, length-(hi-lo))
+			return n
+		}
+		if l.Open[a] {
+			lo, hi := 0, length-1
+			for _, factor := range f.factors {
+				first, last := siteRange(l, f.absent, factor.Site, a)
+				lo = max(lo, first-factor.Exp[a])
+				hi = min(hi, last-factor.Exp[a])
+			}
+			length = max(0, hi-lo+1)
 		}
 		n *= length
 	}
@@ -105,6 +114,10 @@ func (k *compiler) look(c lattice.Offset, seat int) *neighbourhood {
 		n.change[m] = make([]int, len(s.Slots))
 	}
 	l, q := k.g.Lattice, k.g.Levels
+	if _, _, present := wrapSite(l, k.spec.Absent, c, lattice.Offset{}, s.Site); !present {
+		k.seen[key] = n
+		return n // nothing acts on a site that is not there
+	}
 	for b, slot := range s.Slots {
 		t, ok := l.Wrap(c, slot.Offset)
 		f := &k.families[slot.Family]

@@ -56,7 +56,7 @@ func GroundStates(s Spec) (Ground, error) {
 		lowest = lowest && unique
 		reference = reference && level == 0 && unique
 	}
-	sites := float64(s.Lattice.Cells() * s.Sites)
+	sites := float64(s.SiteCount())
 	if reference {
 		if rank, ok := translationRank(s); ok {
 			g.Known, g.Satisfied, g.Reference = true, true, true

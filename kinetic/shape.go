@@ -12,13 +12,13 @@ import (
 // shapeOf returns the shape of a seat in cell c, compiling it when it is new.
 func (k *compiler) shapeOf(c lattice.Offset, seat int) (int, error) {
 	n := k.look(c, seat)
-	hits := k.lineHits(c, seat)
-	key := shapeKey(seat, n, hits)
+	lines := k.lineChanges(c, seat)
+	key := shapeKey(seat, n, lines)
 	if id, ok := k.shapes[key]; ok {
 		return id, nil
 	}
 	g := k.g
-	s := Shape{Seat: seat, LineHits: hits, acts: actingMoves(n, hits)}
+	s := Shape{Seat: seat, LineChanges: lines, acts: actingMoves(n, lines)}
 	for b, ok := range n.exists {
 		if ok {
 			s.Present |= 1 << b
@@ -26,11 +26,18 @@ func (k *compiler) shapeOf(c lattice.Offset, seat int) (int, error) {
 	}
 	moves := len(g.Seats[seat].Moves)
 	s.turned = make([]uint16, moves)
+	s.Change = make([][]uint8, moves)
+	s.LineHits = make([][]int, moves)
 	for m, change := range n.change {
+		s.Change[m] = make([]uint8, len(change))
 		for b, d := range change {
 			if n.exists[b] && d != 0 {
 				s.turned[m] |= 1 << b
+				s.Change[m][b] = uint8(d)
 			}
+		}
+		for _, l := range lines[m] {
+			s.LineHits[m] = append(s.LineHits[m], len(l))
 		}
 	}
 	patterns := 1 << g.Bits
@@ -59,7 +66,7 @@ func (k *compiler) shapeOf(c lattice.Offset, seat int) (int, error) {
 	return id, nil
 }
 
-func shapeKey(seat int, n *neighbourhood, hits [][]int) string {
+func shapeKey(seat int, n *neighbourhood, lines [][][]uint8) string {
 	key := binary.AppendUvarint(nil, uint64(seat))
 	for m := range n.change {
 		for b, d := range n.change[m] {
@@ -68,8 +75,9 @@ func shapeKey(seat int, n *neighbourhood, hits [][]int) string {
 			}
 			key = binary.AppendUvarint(key, uint64(d))
 		}
-		for _, h := range hits[m] {
-			key = binary.AppendUvarint(key, uint64(h))
+		for _, l := range lines[m] {
+			key = binary.AppendUvarint(key, uint64(len(l)))
+			key = append(key, l...)
 		}
 	}
 	return string(key)
@@ -130,14 +138,14 @@ func (k *compiler) compileMove(s *Shape, n *neighbourhood, m, p int, before []in
 }
 
 // actingMoves tells which moves change any term or line.
-func actingMoves(n *neighbourhood, hits [][]int) []bool {
-	acts := make([]bool, len(hits))
+func actingMoves(n *neighbourhood, lines [][][]uint8) []bool {
+	acts := make([]bool, len(lines))
 	for m := range acts {
 		for b, d := range n.change[m] {
 			acts[m] = acts[m] || d != 0 && n.exists[b]
 		}
-		for _, h := range hits[m] {
-			acts[m] = acts[m] || h > 0
+		for _, l := range lines[m] {
+			acts[m] = acts[m] || len(l) > 0
 		}
 	}
 	return acts

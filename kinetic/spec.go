@@ -16,16 +16,21 @@ type Spec struct {
 	Tracked  []TrackedSpec
 	Bath     []BathOperator
 	Beta     float64 // inverse temperature, >= 0
+
+	// Absent lists sites that cells at open edges lack, as the rough edges of a
+	// planar code do. Nothing acts on an absent site, and a term that would is
+	// cut as if the lattice ended there.
+	Absent []Absence
 }
 
-// Cut says what becomes of a term that would leave the lattice at an open edge.
-type Cut string
-
-// The two cuts. Drop is the default ("").
-const (
-	Drop     Cut = "drop"     // the term is absent
-	Truncate Cut = "truncate" // the term keeps the factors inside
-)
+// Absence says that a site is missing from every cell at one edge: the cells
+// with the first coordinate along an axis, or the last. Along a periodic axis it
+// says nothing.
+type Absence struct {
+	Site int // of the cell
+	Axis int
+	Last bool
+}
 
 // FamilySpec is one term of the Hamiltonian per cell:
 // E(s) = -Coupling*(-1)^s for q = 2, in general -Coupling*Shape[s].

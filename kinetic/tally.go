@@ -162,7 +162,7 @@ func (e *tally) energy() float64 {
 			continue
 		}
 		if e.g.Levels == 2 {
-			sum += fam.Energy[0] * float64(e.sums[f])
+			sum += fam.energyOf(e.sums[f])
 			continue
 		}
 		for s, energy := range fam.Energy {
@@ -170,6 +170,16 @@ func (e *tally) energy() float64 {
 		}
 	}
 	return sum
+}
+
+// energyOf returns the energy of a family (q = 2) whose eigenvalues have the
+// given sum.
+func (f *Family) energyOf(sum int64) float64 {
+	if f.Energy[1] == -f.Energy[0] {
+		return f.Energy[0] * float64(sum)
+	}
+	down := (int64(f.Terms) - sum) / 2
+	return f.Energy[0]*float64(int64(f.Terms)-down) + f.Energy[1]*float64(down)
 }
 
 // readLine writes the levels of a line by position.

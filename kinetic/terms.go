@@ -19,9 +19,10 @@ type SiteFactor struct {
 // powers that meet on one site are added mod q; factors that cancel are left
 // out. A term without factors is a constant (1 + x on an axis of length 1).
 //
-// At open edges ok is false if a factor lies outside and cut is Drop (or "");
-// with Truncate the factors inside remain, and ok is false only if none of the
-// operator's factors lies inside.
+// At open edges ok is false if a factor lies outside, or on a site that is
+// absent, along an axis with the rule Drop (or ""); with Truncate the factors
+// inside remain, and ok is false only if none of the operator's factors lies
+// inside.
 //
 // An operator with an extent is multiplied over all cells of its axes; the
 // coordinates of cell along them do not matter.
@@ -42,11 +43,12 @@ func (s Spec) AppendTerm(dst []SiteFactor, o pauli.Operator, cut Cut, cell int) 
 		}
 	}
 	inside := false
+	keep := cut.rules()
 	var run lattice.Offset
 	for {
-		var complete, some bool
-		dst, complete, some = s.appendFactors(dst, o, at.Add(run))
-		if !complete && cut != Truncate {
+		var dropped, some bool
+		dst, dropped, some = s.appendFactors(dst, o, at.Add(run), &keep)
+		if dropped {
 			return dst[:start], false
 		}
 		inside = inside || some
@@ -69,16 +71,17 @@ func (s Spec) AppendTerm(dst []SiteFactor, o pauli.Operator, cut Cut, cell int) 
 }
 
 // appendFactors appends the operator's factors around the cell at the given
-// position, unfolded. complete is false if one lies beyond an open edge, some
-// is true if one lies inside.
-func (s Spec) appendFactors(dst []SiteFactor, o pauli.Operator, at lattice.Offset) (out []SiteFactor, complete, some bool) {
-	complete = true
+// position, unfolded. dropped is true if one lies outside along an axis that
+// does not truncate, some is true if one lies inside.
+func (s Spec) appendFactors(dst []SiteFactor, o pauli.Operator, at lattice.Offset, truncate *[lattice.MaxAxes]bool) (out []SiteFactor, dropped, some bool) {
 	for part, list := range [2][]pauli.Polynomial{o.X, o.Z} {
 		for site, p := range list {
 			for _, m := range p {
-				c, ok := s.Lattice.Wrap(at, m.Exp)
+				c, outside, ok := wrapSite(s.Lattice, s.Absent, at, m.Exp, site)
 				if !ok {
-					complete = false
+					for a := range outside {
+						dropped = dropped || outside[a] && !truncate[a]
+					}
 					continue
 				}
 				some = true
@@ -92,7 +95,7 @@ func (s Spec) appendFactors(dst []SiteFactor, o pauli.Operator, at lattice.Offse
 			}
 		}
 	}
-	return dst, complete, some
+	return dst, dropped, some
 }
 
 // isIdentity reports whether all polynomials of o are 0.

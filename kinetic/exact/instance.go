@@ -47,12 +47,12 @@ type Factor struct {
 // enumerate lists the kinds and their instances: energy families with a
 // coupling, local tracked operators, lines.
 func (s *System) enumerate() error {
-	add := func(k Kind, op pauli.Operator, truncate bool) {
+	add := func(k Kind, op pauli.Operator, cut kinetic.Cut) {
 		k.First, k.extent = len(s.Instances), op.Extent
 		positions := transverse(s.Spec.Lattice, op.Extent)
 		k.Positions = len(positions)
 		for p, at := range positions {
-			if f, ok := s.fold(op, at, truncate); ok {
+			if f, ok := s.fold(op, at, cut); ok {
 				s.Instances = append(s.Instances, Instance{Kind: len(s.Kinds), Position: p, Factors: f})
 			}
 		}
@@ -75,18 +75,18 @@ func (s *System) enumerate() error {
 			x, _ := e.Float64()
 			k.Energy = append(k.Energy, x)
 		}
-		add(k, f.Operator, f.Cut == kinetic.Truncate)
+		add(k, f.Operator, f.Cut)
 	}
 	for _, t := range s.Spec.Tracked {
 		if !t.Operator.Extended() {
-			add(Kind{Name: t.Name, Order: t.Order, Index: families}, t.Operator, false)
+			add(Kind{Name: t.Name, Order: t.Order, Index: families}, t.Operator, kinetic.Drop)
 			families++
 		}
 	}
 	lines := 0
 	for _, t := range s.Spec.Tracked {
 		if t.Operator.Extended() {
-			add(Kind{Name: t.Name, Order: t.Order, Index: lines, Line: true}, t.Operator, false)
+			add(Kind{Name: t.Name, Order: t.Order, Index: lines, Line: true}, t.Operator, kinetic.Drop)
 			lines++
 		}
 	}
@@ -133,9 +133,9 @@ func transverse(l lattice.Lattice, extent [lattice.MaxAxes]bool) []lattice.Offse
 // fold places an operator at a cell: factors that fall on one site multiply,
 // and an operator with an extent is the product of its translates along it. ok
 // is false for an operator that the lattice does not have: one that would
-// leave it at an open edge and is not truncated, or of which truncation leaves
-// nothing.
-func (s *System) fold(op pauli.Operator, at lattice.Offset, truncate bool) (f []Factor, ok bool) {
+// leave it, or meet an absent site, at an edge where it is not truncated, or of
+// which truncation leaves nothing.
+func (s *System) fold(op pauli.Operator, at lattice.Offset, cut kinetic.Cut) (f []Factor, ok bool) {
 	l, q := s.Spec.Lattice, s.Spec.Levels
 	factors := op.Factors()
 	if len(factors) == 0 {
@@ -152,13 +152,14 @@ func (s *System) fold(op pauli.Operator, at lattice.Offset, truncate bool) (f []
 			continue
 		}
 		for _, m := range factors {
-			cell, inside := l.Wrap(at.Add(shift), m.Exp)
-			if !inside {
-				if truncate {
-					continue
-				}
+			missing := s.missing(m.Site, at.Add(shift).Add(m.Exp))
+			if slices.ContainsFunc(missing, func(axis int) bool { return cut.Along(axis) != kinetic.Truncate }) {
 				return nil, false
 			}
+			if len(missing) > 0 {
+				continue
+			}
+			cell, _ := l.Wrap(at.Add(shift), m.Exp)
 			n := l.Index(cell)*s.Spec.Sites + m.Site
 			p := powers[n]
 			powers[n] = Factor{Site: n, X: p.X + m.X, Z: p.Z + m.Z}
@@ -175,6 +176,27 @@ func (s *System) fold(op pauli.Operator, at lattice.Offset, truncate bool) (f []
 	}
 	slices.SortFunc(f, func(a, b Factor) int { return a.Site - b.Site })
 	return f, true
+}
+
+// missing lists the open axes along which a site of the cell at a position
+// does not exist: beyond the edge, or at an edge that lacks the site.
+func (s *System) missing(site int, at lattice.Offset) []int {
+	var out []int
+	for a, open := range s.Spec.Lattice.Open {
+		x, last := at[a], s.Spec.Lattice.Size[a]-1
+		gone := x < 0 || x > last
+		for _, r := range s.Spec.Absent {
+			edge := 0
+			if r.Last {
+				edge = last
+			}
+			gone = gone || r.Site == site && r.Axis == a && x == edge
+		}
+		if open && gone {
+			out = append(out, a)
+		}
+	}
+	return out
 }
 
 func mod(a, q int) int { return ((a % q) + q) % q }

@@ -333,14 +333,15 @@ func (c *generatorCheck) checkHits(a, m int, change map[int]uint8) {
 	}
 	sh := &g.Shapes[g.Places[g.PlaceOf(a)].Shape]
 	for l := range g.Lines {
-		n := 0
+		var added []uint8
 		for _, i := range c.at[len(g.Families)+l] {
 			if change[i] != 0 {
-				n++
+				added = append(added, change[i])
 			}
 		}
-		if sh.LineHits[m][l] != n {
-			c.fault("address %d, move %d: counts %d hits of line %q, want %d", a, m, sh.LineHits[m][l], g.Lines[l].Name, n)
+		slices.Sort(added)
+		if sh.LineHits[m][l] != len(added) || !slices.Equal(sh.LineChanges[m][l], added) {
+			c.fault("address %d, move %d: adds %v to %d positions of line %q, want %v", a, m, sh.LineChanges[m][l], sh.LineHits[m][l], g.Lines[l].Name, added)
 		}
 	}
 }
@@ -365,8 +366,13 @@ func (c *generatorCheck) checkRates(a, m, move int, exists bool, change map[int]
 		return
 	}
 	c.seen[key] = true
+	for b, d := range add {
+		if got := sh.Change[m][b]; int(got) != d {
+			c.fault("shape %d, move %d: adds %d to slot %d, want %d", id, m, got, b, d)
+		}
+	}
 	levels := slices.Clone(s.Reference)
-	delta := make([]int, len(g.Families))
+	delta := make([]int, len(g.Families)*g.SumWidth())
 	for p := range 1 << g.Bits {
 		slots, ok := c.unpack(sh, p)
 		if !ok {
@@ -378,8 +384,14 @@ func (c *generatorCheck) checkRates(a, m, move int, exists bool, change map[int]
 				continue
 			}
 			levels[i] = uint8(slots[b])
-			if change[i] != 0 && g.Levels == 2 {
-				delta[g.Seats[sh.Seat].Slots[b].Family] += 4*slots[b] - 2
+			family := g.Seats[sh.Seat].Slots[b].Family
+			switch {
+			case change[i] == 0:
+			case g.Levels == 2:
+				delta[family] += 4*slots[b] - 2
+			default:
+				delta[family*g.Levels+slots[b]]--
+				delta[family*g.Levels+(slots[b]+int(change[i]))%g.Levels]++
 			}
 		}
 		want := 0.0
@@ -391,8 +403,8 @@ func (c *generatorCheck) checkRates(a, m, move int, exists bool, change map[int]
 			return
 		}
 		for f, d := range delta {
-			if got := sh.Delta[(m<<g.Bits|p)*len(g.Families)+f]; int(got) != d {
-				c.fault("shape %d, move %d: changes the sum of family %d by %d at pattern %b, want %d", id, m, f, got, p, d)
+			if got := sh.Delta[(m<<g.Bits|p)*len(delta)+f]; int(got) != d {
+				c.fault("shape %d, move %d: changes sum %d of the families by %d at pattern %b, want %d", id, m, f, got, p, d)
 				return
 			}
 		}

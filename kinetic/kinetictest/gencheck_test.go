@@ -55,6 +55,45 @@ func TestCompiledTables(t *testing.T) {
 	}
 }
 
+// The same for more than two levels, and for edges that lack sites.
+func TestCompiledLevelsAndEdges(t *testing.T) {
+	check := func(name string, s kinetic.Spec) {
+		sys, err := exact.NewSystem(s)
+		if err != nil {
+			t.Fatalf("%s: %v", name, err)
+		}
+		g, err := kinetic.Compile(s)
+		var terms *kinetic.TooManyTerms
+		if errors.As(err, &terms) {
+			return
+		}
+		if err != nil {
+			t.Fatalf("%s: %v\n%+v", name, err, s)
+		}
+		if err := CheckGenerator(g, sys); err != nil {
+			t.Errorf("%s: %v\n%+v", name, err, s)
+		}
+	}
+	for _, q := range []int{3, 4, 5, 8} {
+		for _, size := range [][]int{{1}, {2}, {5}, {1, 2}, {2, 3}, {4, 3}} {
+			check("potts", Potts(q, Lattice(size...), 0.5, HeatBath))
+		}
+	}
+	for _, size := range [][2]int{{1, 1}, {1, 3}, {2, 1}, {2, 2}, {3, 2}, {2, 4}, {7, 8}} {
+		for _, which := range []string{"X", "XYZ"} {
+			check("planar code", PlanarCode(size[0], size[1], 0.5, which, HeatBath))
+		}
+	}
+	for seed := range uint64(120) {
+		size := Enumerable
+		if seed%3 == 2 {
+			size = Larger
+		}
+		check("levels", RandomLevels(seed, 3+int(seed/3)%3, size))
+		check("edges", RandomEdges(seed, size))
+	}
+}
+
 // Each fault put into the tables must be found.
 func TestCheckGeneratorFinds(t *testing.T) {
 	spec := ToricCode(Lattice(3, 4), 0.5, "XYZ", HeatBath, "zx")

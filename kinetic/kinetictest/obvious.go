@@ -171,13 +171,22 @@ func (o *Obvious) Jumps() uint64 { return o.jumps }
 // Sums implements kinetic.Engine.
 func (o *Obvious) Sums(dst []int64) []int64 {
 	for _, k := range o.c.kind {
-		sum := int64(0)
-		for _, l := range o.levels[k.First : k.First+k.Count] {
-			sum += 1 - 2*int64(l)
-		}
-		dst = append(dst, sum)
+		dst = append(dst, sums(o.g, o.levels[k.First:k.First+k.Count])...)
 	}
 	return dst
+}
+
+// sums returns the sum of the eigenvalues (-1)^s, or for q > 2 the counts by
+// level.
+func sums(g *kinetic.Generator, levels []uint8) []int64 {
+	counts := make([]int64, g.Levels)
+	for _, l := range levels {
+		counts[l]++
+	}
+	if g.Levels == 2 {
+		return []int64{counts[0] - counts[1]}
+	}
+	return counts
 }
 
 // Energy implements kinetic.Engine.

@@ -95,8 +95,8 @@ func (r *random) lattice(maxCells int) lattice.Lattice {
 	}
 }
 
-// polynomial returns a random polynomial of 0 to 3 monomials; some reach two
-// cells far.
+// polynomial returns a random polynomial of 0 to 3 monomials, with coefficients
+// 1; some reach two cells far.
 func (r *random) polynomial(axes, atLeast int) pauli.Polynomial {
 	seen := map[lattice.Offset]bool{}
 	var p pauli.Polynomial
@@ -137,18 +137,18 @@ func conjugate(p pauli.Polynomial) pauli.Polynomial {
 	return canonical(q)
 }
 
-// multiply returns a b over Z_2.
-func multiply(a, b pauli.Polynomial) pauli.Polynomial {
+// multiply returns a b over Z_q.
+func multiply(a, b pauli.Polynomial, q int) pauli.Polynomial {
 	count := map[lattice.Offset]int{}
 	for _, m := range a {
 		for _, n := range b {
-			count[m.Exp.Add(n.Exp)]++
+			count[m.Exp.Add(n.Exp)] += m.Coeff * n.Coeff
 		}
 	}
 	var p pauli.Polynomial
 	for e, n := range count {
-		if n%2 == 1 {
-			p = append(p, pauli.Monomial{Exp: e, Coeff: 1})
+		if n %= q; n != 0 {
+			p = append(p, pauli.Monomial{Exp: e, Coeff: n})
 		}
 	}
 	return canonical(p)
@@ -169,13 +169,13 @@ func (r *random) classical(s *kinetic.Spec) {
 	}
 }
 
-// pair adds X: (f, g) and Z: (conj g, conj f), whose commutator is f g + g f.
+// pair adds X: (f, g) and Z: (-conj g, conj f), whose commutator is g f - f g.
 func (r *random) pair(s *kinetic.Spec) {
 	s.Sites = 2
 	f, g := r.polynomial(s.Lattice.Axes, 1), r.polynomial(s.Lattice.Axes, 1)
 	s.Families = append(s.Families,
 		kinetic.FamilySpec{Operator: pauli.Operator{X: []pauli.Polynomial{f, g}}},
-		kinetic.FamilySpec{Operator: pauli.Operator{Z: []pauli.Polynomial{conjugate(g), conjugate(f)}}})
+		kinetic.FamilySpec{Operator: pauli.Operator{Z: []pauli.Polynomial{conjugate(g).Scale(-1, s.Levels), conjugate(f)}}})
 }
 
 // mixed adds families X: p, Z: p s with one symmetric s = conj s, which all
@@ -204,7 +204,7 @@ func (r *random) mixed(s *kinetic.Spec) {
 	for range 1 + r.IntN(2) {
 		p := r.polynomial(s.Lattice.Axes, 1)
 		s.Families = append(s.Families, kinetic.FamilySpec{Operator: pauli.Operator{
-			X: []pauli.Polynomial{p}, Z: []pauli.Polynomial{multiply(p, symmetric)},
+			X: []pauli.Polynomial{p}, Z: []pauli.Polynomial{multiply(p, symmetric, s.Levels)},
 		}})
 	}
 }

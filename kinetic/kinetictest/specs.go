@@ -77,6 +77,26 @@ func Ising(l lattice.Lattice, beta float64, law bath.Law) kinetic.Spec {
 	return s
 }
 
+// Potts returns the ferromagnetic Potts model with J = 1, its spins tracked,
+// whose sites change to every other level.
+func Potts(q int, l lattice.Lattice, beta float64, law bath.Law) kinetic.Spec {
+	s := kinetic.Spec{Lattice: l, Levels: q, Sites: 1, Beta: beta}
+	shape := make([]float64, q)
+	shape[0] = 1
+	for a := range l.Axes {
+		v := string("xyzw"[a])
+		s.Families = append(s.Families, kinetic.FamilySpec{
+			Name: "bond-" + v, Group: "bond", Coupling: 1, Shape: shape,
+			Operator: Operator(q, l.Axes, nil, []string{"1 - " + v}),
+		})
+	}
+	s.Tracked = []kinetic.TrackedSpec{{Name: "spin", Order: true, Operator: Operator(q, l.Axes, nil, []string{"1"})}}
+	for k := 1; k < q; k++ {
+		s.Bath = append(s.Bath, kinetic.BathOperator{Name: "X", X: k, Law: law})
+	}
+	return s
+}
+
 // ToricCode returns the toric code in two dimensions with unit couplings: links
 // along x are site 0 of a cell, links along y site 1. The operators named in
 // which couple to the bath. tracked chooses among its bare logical operators:

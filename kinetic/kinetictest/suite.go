@@ -1,6 +1,7 @@
 package kinetictest
 
 import (
+	"crypto/sha256"
 	"fmt"
 	"testing"
 
@@ -25,9 +26,13 @@ type Make func(g *kinetic.Generator, seed [32]byte, unit int, start kinetic.Star
 // All seeds are fixed. With other seeds a right engine would fail once in 1000:
 // the comparisons of a run are judged together (see verdicts.judge).
 // With -short a few models stand for all.
-func Suite(t *testing.T, make Make) {
+func Suite(t *testing.T, make Make) { run(t, make, listed(t), large(t)) }
+
+// SuiteLevels is Suite for models of 3, 4 and 5 levels per site.
+func SuiteLevels(t *testing.T, make Make) { run(t, make, listedLevels(t), largeLevels(t)) }
+
+func run(t *testing.T, make Make, subjects, beyond []*subject) {
 	var v verdicts
-	subjects := listed(t)
 	for _, s := range subjects {
 		t.Run(s.name, func(t *testing.T) {
 			h := &harness{T: t, subject: s, make: make, v: &v}
@@ -41,7 +46,7 @@ func Suite(t *testing.T, make Make) {
 			h.saves()
 		})
 	}
-	for _, s := range large(t) {
+	for _, s := range beyond {
 		t.Run(s.name, func(t *testing.T) {
 			h := &harness{T: t, subject: s, make: make, v: &v}
 			h.states(40)
@@ -121,6 +126,39 @@ func listed(t *testing.T) []*subject {
 	for seed := range n {
 		out = append(out, newSubject(t, fmt.Sprint("random-", seed), RandomSpec(uint64(seed), Enumerable), true))
 	}
+	out = append(out, newSubject(t, "planar-2x2", PlanarCode(2, 2, 0.6, "XZ", HeatBath), true))
+	for seed := range n / 5 {
+		out = append(out, newSubject(t, fmt.Sprint("edges-", seed), RandomEdges(uint64(seed), Enumerable), true))
+	}
+	return out
+}
+
+// listedLevels returns generators of more than two levels whose states can be
+// listed.
+func listedLevels(t *testing.T) []*subject {
+	out := []*subject{
+		newSubject(t, "potts-3-ring-4", Potts(3, Lattice(4), 0.7, HeatBath), true),
+		newSubject(t, "potts-4-torus-2x2", Potts(4, Lattice(2, 2), 0.5, bath.Law{Kind: bath.Metropolis, Rate: 1}), true),
+		newSubject(t, "potts-5-ring-3", Potts(5, Lattice(3), 1.1, bath.Law{Kind: bath.Symmetric, Rate: 1}), true),
+	}
+	n := 5
+	if testing.Short() {
+		n = 1
+	}
+	for _, q := range []int{3, 4, 5} {
+		for seed := range n {
+			out = append(out, newSubject(t, fmt.Sprint("random-", q, "-", seed), RandomLevels(uint64(seed), q, Enumerable), true))
+		}
+	}
+	return out
+}
+
+// largeLevels returns generators of more than two levels beyond listing.
+func largeLevels(t *testing.T) []*subject {
+	out := []*subject{newSubject(t, "potts-3-9x8", Potts(3, Lattice(9, 8), 0.8, HeatBath), false)}
+	for _, q := range []int{3, 4, 5} {
+		out = append(out, newSubject(t, fmt.Sprint("random-large-", q), RandomLevels(1000, q, Larger), false))
+	}
 	return out
 }
 
@@ -142,7 +180,9 @@ func large(t *testing.T) []*subject {
 	for seed := range n {
 		out = append(out, newSubject(t, fmt.Sprint("random-large-", seed), RandomSpec(uint64(1000+seed), Larger), false))
 	}
-	return out
+	return append(out,
+		newSubject(t, "planar-6x5", PlanarCode(6, 5, 0.5, "XYZ", HeatBath), false),
+		newSubject(t, "edges-large", RandomEdges(1000, Larger), false))
 }
 
 // harness runs the checks of one subject.
@@ -153,12 +193,13 @@ type harness struct {
 	v    *verdicts
 }
 
-// seed is that of all suite runs: a digest says no more than another.
-var seed = [32]byte{0x50, 0x6a, 0x6f, 0x75, 0x72, 0x6e}
+// seed gives every subject streams of its own, so that what is found of several
+// can be judged together.
+func (s *subject) seed() [32]byte { return sha256.Sum256([]byte("suite " + s.name)) }
 
 func (h *harness) engine(unit int, start kinetic.Start) kinetic.Engine {
 	h.Helper()
-	e, err := h.make(h.g, seed, unit, start)
+	e, err := h.make(h.g, h.seed(), unit, start)
 	if err != nil {
 		h.Fatalf("unit %d from %s: %v", unit, start, err)
 	}

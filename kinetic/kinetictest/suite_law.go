@@ -25,7 +25,7 @@ func (h *harness) starts() {
 	for _, start := range []kinetic.Start{kinetic.StartUp, kinetic.StartDown} {
 		h.aligned(start, spins)
 	}
-	if _, err := h.make(h.g, seed, 0, "sideways"); err == nil {
+	if _, err := h.make(h.g, h.seed(), 0, "sideways"); err == nil {
 		h.Error("the start sideways was accepted")
 	}
 }
@@ -33,9 +33,9 @@ func (h *harness) starts() {
 // aligned checks a start in which all spins are equal. Some models have moves
 // that turn spins only together; they may refuse.
 func (h *harness) aligned(start kinetic.Start, spins bool) {
-	e, err := h.make(h.g, seed, 0, start)
+	e, err := h.make(h.g, h.seed(), 0, start)
 	if err != nil {
-		if _, reference := NewObvious(h.g, seed, 0, start); reference == nil {
+		if _, reference := NewObvious(h.g, h.seed(), 0, start); reference == nil {
 			h.Errorf("start %s: %v", start, err)
 		}
 		return
