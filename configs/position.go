@@ -35,6 +35,9 @@ func (s *source) position(at int) (line, column int) {
 	at = min(at, len(s.text))
 	line = sort.SearchInts(s.lines, at+1)
 	start := s.lines[line-1]
+	for at > start && at < len(s.text) && !utf8.RuneStart(s.text[at]) {
+		at-- // the parser may point into a character
+	}
 	return line, 1 + utf8.RuneCount(s.text[start:at])
 }
 

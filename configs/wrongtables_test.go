@@ -13,6 +13,7 @@ var wrongSyntax = []wrong{
 	{name: "unfinished list", old: "size = [8, 8]\n[hamiltonian]", new: "size = [8, 8\n▸[hamiltonian]", want: []string{": not valid TOML"}},
 	{name: "text behind a value", old: "beta = 0.4", new: "beta = 0.4 ▸K", want: []string{"bath.beta: not valid TOML"}},
 	{name: "columns count characters", old: `title = "Coldest shelf"`, new: `title = "Kältestes Fach" ▸x`, want: []string{"title: not valid TOML"}},
+	{name: "place inside a character", old: "[trajectory]\nsettle = 10.0\nspan = 100.0\nstep = 0.5\n", new: "law = \"榊▸榊", want: []string{"bath.law: not valid TOML"}},
 	{name: "byte that is no character", old: `title = "Coldest shelf"`, new: "title = \"▸\xff\"", want: []string{"title: not valid TOML"}},
 	{name: "duplicate key", old: "beta = 0.4", new: "beta = 0.4\n▸beta = 0.5", want: []string{"bath.beta: set twice: it stands in line 7"}},
 	{name: "duplicate table", old: "[trajectory]", new: "[▸lattice]\n[trajectory]", want: []string{"lattice: set twice: it stands in line 2"}},
