@@ -350,7 +350,7 @@ func (p *lanePlan) addMove(pl *Place, seat, m int, terms [][]int32) error {
 	out.near = p.cacheLines(words, p.terms[out.firstTerm:])
 	out.leaf = uint32(len(p.leaves))
 	chances := &p.sets[p.moves[p.first[seat]+m].set]
-	leaves := make([]uint8, out.combos)
+	leaves, seen := make([]uint8, out.combos), make([]bool, out.combos)
 	for costly := range 1 << n {
 		pattern, combo, at := 0, 0, 0
 		for _, size := range out.groups {
@@ -365,7 +365,11 @@ func (p *lanePlan) addMove(pl *Place, seat, m int, terms [][]int32) error {
 			}
 			pattern |= level << b
 		}
-		leaves[combo] = chances.column(shape.Rate[m][pattern])
+		leaf := chances.column(shape.Rate[m][pattern])
+		if seen[combo] && leaves[combo] != leaf {
+			panic("kinetic: equal numbers of costly terms, but different rates")
+		}
+		leaves[combo], seen[combo] = leaf, true
 	}
 	p.leaves = append(p.leaves, leaves...)
 	out.small = p.smallLeaves(out.groups, leaves)

@@ -168,6 +168,8 @@ func TestLanesExactMeans(t *testing.T) {
 		th := math.Tanh(b)
 		return (th + math.Pow(th, float64(n-1))) / (1 + math.Pow(th, float64(n)))
 	}
+	antiferro := isingSpec(t, 0.35, false, 8, 8)
+	antiferro.Families[1].Coupling = -1
 	for _, c := range []struct {
 		name   string
 		spec   Spec
@@ -179,6 +181,7 @@ func TestLanesExactMeans(t *testing.T) {
 		{"ring 3", isingSpec(t, 0.5, false, 3), ring(0.5, 3), "transfer matrix, textbook"},
 		{"open chain 5", isingSpec(t, 0.5, true, 5), math.Tanh(0.5), "independent bonds, textbook"},
 		{"toric 4 XYZ", toricSpec(t, 0.8, 4, "X", "Y", "Z"), ring(0.8, 16), "independent terms with one parity constraint, elementary"},
+		{"torus 8, antiferromagnetic along y", antiferro, 0.9191479 / 2, "the same after turning every other row over"},
 	} {
 		g := compiled(t, c.spec)
 		const bundles = 20
@@ -204,6 +207,31 @@ func TestLanesExactMeans(t *testing.T) {
 		se := math.Sqrt((q - m*m) / (bundles - 1))
 		if math.Abs(m-c.want) > 4*se || se > 0.01*c.want {
 			t.Errorf("%s: mean term %.5f(%.5f), want %.5f: %.1f standard errors (%s)", c.name, m, se, c.want, (m-c.want)/se, c.source)
+		}
+	}
+}
+
+// Starts that are states are those of the class engine, in every lane.
+func TestLanesStarts(t *testing.T) {
+	for name, s := range laneCases(t) {
+		g := compiled(t, s)
+		for _, start := range []Start{StartReference, StartUp, StartDown} {
+			one, errOne := NewClasses(g, [32]byte{}, 0, start)
+			all, err := NewLanes(g, [32]byte{}, 0, start)
+			if (err == nil) != (errOne == nil) {
+				t.Errorf("%s, %s: %v, for classes %v", name, start, err, errOne)
+			}
+			if err != nil || errOne != nil {
+				continue
+			}
+			want, got := make([]uint16, g.Addresses()), make([]uint16, g.Addresses())
+			one.Patterns(0, want)
+			for lane := range all.Lanes() {
+				all.Patterns(lane, got)
+				if !slices.Equal(got, want) {
+					t.Fatalf("%s, %s: lane %d has patterns %v, want %v", name, start, lane, got, want)
+				}
+			}
 		}
 	}
 }
