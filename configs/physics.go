@@ -111,16 +111,43 @@ func (c *canonical) hamiltonian(s kinetic.Spec) {
 		for _, x := range f.Shape {
 			t.float(x)
 		}
-		if !s.Lattice.Periodic() {
-			cut := f.Cut
-			if cut == "" {
-				cut = kinetic.Drop
+		for a, open := range s.Lattice.Open {
+			if open {
+				t.string(string(f.Cut.Along(a)))
 			}
-			t.string(string(cut))
+		}
+		if f.Signs != nil {
+			t.string("signs" + string(f.Signs))
+		}
+		if f.Couplings != nil {
+			t.string("couplings")
+			for _, x := range f.Couplings {
+				t.float(x)
+			}
 		}
 		terms = append(terms, t.text)
 	}
 	c.sorted(terms)
+	c.absent(s)
+}
+
+// absent appends the sites that are missing at open edges, if there are any.
+func (c *canonical) absent(s kinetic.Spec) {
+	var sites [][]byte
+	for _, m := range s.Absent {
+		if !s.Lattice.Open[m.Axis] {
+			continue
+		}
+		x := canonical{}
+		x.int(int64(m.Site))
+		x.int(int64(m.Axis))
+		x.flag(m.Last)
+		sites = append(sites, x.text)
+	}
+	if sites != nil {
+		c.string("absent")
+		c.sorted(sites)
+	}
 }
 
 func (c *canonical) flag(b bool) {

@@ -1,6 +1,7 @@
 package configs
 
 import (
+	"slices"
 	"testing"
 
 	"sojourn/kinetic"
@@ -173,5 +174,46 @@ func TestNamesDoNotHideWhatTheyStandFor(t *testing.T) {
 func TestKeyStaysAsItIs(t *testing.T) {
 	if got, want := only(t, base).Key, "0c99fbf808011cf9"; got != want || kinetic.StreamRevision != 1 {
 		t.Errorf("revision %d has the key %s, want %s at revision 1", kinetic.StreamRevision, got, want)
+	}
+}
+
+// What a Hamiltonian may have beyond terms that are the same everywhere enters
+// the digest as well, and leaves it as it was where there is none of it.
+func TestStreamOfIrregularHamiltonians(t *testing.T) {
+	spec := func(change func(*kinetic.Spec)) string {
+		p := only(t, swap(base, "size = [8, 8]", "size = [8, 8]\nboundary = [\"open\", \"periodic\"]"))
+		s := p.Spec
+		s.Families = slices.Clone(s.Families)
+		change(&s)
+		c := canonical{}
+		c.hamiltonian(s)
+		return string(c.text)
+	}
+	plain := spec(func(*kinetic.Spec) {})
+	seen := map[string]string{plain: "plain"}
+	for name, change := range map[string]func(*kinetic.Spec){
+		"signs":         func(s *kinetic.Spec) { s.Families[0].Signs = make([]uint8, 64) },
+		"couplings":     func(s *kinetic.Spec) { s.Families[0].Couplings = make([]float64, 64) },
+		"cut":           func(s *kinetic.Spec) { s.Families[0].Cut = kinetic.Truncate },
+		"absent, first": func(s *kinetic.Spec) { s.Absent = []kinetic.Absence{{Site: 0, Axis: 0}} },
+		"absent, last":  func(s *kinetic.Spec) { s.Absent = []kinetic.Absence{{Site: 0, Axis: 0, Last: true}} },
+		"absent, two": func(s *kinetic.Spec) {
+			s.Absent = []kinetic.Absence{{Site: 0, Axis: 0, Last: true}, {Site: 0, Axis: 0}}
+		},
+		"shape of energies": func(s *kinetic.Spec) { s.Families[0].Shape = []float64{1, 0} },
+	} {
+		got := spec(change)
+		if other, ok := seen[got]; ok {
+			t.Errorf("%q and %q are the same", name, other)
+		}
+		seen[got] = name
+	}
+	for name, change := range map[string]func(*kinetic.Spec){
+		"cut in words":             func(s *kinetic.Spec) { s.Families[0].Cut = kinetic.CutAlong(kinetic.Drop, kinetic.Truncate) },
+		"absent where none can be": func(s *kinetic.Spec) { s.Absent = []kinetic.Absence{{Site: 0, Axis: 1}} },
+	} {
+		if spec(change) != plain {
+			t.Errorf("%s changes the stream", name)
+		}
 	}
 }

@@ -165,6 +165,11 @@ func idle(b kinetic.BathOperator, h *hamiltonian) bool {
 // reach neither itself around the lattice nor both edges, parity kept.
 func shortened(s kinetic.Spec) lattice.Lattice {
 	l := s.Lattice
+	for _, f := range s.Families {
+		if f.Signs != nil || f.Couplings != nil {
+			return l // given cell by cell
+		}
+	}
 	for a, n := range l.Size {
 		reach := 0
 		for _, f := range s.Families {
