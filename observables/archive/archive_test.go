@@ -48,7 +48,7 @@ func testUnit(n int) observables.Unit {
 	x := func(k int) float64 { return math.Sin(float64(n*1000+k)) * 1e6 }
 	u.Trajectories = []observables.TrajectoryRow{{Lane: 0, Start: [...]string{"up", "down"}[n%2], Engine: "classes", Samples: 600, Jumps: int64(1000 + n)}}
 	for k := range 5 {
-		u.Moments = append(u.Moments, observables.MomentRow{Segment: int32(k), Observable: "energy", Count: 10, Sum1: x(k), Sum2: x(k + 1), Sum3: -0.0, Sum4: x(k + 2)})
+		u.Moments = append(u.Moments, observables.MomentRow{Segment: int32(k), Observable: "energy", Count: 10, Sum1: x(k), Sum2: x(k + 1), Sum3: math.Copysign(0, -1), Sum4: x(k + 2)})
 		u.Autocorrelation = append(u.Autocorrelation, observables.AutocorrelationRow{Segment: 1, F: "energy", G: "magnetization", Lag: int64(k), Pairs: 600, SumF: x(k), SumG: x(k + 3), SumFG: x(k + 4)})
 	}
 	for k := range n % 3 { // sometimes none

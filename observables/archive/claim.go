@@ -35,10 +35,10 @@ var usualPace = pace{stale: Stale, retry: 20 * time.Millisecond}
 //
 // A claim is a file that only one process could create. Its age is the time
 // since it was last written, by the clock of the file system and not of any
-// host. A stale claim is removed by the one process that could link it to a name
-// made of its token, and then created anew by whoever comes first. Claims only
-// spare double work: should two processes ever hold one (a process that was held
-// up for a minute goes on, say), both write the same bytes.
+// host. A stale claim is removed by one process, and then created anew by
+// whoever comes first. Claims only spare double work: should two processes ever
+// hold one (say, one that was held up for a minute goes on), both write the same
+// bytes.
 type Claim struct {
 	path string
 	text []byte
@@ -53,7 +53,11 @@ func (d *Dir) Claim(name string) (c *Claim, holder Holder, err error) {
 	if err := d.mayWrite(); err != nil {
 		return nil, holder, err
 	}
-	path := d.claimFile(name)
+	return d.acquire(d.claimFile(name))
+}
+
+// acquire is Claim for a path.
+func (d *Dir) acquire(path string) (c *Claim, holder Holder, err error) {
 	for range 2 {
 		c, err := createClaim(path)
 		if c != nil || err != nil {
@@ -63,7 +67,7 @@ func (d *Dir) Claim(name string) (c *Claim, holder Holder, err error) {
 		if holder, stale, err = d.inspect(path); err != nil || !stale {
 			return nil, holder, err
 		}
-		if err := removeStale(path, holder); err != nil {
+		if err := d.removeStale(path, holder); err != nil {
 			return nil, holder, err
 		}
 	}
@@ -74,7 +78,10 @@ func (d *Dir) Claim(name string) (c *Claim, holder Holder, err error) {
 // whose claim is stale.
 func (d *Dir) Claimed(name string) (holder Holder, ok bool) {
 	holder, stale, err := d.inspect(d.claimFile(name))
-	return holder, err == nil && !stale
+	if err != nil || stale {
+		return Holder{}, false
+	}
+	return holder, true
 }
 
 // createClaim returns nil if the file is there.
@@ -86,6 +93,21 @@ func createClaim(path string) (*Claim, error) {
 		return nil, err
 	}
 	c := &Claim{path: path, text: append(text, '\n')}
+	// Linked to its name when it is written, a claim is never seen half made.
+	draft := durable.Beside(path, h.Token)
+	if err := os.WriteFile(draft, c.text, 0o666); err != nil {
+		os.Remove(draft)
+		return nil, durable.Explain("claim", path, err)
+	}
+	defer os.Remove(draft)
+	err = os.Link(draft, path)
+	switch {
+	case err == nil, c.mine(): // the answer of a network file system may be lost
+		return c, nil
+	case errors.Is(err, fs.ErrExist):
+		return nil, nil
+	}
+	// Some file systems know no links.
 	f, err := os.OpenFile(path, os.O_WRONLY|os.O_CREATE|os.O_EXCL, 0o666)
 	if errors.Is(err, fs.ErrExist) {
 		return nil, nil
@@ -99,6 +121,12 @@ func createClaim(path string) (*Claim, error) {
 		return nil, durable.Explain("claim", path, err)
 	}
 	return c, nil
+}
+
+// mine reports whether the file is that of this claim.
+func (c *Claim) mine() bool {
+	text, err := os.ReadFile(c.path)
+	return err == nil && string(text) == string(c.text)
 }
 
 // inspect reads a claim. One that has vanished counts as stale. A claim whose
@@ -151,29 +179,18 @@ func ageOf(path string) (time.Duration, error) {
 	return now.ModTime().Sub(info.ModTime()), nil
 }
 
-// removeStale removes a claim that was judged stale, unless another process
-// does so, or it is not there any more.
-func removeStale(path string, judged Holder) error {
-	// Only one process can make this name. It stays until Prepare cleans up, so
-	// that one that judged long ago cannot remove what was claimed since.
-	aside := durable.Beside(path, "taken-"+judged.Token)
-	err := os.Link(path, aside)
-	if errors.Is(err, fs.ErrExist) || errors.Is(err, fs.ErrNotExist) {
+// removeStale removes a claim that was judged stale, if it is still there and
+// no other process is about to do so. The right to remove it is itself claimed,
+// by a name made of its token: so one that judged long ago cannot remove what
+// was claimed since, and a process that dies with the right holds up nobody.
+func (d *Dir) removeStale(path string, judged Holder) error {
+	right, _, err := d.acquire(durable.Beside(path, "taken-"+judged.Token))
+	if right == nil {
+		return err
+	}
+	defer right.Release()
+	if readHolder(path).Token != judged.Token {
 		return nil
-	}
-	linked := err == nil
-	if !linked {
-		// Some file systems know no links. Renaming then may take a new claim
-		// for a moment; it is put back.
-		if err := os.Rename(path, aside); err != nil {
-			return durable.Explain("take over", path, err)
-		}
-	}
-	if h := readHolder(aside); h.Token != judged.Token {
-		if !linked {
-			return os.Rename(aside, path)
-		}
-		return os.Remove(aside)
 	}
 	if err := os.Remove(path); err != nil && !errors.Is(err, fs.ErrNotExist) {
 		return durable.Explain("take over", path, err)
@@ -202,7 +219,7 @@ func (c *Claim) Beat() error {
 
 // Release gives the claim up. A claim that was lost stays with its taker.
 func (c *Claim) Release() {
-	if text, err := os.ReadFile(c.path); err == nil && string(text) == string(c.text) {
+	if c.mine() {
 		os.Remove(c.path)
 	}
 }
@@ -219,7 +236,7 @@ func (d *Dir) cleanClaims() {
 			continue
 		}
 		if h, stale, err := d.inspect(path); err == nil && stale {
-			removeStale(path, h)
+			d.removeStale(path, h)
 		}
 	}
 }

@@ -176,6 +176,39 @@ func TestCrashWhileAPartGrows(t *testing.T) {
 	}
 }
 
+// An error in the middle of the exchange leaves the old units readable.
+func TestErrorWhileAPartGrows(t *testing.T) {
+	d := prepare(t, 8)
+	if err := d.WritePart(testKey(0), 0, testUnits(0, 1), Receipt{Seconds: 1}); err != nil {
+		t.Fatal(err)
+	}
+	// Unit 0 has no Dirichlet rows, so that this name is free.
+	obstacle := d.partFile("dirichlet", testKey(0), 0)
+	if err := os.MkdirAll(filepath.Join(obstacle, "x"), 0o777); err != nil {
+		t.Fatal(err)
+	}
+	if err := d.WritePart(testKey(0), 0, testUnits(0, 8), Receipt{Seconds: 8}); err == nil || !strings.HasPrefix(err.Error(), obstacle) {
+		t.Fatalf("error %v", err)
+	}
+	if err := os.RemoveAll(obstacle); err != nil {
+		t.Fatal(err)
+	}
+	if units, err := d.ReadUnits(testKey(0), 0); err != nil || !reflect.DeepEqual(units, testUnits(0, 1)) {
+		t.Errorf("old units: %v, %v", units, err)
+	}
+	for name := range tree(t, d.Path()) {
+		if strings.Contains(name, ".tmp-") {
+			t.Errorf("%s is left", name)
+		}
+	}
+	if err := d.WritePart(testKey(0), 0, testUnits(0, 8), Receipt{Seconds: 8}); err != nil {
+		t.Fatal(err)
+	}
+	if r, err := d.Receipt(testKey(0), 0); err != nil || r.Next != nil || r.Units != 8 || r.Seconds != 8 {
+		t.Errorf("receipt %+v, %v", r, err)
+	}
+}
+
 // A table without rows in the first units may have some in later ones.
 func TestGrownPartGainsATable(t *testing.T) {
 	d := prepare(t, 1)

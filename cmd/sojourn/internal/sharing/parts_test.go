@@ -81,6 +81,17 @@ func TestSplitIsEvenAndComplete(t *testing.T) {
 	}
 }
 
+func TestLongUnitsComeFirst(t *testing.T) {
+	points := testPoints(3, 8) // each twice as costly as the one before
+	var order []string
+	for _, p := range byCost(points, Parts(points)) {
+		order = append(order, p.name()[len(p.Key)-2:])
+	}
+	if want := []string{"02-0", "02-4", "01-0", "01-4", "00-0", "00-4"}; !reflect.DeepEqual(order, want) {
+		t.Errorf("order %v, want %v", order, want)
+	}
+}
+
 func TestShareCheck(t *testing.T) {
 	for s, ok := range map[Share]bool{{}: true, {0, 1}: true, {2, 3}: true, {3, 3}: false, {-1, 3}: false, {0, -1}: false, {1, 0}: false} {
 		if err := s.Check(); (err == nil) != ok {

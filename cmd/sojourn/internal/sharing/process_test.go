@@ -9,6 +9,7 @@ import (
 	"os"
 	"os/exec"
 	"strconv"
+	"strings"
 	"sync/atomic"
 	"syscall"
 	"testing"
@@ -27,6 +28,9 @@ func TestMain(m *testing.M) {
 	os.Exit(child(os.Args[1:]))
 }
 
+// opened is what a child says when it begins to work.
+const opened = "opened\n"
+
 // child works on a directory with the study of testPoints, and exits like the
 // command: 0, 1 after an error, 3 after a signal.
 func child(args []string) int {
@@ -43,6 +47,7 @@ func child(args []string) int {
 	var t quiet
 	var ran atomic.Int64
 	j := job(&t, prepare(&t, path, points), points, workers, &ran)
+	fmt.Print(opened)
 	if len(args) > 4 {
 		j.Run = stubborn(args[4])
 	}
@@ -107,7 +112,7 @@ func outcome(t *testing.T, cmd *exec.Cmd, out io.Reader) (ran, left int) {
 	if err := cmd.Wait(); err != nil {
 		t.Fatalf("%v\n%s", err, text)
 	}
-	if _, err := fmt.Sscanf(string(text), "ran %d left %d", &ran, &left); err != nil {
+	if _, err := fmt.Sscanf(strings.TrimPrefix(string(text), opened), "ran %d left %d", &ran, &left); err != nil {
 		t.Fatalf("%v in %q", err, text)
 	}
 	return ran, left
@@ -138,10 +143,20 @@ func TestKilledProcessesLoseNothingButRunningUnits(t *testing.T) {
 	for _, count := range []int{6, 21} {
 		for complete := false; !complete; {
 			cmd, out := start(t, path, 3, count, 2)
-			// The first life is long enough to make a start, the others end
-			// anywhere.
-			timer := time.AfterFunc(time.Duration(10+random.IntN(120))*time.Millisecond, func() { cmd.Process.Kill() })
-			text, _ := io.ReadAll(out)
+			// One in four ends while it opens the directory, the others while
+			// they work. The first three are too short for all 63 units, 3 ms
+			// each; later ones live longer, so that it ends on any machine.
+			lines := bufio.NewReader(out)
+			if random.IntN(4) > 0 {
+				lines.ReadString('\n')
+			}
+			longest := 20
+			if kills >= 3 {
+				longest = 60 + 4*kills
+			}
+			life := time.Duration(random.IntN(longest)) * time.Millisecond
+			timer := time.AfterFunc(life, func() { cmd.Process.Kill() })
+			text, _ := io.ReadAll(lines)
 			err := cmd.Wait()
 			timer.Stop()
 			checkReadable(t, path)
@@ -152,7 +167,7 @@ func TestKilledProcessesLoseNothingButRunningUnits(t *testing.T) {
 				continue
 			}
 			var ran, left int
-			fmt.Sscanf(string(text), "ran %d left %d", &ran, &left)
+			fmt.Sscanf(strings.TrimPrefix(string(text), opened), "ran %d left %d", &ran, &left)
 			if complete = left == 0; !complete {
 				t.Errorf("%d parts are left by a process that was alone", left)
 			}
@@ -191,7 +206,8 @@ func TestSignals(t *testing.T) {
 	for _, s := range []syscall.Signal{syscall.SIGINT, syscall.SIGTERM} {
 		cmd, out := start(t, t.TempDir(), 1, 8, 1, "patient")
 		lines := bufio.NewScanner(out)
-		lines.Scan() // it runs
+		for lines.Scan() && lines.Text() != "running" {
+		}
 		sent := time.Now()
 		cmd.Process.Signal(s)
 		for lines.Scan() {
@@ -207,7 +223,8 @@ func TestSignals(t *testing.T) {
 
 		cmd, out = start(t, t.TempDir(), 1, 8, 1, "deaf")
 		lines = bufio.NewScanner(out)
-		lines.Scan()
+		for lines.Scan() && lines.Text() != "running" {
+		}
 		cmd.Process.Signal(s)
 		time.Sleep(100 * time.Millisecond)
 		cmd.Process.Signal(s)

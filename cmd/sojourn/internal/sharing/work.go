@@ -192,7 +192,7 @@ func (w *work) fail(err error) {
 	}
 	var signal *Interrupted
 	if running > 0 && !errors.As(err, &signal) && !errors.Is(err, context.Canceled) {
-		w.warn("%v; %d units that are running are finished first", err, running)
+		w.warn("%v; what is running (%d) is finished first", err, running)
 	}
 }
 
