@@ -25,3 +25,33 @@ func (s Spec) checkInverses() error {
 	}
 	return nil
 }
+
+// Powers returns the bath operator in the given powers 1..q-1 (nil for the
+// first), each followed by its inverse where that is another; none is listed
+// twice. They are named X, X^-1, X^2, X^-2 and so on.
+func (b BathOperator) Powers(powers []int, q int) []BathOperator {
+	if powers == nil {
+		powers = []int{1}
+	}
+	var out []BathOperator
+	seen := make([]bool, q)
+	for _, k := range powers {
+		for _, n := range []int{k, q - k} {
+			if seen[n] {
+				continue
+			}
+			seen[n] = true
+			p := b
+			p.X, p.Z = b.X*n%q, b.Z*n%q
+			switch {
+			case n == 1:
+			case 2*n <= q:
+				p.Name = fmt.Sprintf("%s^%d", b.Name, n)
+			default:
+				p.Name = fmt.Sprintf("%s^-%d", b.Name, q-n)
+			}
+			out = append(out, p)
+		}
+	}
+	return out
+}

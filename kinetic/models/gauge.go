@@ -20,8 +20,8 @@ var isingGauge = Model{
 		return Hamiltonian{
 			Levels:   2,
 			Sites:    l.Axes,
-			Families: edgePlaquettes(l.Axes, p["coupling"]),
-			Tracked:  edgeLoops(l.Axes),
+			Families: edgePlaquettes(l.Axes, 2, p["coupling"]),
+			Tracked:  edgeLoops(l.Axes, 2),
 		}, nil
 	},
 }

@@ -16,6 +16,7 @@ type Model struct {
 	MaxAxes    int         // most axes
 	Parameters []Parameter // beyond the lattice
 	Classical  bool        // every term is diagonal; the bath acts by X
+	Open       bool        // it is defined between edges: every axis must be open
 	// Build returns the Hamiltonian. l has MinAxes to MaxAxes axes. A parameter
 	// that p lacks has its default.
 	Build func(l lattice.Lattice, p Values) (Hamiltonian, error)
@@ -30,7 +31,10 @@ type Parameter struct {
 	Follows string
 	// Axes is the fewest axes of a lattice on which it means something.
 	Axes int
-	Doc  string
+	// Whole says that it is a whole number, from Min to Max.
+	Whole    bool
+	Min, Max int
+	Doc      string
 }
 
 // Values are a model's parameters by name.
@@ -59,4 +63,9 @@ type Hamiltonian struct {
 	Sites    int // per cell
 	Families []kinetic.FamilySpec
 	Tracked  []kinetic.TrackedSpec
+	Absent   []kinetic.Absence
+	// Powers are those powers of X, of Z and of Y = XZ that a bath operator of
+	// that name stands for, unless a study says otherwise; each comes with its
+	// inverse. Nil is the first power.
+	Powers []int
 }

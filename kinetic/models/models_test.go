@@ -24,13 +24,28 @@ func specOf(t testing.TB, name string, size []int, open []bool, p Values) kineti
 	if err != nil {
 		t.Fatal(err)
 	}
-	s := kinetic.Spec{Lattice: l, Levels: h.Levels, Sites: h.Sites, Families: h.Families, Tracked: h.Tracked, Beta: 0.5}
+	s := kinetic.Spec{
+		Lattice: l, Levels: h.Levels, Sites: h.Sites, Families: h.Families, Tracked: h.Tracked, Absent: h.Absent, Beta: 0.5}
 	law := bath.Law{Kind: bath.HeatBath, Rate: 1}
-	s.Bath = []kinetic.BathOperator{{Name: "X", X: 1, Law: law}}
+	add := func(name string, x, z int) {
+		s.Bath = append(s.Bath, kinetic.BathOperator{Name: name, X: x, Z: z, Law: law}.Powers(h.Powers, h.Levels)...)
+	}
+	add("X", 1, 0)
 	if !m.Classical {
-		s.Bath = append(s.Bath, kinetic.BathOperator{Name: "Y", X: 1, Z: 1, Law: law}, kinetic.BathOperator{Name: "Z", Z: 1, Law: law})
+		add("Y", 1, 1)
+		add("Z", 0, 1)
 	}
 	return s
+}
+
+// edgesOf returns open axes by the bits of mask; ok is false if the model needs
+// others.
+func edgesOf(m Model, axes, mask int) (open []bool, ok bool) {
+	open = make([]bool, axes)
+	for a := range open {
+		open[a] = mask>>a&1 == 1
+	}
+	return open, !m.Open || mask == 1<<axes-1
 }
 
 // sizesOf lists small lattices of n axes, lengths 1, 2, odd and even.
@@ -77,16 +92,29 @@ func TestCommutation(t *testing.T) {
 		for axes := m.MinAxes; axes <= m.MaxAxes; axes++ {
 			for _, size := range sizesOf(axes) {
 				for mask := range 1 << axes {
-					open := make([]bool, axes)
-					for a := range open {
-						open[a] = mask>>a&1 == 1
+					open, ok := edgesOf(m, axes, mask)
+					if !ok {
+						continue
 					}
 					s := specOf(t, m.Name, size, open, Values{"next": 0.5, "field": 0.25})
 					checkCommutation(t, fmt.Sprintf("%s %v open %v", m.Name, size, open), s)
+					for q := 2; hasLevels(m) && q <= 7; q++ {
+						s := specOf(t, m.Name, size, open, Values{"levels": float64(q), "field": 0.25})
+						checkCommutation(t, fmt.Sprintf("%s %v open %v, %d levels", m.Name, size, open, q), s)
+					}
 				}
 			}
 		}
 	}
+}
+
+func hasLevels(m Model) bool {
+	for _, p := range m.Parameters {
+		if p.Name == "levels" {
+			return true
+		}
+	}
+	return false
 }
 
 func checkCommutation(t *testing.T, where string, s kinetic.Spec) {
@@ -126,10 +154,10 @@ func TestCompile(t *testing.T) {
 		}
 		for axes := m.MinAxes; axes <= m.MaxAxes; axes++ {
 			for _, size := range sizesOf(axes) {
-				for _, edges := range []bool{false, true} {
-					open := make([]bool, axes)
-					for a := range open {
-						open[a] = edges
+				for _, mask := range []int{0, 1<<axes - 1} {
+					open, ok := edgesOf(m, axes, mask)
+					if !ok {
+						continue
 					}
 					s := specOf(t, m.Name, size, open, nil)
 					if _, err := kinetic.Compile(s); err != nil {
@@ -199,12 +227,25 @@ func TestEncoded(t *testing.T) {
 		{"cluster", []int{4, 5}, 0, "same"},
 		{"cluster", []int{1, 2}, 0, "same"},
 		{"cluster", []int{64, 64}, 0, "same"},
+		{"potts", []int{5}, 1, "log_q of the q uniform states, elementary"},
+		{"potts", []int{3, 4}, 1, "same"},
+		{"clock", []int{3, 4, 2}, 1, "same"},
+		{"planar-code", []int{1, 1}, 1, "Bravyi, Kitaev, arXiv:quant-ph/9811052: one encoded qubit"},
+		{"planar-code", []int{1, 4}, 1, "same"},
+		{"planar-code", []int{2, 2}, 1, "same"},
+		{"planar-code", []int{5, 3}, 1, "same"},
+		{"planar-code", []int{40, 60}, 1, "same"},
 	} {
-		g, err := kinetic.GroundStates(specOf(t, c.name, c.size, nil, nil))
+		m, _ := Find(c.name)
+		var open []bool
+		if m.Open {
+			open = []bool{true, true}
+		}
+		g, err := kinetic.GroundStates(specOf(t, c.name, c.size, open, nil))
 		if err != nil || !g.Known || g.Encoded != c.want || !g.Satisfied || !g.Reference {
 			t.Errorf("%s %v: %+v, %v; want %v (%s)", c.name, c.size, g, err, c.want, c.source)
 		}
-		if m, _ := Find(c.name); g.Classical != m.Classical {
+		if g.Classical != m.Classical {
 			t.Errorf("%s: classical: %v", c.name, g.Classical)
 		}
 	}
@@ -258,8 +299,15 @@ func TestLogicalOperators(t *testing.T) {
 		{"x-cube", []int{2, 2, 2}, 9, 9},
 		{"x-cube", []int{3, 3, 3}, 15, 15},
 		{"x-cube", []int{2, 3, 4}, 15, 15},
+		{"planar-code", []int{2, 2}, 1, 1},
+		{"planar-code", []int{3, 4}, 1, 1},
 	} {
-		s := specOf(t, c.name, c.size, nil, nil)
+		m, _ := Find(c.name)
+		var open []bool
+		if m.Open {
+			open = []bool{true, true}
+		}
+		s := specOf(t, c.name, c.size, open, nil)
 		base, err := kinetic.GroundStates(s)
 		if err != nil {
 			t.Fatal(err)
@@ -338,6 +386,16 @@ func TestParameters(t *testing.T) {
 	m, _ = Find("x-cube")
 	if _, err := m.Build(l, nil); err == nil || !strings.Contains(err.Error(), "needs a lattice of 3 axes, not 2") {
 		t.Errorf("x-cube on two axes: %v", err)
+	}
+	m, _ = Find("planar-code")
+	if _, err := m.Build(l, nil); err == nil || !strings.Contains(err.Error(), "every axis must be open") {
+		t.Errorf("planar code on a torus: %v", err)
+	}
+	m, _ = Find("potts")
+	for _, q := range []float64{1, 2.5, 17} {
+		if _, err := m.Build(l, Values{"levels": q}); err == nil || !strings.Contains(err.Error(), "whole number from 2 to 16") {
+			t.Errorf("potts with %v levels: %v", q, err)
+		}
 	}
 	if _, ok := Find("no-such-model"); ok {
 		t.Error("found a model that is not there")

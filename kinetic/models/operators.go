@@ -3,6 +3,7 @@ package models
 import (
 	"fmt"
 
+	"sojourn/kinetic"
 	"sojourn/kinetic/lattice"
 	"sojourn/kinetic/pauli"
 )
@@ -23,20 +24,25 @@ func planes(n int) [][2]int {
 }
 
 // xs returns the X-type operator of one part per site of the cell, over Z_2.
-func xs(parts ...string) pauli.Operator {
-	p, extent := parse(parts)
+func xs(parts ...string) pauli.Operator { return xq(2, parts...) }
+
+// zs returns the Z-type operator of one part per site of the cell, over Z_2.
+func zs(parts ...string) pauli.Operator { return zq(2, parts...) }
+
+// xq and zq are xs and zs over Z_q.
+func xq(q int, parts ...string) pauli.Operator {
+	p, extent := parse(q, parts)
 	return pauli.Operator{X: p, Extent: extent}
 }
 
-// zs returns the Z-type operator of one part per site of the cell, over Z_2.
-func zs(parts ...string) pauli.Operator {
-	p, extent := parse(parts)
+func zq(q int, parts ...string) pauli.Operator {
+	p, extent := parse(q, parts)
 	return pauli.Operator{Z: p, Extent: extent}
 }
 
-func parse(parts []string) (list []pauli.Polynomial, extent [lattice.MaxAxes]bool) {
+func parse(q int, parts []string) (list []pauli.Polynomial, extent [lattice.MaxAxes]bool) {
 	for _, src := range parts {
-		p, e, err := pauli.ParsePart(src, 2, lattice.MaxAxes)
+		p, e, err := pauli.ParsePart(src, q, lattice.MaxAxes)
 		if err != nil {
 			panic(fmt.Sprintf("models: %q: %v", src, err))
 		}
@@ -46,6 +52,19 @@ func parse(parts []string) (list []pauli.Polynomial, extent [lattice.MaxAxes]boo
 		list = append(list, p)
 	}
 	return list, extent
+}
+
+// levels is the parameter q.
+func levels(otherwise int) Parameter {
+	return Parameter{Name: "levels", Default: float64(otherwise), Whole: true, Min: 2, Max: 16, Doc: "q, levels of a site"}
+}
+
+// clockShape is cos(2 pi s/q); nil, which is the same, for two levels.
+func clockShape(q int) []float64 {
+	if q == 2 {
+		return nil
+	}
+	return kinetic.ClockShape(q)
 }
 
 // only returns one part per site: part on the given site, nothing on others.

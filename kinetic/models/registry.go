@@ -2,13 +2,14 @@ package models
 
 import (
 	"fmt"
+	"math"
 
 	"sojourn/kinetic/lattice"
 )
 
 // All returns the built-in Hamiltonians in the order in which they are listed.
 func All() []Model {
-	list := []Model{ising, squarePlaquette, trianglePlaquette, isingGauge, toricCode, colourCode, xCube, cubicCode, cluster}
+	list := []Model{ising, potts, clock, squarePlaquette, trianglePlaquette, isingGauge, toricCode, planarCode, colourCode, xCube, cubicCode, cluster}
 	for i := range list {
 		list[i].Build = list[i].checked
 	}
@@ -34,18 +35,31 @@ func (m Model) checked(l lattice.Lattice, p Values) (Hamiltonian, error) {
 		}
 		return Hamiltonian{}, fmt.Errorf("the %s model needs a lattice of %s, not %d", m.Name, want, l.Axes)
 	}
+	for a := range l.Axes {
+		if m.Open && !l.Open[a] {
+			return Hamiltonian{}, fmt.Errorf("the %s model has edges: every axis must be open", m.Name)
+		}
+	}
 	for _, q := range m.Parameters {
-		if _, given := p[q.Name]; given && q.Axes > l.Axes {
+		x, given := p[q.Name]
+		if given && q.Axes > l.Axes {
 			return Hamiltonian{}, fmt.Errorf("%s means nothing on a lattice of %d axes; it needs %d", q.Name, l.Axes, q.Axes)
+		}
+		if given && q.Whole && (x != math.Trunc(x) || x < float64(q.Min) || x > float64(q.Max)) {
+			return Hamiltonian{}, fmt.Errorf("%s is %v; it must be a whole number from %d to %d", q.Name, x, q.Min, q.Max)
 		}
 	}
 	return m.Build(l, m.Resolve(p))
 }
 
-// Names lists the families and tracked operators of the model on a periodic
-// lattice of n axes.
+// Names lists the families and tracked operators of the model on a lattice of n
+// axes, periodic unless the model is open.
 func (m Model) Names(n int) (families, tracked []string) {
-	l, err := lattice.New([]int{3, 3, 3, 3}[:n], nil)
+	open := make([]bool, n)
+	for a := range open {
+		open[a] = m.Open
+	}
+	l, err := lattice.New([]int{3, 3, 3, 3}[:n], open)
 	if err != nil {
 		panic(fmt.Sprintf("models: %v", err))
 	}
