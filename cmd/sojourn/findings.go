@@ -34,3 +34,32 @@ type finding struct {
 
 // setting is a parameter and its value, as printed.
 type setting struct{ name, value string }
+
+// eachWarning visits every warning about a point.
+func eachWarning(r *analysis.Result, visit func(about string, w analysis.Warning)) {
+	eachWarningBut(r, func(*analysis.Approach) bool { return false }, visit)
+}
+
+// eachWarningBut visits the warnings about a point except those about some
+// approaches.
+func eachWarningBut(r *analysis.Result, but func(a *analysis.Approach) bool, visit func(about string, w analysis.Warning)) {
+	all := func(about string, list []analysis.Warning) {
+		for _, w := range list {
+			visit(about, w)
+		}
+	}
+	all("point", r.Warnings)
+	for i := range r.Observables {
+		all(r.Observables[i].Name, r.Observables[i].Warnings)
+	}
+	all("slow mode", r.SlowMode.Warnings)
+	for i := range r.Decay {
+		all(r.Decay[i].Of+" along "+axisName(r.Decay[i].Axis), r.Decay[i].Warnings)
+	}
+	for i := range r.Approach {
+		if but(&r.Approach[i]) {
+			continue
+		}
+		all(r.Approach[i].Observable+" from "+r.Approach[i].Start, r.Approach[i].Warnings)
+	}
+}

@@ -298,26 +298,6 @@ func writeFits(d *archive.Dir, f *findings) error {
 	return nil
 }
 
-// eachWarning visits every warning about a point.
-func eachWarning(r *analysis.Result, visit func(about string, w analysis.Warning)) {
-	all := func(about string, list []analysis.Warning) {
-		for _, w := range list {
-			visit(about, w)
-		}
-	}
-	all("point", r.Warnings)
-	for i := range r.Observables {
-		all(r.Observables[i].Name, r.Observables[i].Warnings)
-	}
-	all("slow mode", r.SlowMode.Warnings)
-	for i := range r.Decay {
-		all(r.Decay[i].Of+" along "+axisName(r.Decay[i].Axis), r.Decay[i].Warnings)
-	}
-	for i := range r.Approach {
-		all(r.Approach[i].Observable+" from "+r.Approach[i].Start, r.Approach[i].Warnings)
-	}
-}
-
 func valueErr(e analysis.Estimate) []any {
 	if !e.OK || !finite(e.Value) {
 		return []any{nil, nil}

@@ -7,19 +7,27 @@ import (
 	"sojourn/analysis"
 )
 
-// writeApproaches prints how each observable came from its prepared starts to
-// its limit: from up and down together where there are both.
-func writeApproaches(b *strings.Builder, list []analysis.Approach) {
+// shownApproaches are the approaches to equilibrium that are printed: those with
+// something to say, and from up and down together where there are both.
+func shownApproaches(list []analysis.Approach) []*analysis.Approach {
+	something := func(a *analysis.Approach) bool { return a.Time.OK || a.Tau.OK || a.Coupling.OK }
 	both := map[string]bool{}
 	for i := range list {
-		a := &list[i]
-		both[a.Observable] = both[a.Observable] || a.Start == "up-down" && (a.Time.OK || a.Tau.OK)
+		both[list[i].Observable] = both[list[i].Observable] || list[i].Start == "up-down" && something(&list[i])
 	}
+	var out []*analysis.Approach
 	for i := range list {
-		a := &list[i]
-		if both[a.Observable] && a.Start != "up-down" {
-			continue
+		if a := &list[i]; something(a) && (a.Start == "up-down" || !both[a.Observable]) {
+			out = append(out, a)
 		}
+	}
+	return out
+}
+
+// writeApproaches prints how observables came from prepared starts to their
+// limits.
+func writeApproaches(b *strings.Builder, list []analysis.Approach) {
+	for _, a := range shownApproaches(list) {
 		var parts []string
 		if a.Time.OK {
 			parts = append(parts, fmt.Sprintf("within %s %% of its limit after %s", shortest(100*a.Epsilon), estimate(a.Time)))
@@ -30,9 +38,7 @@ func writeApproaches(b *strings.Builder, list []analysis.Approach) {
 		if a.Coupling.OK {
 			parts = append(parts, "coupled after "+estimate(a.Coupling))
 		}
-		if len(parts) > 0 {
-			writeNote(b, "approach", a.Observable+" from "+a.Start+": "+strings.Join(parts, ", "))
-		}
+		writeNote(b, "approach", a.Observable+" from "+a.Start+": "+strings.Join(parts, ", "))
 	}
 }
 

@@ -108,16 +108,15 @@ func writeOverview(b *strings.Builder, f *findings) {
 				name, tau = x.Name, estimate(x.Integrated)
 			}
 		}
-		xi, mark, warnings := "", "", 0
+		xi, mark := "", ""
 		for k := range r.Decay {
 			if r.Decay[k].Xi.OK {
 				xi = estimate(r.Decay[k].Xi)
 				break
 			}
 		}
-		eachWarning(r, func(string, analysis.Warning) { warnings++ })
-		if warnings > 0 {
-			mark = strconv.Itoa(warnings)
+		if n := len(sayings(r)); n > 0 {
+			mark = strconv.Itoa(n)
 		}
 		if !r.Equilibrated {
 			mark += " not equilibrated"

@@ -37,12 +37,16 @@ func findRepeated(f *findings) *repeated {
 	return r
 }
 
-// sayings are the warnings about a point, those that say the same of several
-// things taken together.
+// sayings are the warnings about what is printed of a point, those that say the
+// same of several things taken together.
 func sayings(r *analysis.Result) []said {
 	var order []analysis.Warning
 	about := map[analysis.Warning][]string{}
-	eachWarning(r, func(what string, w analysis.Warning) {
+	shown := map[*analysis.Approach]bool{}
+	for _, a := range shownApproaches(r.Approach) {
+		shown[a] = true
+	}
+	eachWarningBut(r, func(a *analysis.Approach) bool { return !shown[a] }, func(what string, w analysis.Warning) {
 		if about[w] == nil {
 			order = append(order, w)
 		}
@@ -137,9 +141,7 @@ func warned(f *findings) int {
 	n := 0
 	for i := range f.points {
 		r := &f.points[i].result
-		k := 0
-		eachWarning(r, func(string, analysis.Warning) { k++ })
-		if k > 0 || !r.Equilibrated {
+		if len(sayings(r)) > 0 || !r.Equilibrated {
 			n++
 		}
 	}
