@@ -17,6 +17,9 @@ import (
 // is wrong; the faults are with the decoder.
 func (r *reading) point() (p Point, ok bool) {
 	l, hasLattice := r.lattice()
+	if n, ok := r.section("lattice").find("size"); ok {
+		p.SizeAt = r.d.sorted([]placed{{n.at, "lattice.size", ""}})[0]
+	}
 	var h *hamiltonian
 	hasModel := false
 	sites := 1 << 30 // any site, if the cell is not known

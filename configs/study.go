@@ -37,6 +37,7 @@ type Point struct {
 	Model       string
 	Parameters  []Setting // of a built-in model, defaults filled in
 	MaxRate     float64   // the largest rate of one bath operator
+	SizeAt      Fault     // where its lattice.size is written; without a message
 	Spec        kinetic.Spec
 	Trajectory  Trajectory
 	Observables []Observable

@@ -5,6 +5,8 @@ import (
 	"fmt"
 	"math"
 	"math/big"
+	"runtime"
+	"slices"
 
 	"sojourn/configs"
 	"sojourn/kinetic"
@@ -67,23 +69,28 @@ func prepare(p *configs.Point, available int64) (*prepared, error) {
 // prepareAll compiles every point of a study and reports all that fail.
 func prepareAll(s *configs.Study, available int64) ([]*prepared, error) {
 	points := make([]*prepared, len(s.Points))
-	var faults []error
-	for i := range s.Points {
-		q, err := prepare(&s.Points[i], available)
-		if err != nil {
-			faults = append(faults, err)
+	faults := make([]error, len(s.Points))
+	inTurns(len(points), runtime.GOMAXPROCS(0), func(i int) {
+		points[i], faults[i] = prepare(&s.Points[i], available)
+	})
+	var placed configs.Faults
+	for _, err := range faults {
+		var f configs.Faults
+		if errors.As(err, &f) && !slices.Contains(placed, f[0]) {
+			placed = append(placed, f...)
 		}
-		points[i] = q
 	}
-	if len(faults) > 0 {
-		return nil, &failure{exitBadRequest, errors.Join(faults...)}
+	if placed != nil {
+		return nil, placed
 	}
-	return points, nil
+	return points, errors.Join(faults...)
 }
 
 func tooLarge(p *configs.Point, need float64, available int64) error {
-	return badRequest("%s: one trajectory would need %s of memory, and there are %s; use a smaller lattice or a larger machine",
-		pointText(p), bytesOf(int64(math.Min(need, math.MaxInt64/2))), bytesOf(available))
+	f := p.SizeAt
+	f.Message = fmt.Sprintf("one trajectory on %s sites would need %s of memory, and there are %s; use a smaller lattice or a larger machine",
+		sizeText(p.Spec.Lattice.Lengths()), bytesOf(int64(math.Min(need, math.MaxInt64/2))), bytesOf(available))
+	return configs.Faults{f}
 }
 
 // pointText names a point for a message.
