@@ -50,7 +50,7 @@ func BenchmarkSample(b *testing.B) {
 				r.take()
 				r.tl.next()
 				r.correlator.add(r.reading)
-				r.moments.add(0, 1, r.reading)
+				r.moments.add(0, r.reading)
 			}
 			b.ReportMetric(float64(b.Elapsed().Nanoseconds())/float64(b.N)/(size*size), "ns/site")
 		})
@@ -141,15 +141,13 @@ func BenchmarkSnapshot(b *testing.B) {
 			if err != nil {
 				b.Fatal(err)
 			}
-			s := newSpatial(g, []int{l.Axes}, 4)
-			patterns := make([]uint16, g.Addresses())
-			e.Patterns(0, patterns)
+			s := newSpatial(e, g, []int{l.Axes}, 4)
 			b.ReportAllocs()
 			for b.Loop() {
-				s.add(patterns)
+				s.add()
 			}
 			b.ReportMetric(float64(b.Elapsed().Nanoseconds())/float64(b.N)/float64(g.Cells()), "ns/site")
-			b.ReportMetric(float64(len(s.points[0].d)), "displacements")
+			b.ReportMetric(float64(len(s.d)), "displacements")
 		})
 	}
 }

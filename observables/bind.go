@@ -23,9 +23,6 @@ type Request struct {
 // the magnetization is the tracked operator that is marked as the order. The
 // error joins every request that cannot be met and says what exists.
 func Bind(g *kinetic.Generator, requests []Request) ([]Observable, error) {
-	if g.Levels != 2 {
-		return nil, fmt.Errorf("observables are recorded for systems with 2 levels, not %d", g.Levels)
-	}
 	var faults []error
 	seen := make(map[string]bool)
 	out := make([]Observable, 0, len(requests))
@@ -68,6 +65,9 @@ func bind(g *kinetic.Generator, r Request) (Observable, error) {
 		o.Families, err = FamiliesOf(g, r.Family)
 		if err == nil {
 			err = equivalent(g, r.Family, o.Families)
+		}
+		if err == nil && disordered(g, o.Families) {
+			err = fmt.Errorf("the couplings of family %q differ from term to term, and so do the means of its terms; use kind terms", r.Family)
 		}
 		if err == nil && !g.Lattice.Periodic() && len(sublattice(g, o.Families)) == 0 {
 			err = fmt.Errorf("family %q has no term in the middle of the lattice, where single terms are read if there are edges", r.Family)
@@ -163,6 +163,19 @@ func equivalent(g *kinetic.Generator, name string, families []int) error {
 	}
 	return fmt.Errorf("the families of group %q may have different means on this lattice; ask for one of them: %s",
 		name, strings.Join(names, ", "))
+}
+
+// disordered reports whether the energies of a family differ from term to term.
+func disordered(g *kinetic.Generator, families []int) bool {
+	for _, f := range families {
+		if f >= len(g.Spec.Families) {
+			continue // tracked
+		}
+		if s := &g.Spec.Families[f]; s.Signs != nil || s.Couplings != nil {
+			return true
+		}
+	}
+	return false
 }
 
 // inventory lists what can be observed, in words.

@@ -45,13 +45,13 @@ func TestBytes(t *testing.T) {
 		for k := range min(c.plan.Samples(), 3000) {
 			r.tl.next()
 			r.correlator.add(r.reading)
-			r.moments.add(int(k%MomentSegments), c.lanes, r.reading)
+			r.moments.add(int(k%MomentSegments), r.reading)
 		}
 		for s := range PairSegments {
 			r.dirichlet.add(s)
 		}
 		if r.spatial != nil {
-			r.spatial.add(r.patterns)
+			r.spatial.add()
 		}
 		u := r.unit(Label{})
 		took := heap() - before

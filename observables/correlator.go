@@ -1,10 +1,8 @@
 package observables
 
-import "math/bits"
-
-// correlator accumulates the pairs of samples of all channels and bit tracks of
-// a reading. A channel is a series of numbers; a track is a series of bit
-// vectors, whose products are counts of agreeing bits.
+// correlator accumulates the pairs of samples of all channels and tracks of a
+// reading. A channel is a series of numbers; a track is a series of vectors,
+// whose products are summed over components.
 //
 // Each lane has a history of its own; sums are pooled over lanes.
 type correlator struct {
@@ -20,32 +18,26 @@ type correlator struct {
 	tracks []trackHistory
 }
 
-// trackHistory is the history of one bit track.
-type trackHistory struct {
-	words   int
-	history []uint64 // place, lane, word
-	ones    []int64  // place, lane: number of bits set
-	sums    []bitSums
+// trackHistory accumulates the pairs of one track.
+type trackHistory interface {
+	add(tl *timeline, r *reading)
+	// pair returns the sums over all pairs, and over components.
+	pair(place int) pairSums
 }
 
-// bitSums counts over pairs the bits set in the first and the second vector,
-// and those in which they differ.
-type bitSums struct{ first, again, differ int64 }
-
-func newCorrelator(tl *timeline, lanes, channels int, pairs [][2]int, words []int) *correlator {
+func newCorrelator(tl *timeline, r *reading, pairs [][2]int) *correlator {
 	c := &correlator{
-		tl: tl, lanes: lanes, channels: channels, pairs: pairs,
-		history: make([]float64, tl.places()*lanes*channels),
+		tl: tl, lanes: r.lanes, channels: r.channels, pairs: pairs,
+		history: make([]float64, tl.places()*r.lanes*r.channels),
 		sums:    make([]pairSums, PairSegments*len(tl.lags)*len(pairs)),
-		shift:   make([]float64, channels),
+		shift:   make([]float64, r.channels),
 	}
-	for _, w := range words {
-		c.tracks = append(c.tracks, trackHistory{
-			words:   w,
-			history: make([]uint64, tl.places()*lanes*w),
-			ones:    make([]int64, tl.places()*lanes),
-			sums:    make([]bitSums, PairSegments*len(tl.lags)),
-		})
+	for i := range r.tracks {
+		if r.g.Levels == 2 {
+			c.tracks = append(c.tracks, newBitHistory(tl, r, i))
+		} else {
+			c.tracks = append(c.tracks, newLevelHistory(tl, r, i))
+		}
 	}
 	return c
 }
@@ -53,17 +45,17 @@ func newCorrelator(tl *timeline, lanes, channels int, pairs [][2]int, words []in
 // add takes in the sample that the timeline has just noted.
 func (c *correlator) add(r *reading) {
 	if c.channels > 0 {
+		if c.tl.t == 1 {
+			copy(c.shift, r.origins())
+		}
 		c.addChannels(r.values)
 	}
-	for i := range c.tracks {
-		c.tracks[i].add(c.tl, c.lanes, r.bits[i], r.ones[i])
+	for _, t := range c.tracks {
+		t.add(c.tl, r)
 	}
 }
 
 func (c *correlator) addChannels(values []float64) {
-	if c.tl.t == 1 {
-		copy(c.shift, values[:c.channels])
-	}
 	width := c.lanes * c.channels
 	for _, place := range c.tl.stores {
 		at := c.history[int(place)*width:][:width]
@@ -93,39 +85,6 @@ func (c *correlator) addChannels(values []float64) {
 	}
 }
 
-func (t *trackHistory) add(tl *timeline, lanes int, vector []uint64, ones []int64) {
-	width := lanes * t.words
-	for _, place := range tl.stores {
-		copy(t.history[int(place)*width:], vector[:width])
-		copy(t.ones[int(place)*lanes:], ones[:lanes])
-	}
-	for _, v := range tl.visits {
-		s := &t.sums[int(v.segment)*len(tl.lags)+int(v.lag)]
-		for lane := range lanes {
-			s.first += t.ones[int(v.first)*lanes+lane]
-			s.again += t.ones[int(v.again)*lanes+lane]
-		}
-		if v.first != v.again {
-			s.differ += differ(t.history[int(v.first)*width:][:width], t.history[int(v.again)*width:][:width])
-		}
-	}
-}
-
-// differ counts the bits in which two vectors of equal length differ.
-func differ(a, b []uint64) int64 {
-	n := 0
-	b = b[:len(a)]
-	for len(a) >= 4 && len(b) >= 4 {
-		n += bits.OnesCount64(a[0]^b[0]) + bits.OnesCount64(a[1]^b[1]) +
-			bits.OnesCount64(a[2]^b[2]) + bits.OnesCount64(a[3]^b[3])
-		a, b = a[4:], b[4:]
-	}
-	for i, w := range a {
-		n += bits.OnesCount64(w ^ b[i])
-	}
-	return int64(n)
-}
-
 // channelPair returns the sums over pairs of channel pair p, and how many pairs
 // there are.
 func (c *correlator) channelPair(segment, lag, p int) (n int64, s pairSums) {
@@ -139,11 +98,10 @@ func (c *correlator) channelPair(segment, lag, p int) (n int64, s pairSums) {
 }
 
 // trackPair returns the sums over pairs of track i with itself, as means over
-// its components: eigenvalues 1 - 2 bit.
+// its components.
 func (c *correlator) trackPair(segment, lag, i, components int) (n int64, s pairSums) {
 	n = c.tl.origins[segment][lag] * int64(c.lanes)
-	t := c.tracks[i].sums[segment*len(c.tl.lags)+lag]
-	all := n * int64(components)
-	mean := func(ones int64) float64 { return float64(all-2*ones) / float64(components) }
-	return n, pairSums{f: mean(t.first), g: mean(t.again), fg: mean(t.differ)}
+	s = c.tracks[i].pair(segment*len(c.tl.lags) + lag)
+	k := float64(components)
+	return n, pairSums{s.f / k, s.g / k, s.fg / k}
 }

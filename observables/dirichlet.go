@@ -1,10 +1,7 @@
 package observables
 
 import (
-	"slices"
-
 	"sojourn/kinetic"
-	"sojourn/kinetic/lattice"
 )
 
 // dirichlet sums the Dirichlet form
@@ -14,30 +11,31 @@ import (
 // of pairs of observables over states, with the true increments of each jump. A
 // seat's rates and increments depend on its shape and pattern alone, so the
 // form of a state is its census contracted with a weight for each shape and
-// pattern, computed when that entry is first seen:
-//
-//   - scalars: increments of the family sums and of the energy;
-//   - Fourier: |sum_b Delta s_b exp(i k.d_b)|^2 over the slots b of the move, d_b
-//     the term's offset from the seat;
-//   - Local on a periodic lattice: 4 for each term of the family that the move
-//     turns over, divided by the number of terms: the mean over all terms, which
-//     equals that over the chosen ones in expectation and is less noisy;
-//   - Operator: 4 for each position that the move turns over, divided by the
-//     number of positions.
+// pattern, computed when that entry is first seen. Where couplings vary in size
+// rates depend on the place, and the form is summed over the seats.
 //
 // On a lattice with open edges a Local observable reads chosen terms only, and
-// so does its form: it is summed over the seats that show them.
+// so does its form: it is summed over the seats that show them, in one lane in
+// rotation that stands for all.
+//
+// The form of an Operator observable is known for two levels only: with more it
+// depends on the operator's level, which no pattern has.
 type dirichlet struct {
 	e     kinetic.Engine
 	g     *kinetic.Generator
 	r     *reading
 	pairs [][2]int // of observables
+	apart []bool   // by pair: it is not summed over all seats
+	jumps *increments
 
 	census  []int64
-	index   []int32   // census entry -> 1 + place in weights, 0 if not yet seen
-	weights []float64 // place, pair
+	index   []int32            // census entry -> 1 + place in weights or steps, 0 if not yet seen
+	weights []float64          // place, pair; without varying couplings
+	steps   []float64          // place, move, observable; with them
+	rates   *kinetic.MoveRates // nil without
+	shapes  []uint16           // by address, with varying couplings
 	open    []openLocal
-	local   []bool // by pair: whether it is summed over open
+	lane    int // the next of the rotation
 
 	sums     []float64 // segment, pair
 	count    [PairSegments]int64
@@ -60,20 +58,30 @@ type shown struct {
 
 func newDirichlet(e kinetic.Engine, g *kinetic.Generator, r *reading, pairs [][2]int) *dirichlet {
 	d := &dirichlet{
-		e: e, g: g, r: r, pairs: pairs,
+		e: e, g: g, r: r, pairs: pairs, jumps: newIncrements(g, r),
 		census: make([]int64, len(g.Shapes)<<g.Bits),
 		index:  make([]int32, len(g.Shapes)<<g.Bits),
-		local:  make([]bool, len(pairs)),
+		apart:  make([]bool, len(pairs)),
 		sums:   make([]float64, PairSegments*len(pairs)),
 	}
-	if g.Lattice.Periodic() {
-		return d
-	}
 	for p, pair := range pairs {
-		if s := &r.layout[pair[0]]; s.Kind == Local {
-			d.local[p] = true
+		s := &r.layout[pair[0]]
+		switch {
+		case s.Kind == Local && !g.Lattice.Periodic():
+			d.apart[p] = true
 			d.open = append(d.open, newOpenLocal(g, p, r.tracks[s.track].chosen))
-			d.patterns = r.patterns
+		case s.Kind == Operator && g.Levels > 2:
+			d.apart[p] = true
+		}
+	}
+	if d.open != nil || g.Couplings != nil {
+		d.patterns = make([]uint16, g.Addresses())
+	}
+	if g.Couplings != nil {
+		d.rates = g.MoveRates()
+		d.shapes = make([]uint16, g.Addresses())
+		for a := range d.shapes {
+			d.shapes[a] = g.Places[g.PlaceOf(a)].Shape
 		}
 	}
 	return d
@@ -90,15 +98,41 @@ func newOpenLocal(g *kinetic.Generator, pair int, chosen []chosenTerm) openLocal
 	return o
 }
 
+// known reports whether the form of a pair is recorded.
+func (d *dirichlet) known(p int) bool {
+	return d.g.Levels == 2 || d.r.layout[d.pairs[p][0]].Kind != Operator
+}
+
 // add takes in the present state of all lanes.
 func (d *dirichlet) add(segment int) {
 	n := len(d.pairs)
 	if n == 0 {
 		return
 	}
+	sums := d.sums[segment*n:][:n]
+	if d.rates == nil {
+		d.addCensus(sums)
+	} else {
+		for lane := range d.r.lanes {
+			d.e.Patterns(lane, d.patterns)
+			d.addSeats(sums)
+		}
+	}
+	if d.open != nil {
+		d.e.Patterns(d.lane, d.patterns)
+		d.lane = (d.lane + 1) % d.r.lanes
+		for i := range d.open {
+			sums[d.open[i].pair] += float64(d.r.lanes) * d.form(&d.open[i])
+		}
+	}
+	d.count[segment] += int64(d.r.lanes)
+}
+
+// addCensus sums over shapes and patterns.
+func (d *dirichlet) addCensus(sums []float64) {
 	clear(d.census)
 	d.e.Census(d.census)
-	sums := d.sums[segment*n:][:n]
+	n := len(d.pairs)
 	for entry, seats := range d.census {
 		if seats == 0 {
 			continue
@@ -113,119 +147,85 @@ func (d *dirichlet) add(segment int) {
 			sums[p] += float64(seats) * w
 		}
 	}
-	for lane := 0; lane < d.r.lanes && len(d.open) > 0; lane++ {
-		d.e.Patterns(lane, d.patterns)
-		for i := range d.open {
-			sums[d.open[i].pair] += d.open[i].form(d.g, d.patterns)
-		}
-	}
-	d.count[segment] += int64(d.r.lanes)
-}
-
-// form returns the mean over the chosen terms of E(s, s) = 1/2 sum r 4.
-func (o *openLocal) form(g *kinetic.Generator, patterns []uint16) float64 {
-	sum := 0.0
-	for _, at := range o.shown {
-		shape := &g.Shapes[at.shape]
-		p := int(patterns[at.address])
-		for m := range shape.Rate {
-			if turns(g, shape, m, int(at.slot)) {
-				sum += 2 * shape.Rate[m][p]
-			}
-		}
-	}
-	return sum / float64(o.components)
-}
-
-// turns reports whether move m of a shape turns over the term in a slot: only
-// then does the level of that slot decide how the sum of its family changes.
-func turns(g *kinetic.Generator, s *kinetic.Shape, m, slot int) bool {
-	n := len(g.Families)
-	f := g.Seats[s.Seat].Slots[slot].Family
-	return s.Present>>slot&1 == 1 && s.Delta[(m<<g.Bits|1<<slot)*n+f] != s.Delta[(m<<g.Bits)*n+f]
 }
 
 // weigh returns the forms of all pairs for one seat of the given shape and
 // pattern.
 func (d *dirichlet) weigh(entry int) []float64 {
-	g := d.g
-	shape := &g.Shapes[entry>>g.Bits]
-	pattern := entry & (1<<g.Bits - 1)
+	shape, pattern := entry>>d.g.Bits, entry&(1<<d.g.Bits-1)
 	w := make([]float64, len(d.pairs))
-	for m := range shape.Rate {
-		rate := shape.Rate[m][pattern]
-		if rate == 0 {
-			continue
-		}
-		for p, pair := range d.pairs {
-			if !d.local[p] {
-				w[p] += rate / 2 * d.product(shape, m, pattern, pair)
-			}
+	steps := make([]float64, len(d.r.layout))
+	for m := range d.g.Shapes[shape].Rate {
+		if rate := d.g.Shapes[shape].Rate[m][pattern]; rate > 0 {
+			d.jumps.of(steps, shape, m, pattern)
+			d.accumulate(w, rate, steps)
 		}
 	}
 	return w
 }
 
-// product returns (Delta f)(Delta g) of a move.
-func (d *dirichlet) product(s *kinetic.Shape, m, pattern int, pair [2]int) float64 {
-	f, g := &d.r.layout[pair[0]], &d.r.layout[pair[1]]
-	switch f.Kind {
-	case Fourier:
-		a := d.amplitude(s, m, pattern, f)
-		return real(a)*real(a) + imag(a)*imag(a)
-	case Local:
-		terms := 0
-		for _, family := range f.Families {
-			terms += d.g.Families[family].Terms
+// accumulate adds rate/2 times the products of the increments of a jump.
+func (d *dirichlet) accumulate(sums []float64, rate float64, steps []float64) {
+	for p, pair := range d.pairs {
+		switch {
+		case d.apart[p]:
+		case d.r.layout[pair[0]].Scalar():
+			sums[p] += rate / 2 * steps[pair[0]] * steps[pair[1]]
+		default:
+			sums[p] += rate / 2 * steps[pair[0]]
 		}
-		n := 0
-		for b, slot := range d.g.Seats[s.Seat].Slots {
-			if slices.Contains(f.Families, slot.Family) && turns(d.g, s, m, b) {
-				n++
+	}
+}
+
+// addSeats sums over the seats of one lane.
+func (d *dirichlet) addSeats(sums []float64) {
+	n := len(d.r.layout)
+	steps := make([]float64, n)
+	for a, shape := range d.shapes {
+		pattern := d.patterns[a]
+		entry := int(shape)<<d.g.Bits | int(pattern)
+		moves := len(d.g.Shapes[shape].Rate)
+		if d.index[entry] == 0 {
+			for m := range moves {
+				d.jumps.of(steps, int(shape), m, int(pattern))
+				d.steps = append(d.steps, steps...)
 			}
+			d.index[entry] = int32(len(d.steps)/n-moves) + 1
 		}
-		return 4 * float64(n) / float64(terms)
-	case Operator:
-		return 4 * float64(s.LineHits[m][f.Line]) / float64(d.r.components(pair[0]))
+		at := int(d.index[entry]-1) * n
+		for m := range moves {
+			rate, change := d.rates.Rate(a, shape, m, pattern)
+			if rate == 0 {
+				continue
+			}
+			copy(steps, d.steps[at+m*n:][:n])
+			for o := range steps {
+				if d.r.layout[o].Kind == Energy {
+					steps[o] = change
+				}
+			}
+			d.accumulate(sums, rate, steps)
+		}
 	}
-	return d.increment(s, m, pattern, f) * d.increment(s, m, pattern, g)
 }
 
-// increment returns the change of a scalar by a move.
-func (d *dirichlet) increment(s *kinetic.Shape, m, pattern int, o *slot) float64 {
-	families := len(d.g.Families)
-	delta := s.Delta[(m<<d.g.Bits|pattern)*families:][:families]
-	if o.Kind != Energy {
-		n := 0
-		for _, f := range o.Families {
-			n += int(delta[f])
+// form returns the mean over the chosen terms of E(s, s).
+func (d *dirichlet) form(o *openLocal) float64 {
+	sum := 0.0
+	for _, at := range o.shown {
+		shape := &d.g.Shapes[at.shape]
+		p := d.patterns[at.address]
+		for m := range shape.Rate {
+			step := d.jumps.slot(int(at.shape), m, int(at.slot), int(p))
+			if step == 0 {
+				continue
+			}
+			rate := shape.Rate[m][p]
+			if d.rates != nil {
+				rate, _ = d.rates.Rate(int(at.address), at.shape, m, p)
+			}
+			sum += rate / 2 * step * step
 		}
-		return float64(n)
 	}
-	change := 0.0
-	for f, n := range delta {
-		if e := d.g.Families[f].Energy; e != nil {
-			// A term that goes from -1 to +1 adds 2 to the sum and
-			// E(0) - E(1) to the energy.
-			change += float64(n) / 2 * (e[0] - e[1])
-		}
-	}
-	return change
-}
-
-// amplitude returns the change of a Fourier amplitude by a move, up to the
-// phase of the seat's cell.
-func (d *dirichlet) amplitude(s *kinetic.Shape, m, pattern int, o *slot) complex128 {
-	var sum complex128
-	for b, slot := range d.g.Seats[s.Seat].Slots {
-		if !slices.Contains(o.Families, slot.Family) || !turns(d.g, s, m, b) {
-			continue
-		}
-		phase := complex(float64(4*(pattern>>b&1)-2), 0)
-		for a := range lattice.MaxAxes {
-			phase *= turn(o.Wavevector[a]*slot.Offset[a], d.g.Lattice.Size[a])
-		}
-		sum += phase
-	}
-	return sum
+	return sum / float64(o.components)
 }

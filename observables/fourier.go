@@ -9,7 +9,7 @@ import (
 	"sojourn/kinetic/lattice"
 )
 
-// amplitude computes the Fourier amplitude of the terms on a plane,
+// bitAmplitude computes the Fourier amplitude of the terms on a plane,
 //
 //	f = sum_r s_r exp(i k.(r - c)),   k_a = 2 pi n_a/L_a,
 //
@@ -20,7 +20,8 @@ import (
 // With b_r the bit of a term, f = sum exp - 2 sum_{b_r=1} exp: the first is
 // fixed, the second is summed row by row, eight cells at a time from a table of
 // the 256 partial sums.
-type amplitude struct {
+type bitAmplitude struct {
+	plane  *termPlane
 	along  bool // whether k has a component along the rows
 	all    complex128
 	rows   []complex128 // phase of a row, with -2 and the centre in it
@@ -30,26 +31,16 @@ type amplitude struct {
 	flat   bool         // whether all rows have the same phase
 }
 
-func newAmplitude(g *kinetic.Generator, family int, t *termPlane, k lattice.Offset) *amplitude {
+func newBitAmplitude(g *kinetic.Generator, family int, t *termPlane, k lattice.Offset) *bitAmplitude {
 	size := g.Lattice.Size
-	lo, hi := extent(g, family)
-	center := complex128(1)
-	for a := range k {
-		if g.Lattice.Open[a] {
-			center *= cmplx.Conj(turn(k[a]*(lo[a]+hi[a]), 2*size[a]))
-		}
-	}
-	f := &amplitude{along: k[0]%size[0] != 0, flat: true}
+	center := middlePhase(g, family, k)
+	f := &bitAmplitude{plane: t, along: k[0]%size[0] != 0, flat: true}
 	inRow := make([]complex128, t.length)
 	for x := range inRow {
 		inRow[x] = turn(k[0]*x, size[0])
 	}
 	for r := range t.rows {
-		c := g.Lattice.Coord(r * t.length)
-		phase := center
-		for a := 1; a < lattice.MaxAxes; a++ {
-			phase *= turn(k[a]*c[a], size[a])
-		}
+		phase := center * cellPhase(g.Lattice, k, g.Lattice.Coord(r*t.length))
 		f.rows = append(f.rows, -2*phase)
 		f.flat = f.flat && phase == f.rows[0]/-2
 		present := t.present.row(r)
@@ -76,6 +67,27 @@ func newAmplitude(g *kinetic.Generator, family int, t *termPlane, k lattice.Offs
 	return f
 }
 
+// middlePhase returns exp(-i k.c).
+func middlePhase(g *kinetic.Generator, family int, k lattice.Offset) complex128 {
+	lo, hi := extent(g, family)
+	phase := complex128(1)
+	for a := range k {
+		if g.Lattice.Open[a] {
+			phase *= cmplx.Conj(turn(k[a]*(lo[a]+hi[a]), 2*g.Lattice.Size[a]))
+		}
+	}
+	return phase
+}
+
+// cellPhase returns exp(i k.r).
+func cellPhase(l lattice.Lattice, k, r lattice.Offset) complex128 {
+	phase := complex128(1)
+	for a := range k {
+		phase *= turn(k[a]*r[a], l.Size[a])
+	}
+	return phase
+}
+
 // turn returns exp(2 pi i n/length), exact at multiples of a quarter turn.
 func turn(n, length int) complex128 {
 	n = (n%length + length) % length
@@ -94,17 +106,17 @@ func turn(n, length int) complex128 {
 }
 
 // of returns the amplitude of the plane as it was last read.
-func (f *amplitude) of(t *termPlane) complex128 {
+func (f *bitAmplitude) of() complex128 {
 	switch {
 	case !f.along:
-		return f.all + f.byRows(t)
+		return f.all + f.byRows(f.plane)
 	case f.flat:
-		return f.all + f.byColumns(t)
+		return f.all + f.byColumns(f.plane)
 	}
-	return f.all + f.general(t)
+	return f.all + f.general(f.plane)
 }
 
-func (f *amplitude) byRows(t *termPlane) complex128 {
+func (f *bitAmplitude) byRows(t *termPlane) complex128 {
 	var sum complex128
 	for r, phase := range f.rows {
 		n := 0
@@ -116,7 +128,7 @@ func (f *amplitude) byRows(t *termPlane) complex128 {
 	return sum
 }
 
-func (f *amplitude) byColumns(t *termPlane) complex128 {
+func (f *bitAmplitude) byColumns(t *termPlane) complex128 {
 	clear(f.column)
 	for r := range f.rows {
 		f.octetsOf(t.row(r))
@@ -129,7 +141,7 @@ func (f *amplitude) byColumns(t *termPlane) complex128 {
 }
 
 // octetsOf adds the table's sum for each octet of a row to its column.
-func (f *amplitude) octetsOf(row []uint64) {
+func (f *bitAmplitude) octetsOf(row []uint64) {
 	column := f.column
 	for _, w := range row {
 		if len(column) < 8 {
@@ -148,7 +160,7 @@ func (f *amplitude) octetsOf(row []uint64) {
 	}
 }
 
-func (f *amplitude) general(t *termPlane) complex128 {
+func (f *bitAmplitude) general(t *termPlane) complex128 {
 	var sum complex128
 	for r, phase := range f.rows {
 		var re, im float64
@@ -163,6 +175,43 @@ func (f *amplitude) general(t *termPlane) complex128 {
 			octets = octets[min(8, len(octets)):]
 		}
 		sum += complex(re, im) * phase
+	}
+	return sum
+}
+
+// levelAmplitude computes the Fourier amplitude of terms with more than two
+// levels, whose eigenvalues enter with their real part.
+type levelAmplitude struct {
+	levels  []uint8 // by cell
+	length  int
+	rows    []complex128 // phase of a row
+	columns []complex128 // phase within a row
+	value   [256]float64 // by level; 0 for a term that is absent
+}
+
+func newLevelAmplitude(g *kinetic.Generator, family int, levels []uint8, k lattice.Offset) *levelAmplitude {
+	f := &levelAmplitude{levels: levels, length: g.Lattice.Size[0]}
+	copy(f.value[:], eigenvalues(g.Levels))
+	center := middlePhase(g, family, k)
+	for c := 0; c < g.Cells(); c += f.length {
+		f.rows = append(f.rows, center*cellPhase(g.Lattice, k, g.Lattice.Coord(c)))
+	}
+	for x := range f.length {
+		f.columns = append(f.columns, turn(k[0]*x, f.length))
+	}
+	return f
+}
+
+func (f *levelAmplitude) of() complex128 {
+	var sum complex128
+	for r, phase := range f.rows {
+		var re, im float64
+		for x, s := range f.levels[r*f.length:][:f.length] {
+			v := f.value[s]
+			re += v * real(f.columns[x])
+			im += v * imag(f.columns[x])
+		}
+		sum += phase * complex(re, im)
 	}
 	return sum
 }

@@ -5,8 +5,16 @@ import (
 	"sojourn/kinetic/lattice"
 )
 
-// MaxLocal is the largest number of terms that a Local observable reads.
+// MaxLocal is the largest number of terms that a Local observable reads: a
+// quarter of it where terms have more than two levels.
 const MaxLocal = 4096
+
+func localLimit(g *kinetic.Generator) int {
+	if g.Levels > 2 {
+		return MaxLocal / 4
+	}
+	return MaxLocal
+}
 
 // sublattice chooses the cells whose terms a Local observable reads: a grid of
 // at most MaxLocal/len(families) cells for each family, spread evenly. Along an
@@ -16,17 +24,18 @@ const MaxLocal = 4096
 // All chosen terms of a family are images of each other under translations.
 func sublattice(g *kinetic.Generator, families []int) []chosenTerm {
 	var out []chosenTerm
+	limit := localLimit(g) / len(families)
 	for _, f := range families {
 		loc := newLocator(g, f)
 		lo, hi := extent(g, f)
 		var count lattice.Offset
 		for a, n := range g.Lattice.Size {
-			count[a] = min(n, MaxLocal)
+			count[a] = min(n, limit)
 			if g.Lattice.Open[a] {
 				count[a] = 1
 			}
 		}
-		for product(count) > MaxLocal/len(families) {
+		for product(count) > limit {
 			largest := 0
 			for a := range count {
 				if count[a] > count[largest] {
@@ -82,29 +91,4 @@ func extent(g *kinetic.Generator, f int) (lo, hi lattice.Offset) {
 		}
 	}
 	return lo, hi
-}
-
-// localTrack gathers the chosen terms into a bit vector.
-type localTrack struct{ terms []spot }
-
-func newLocalTrack(chosen []chosenTerm) localTrack {
-	t := localTrack{terms: make([]spot, len(chosen))}
-	for i := range chosen {
-		t.terms[i] = chosen[i].spot
-	}
-	return t
-}
-
-// gather writes the levels into dst, 64 to a word.
-func (t localTrack) gather(dst []uint64, patterns []uint16) {
-	terms := t.terms
-	for w := range dst {
-		n := min(64, len(terms))
-		var word uint64
-		for i, s := range terms[:n] {
-			word |= s.level(patterns) << (i & 63)
-		}
-		dst[w] = word
-		terms = terms[n:]
-	}
 }

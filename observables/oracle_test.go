@@ -2,6 +2,7 @@ package observables
 
 import (
 	"context"
+	"errors"
 	"fmt"
 	"math"
 	"testing"
@@ -17,13 +18,28 @@ import (
 // bundle runs several engines as the lanes of one.
 type bundle struct{ lanes []kinetic.Engine }
 
+// newBundle starts an engine at random: the class or composition engine, several
+// of them as a bundle, or for 64 lanes the lane engine.
 func newBundle(t testing.TB, g *kinetic.Generator, lanes int, seed byte) kinetic.Engine {
 	t.Helper()
 	b := &bundle{}
+	start := kinetic.NewClasses
+	switch {
+	case lanes == 64:
+		start = kinetic.NewLanes
+	case g.Couplings != nil:
+		start = kinetic.NewComposition
+	}
 	for i := range lanes {
-		e, err := kinetic.NewClasses(g, [32]byte{seed}, i, kinetic.StartRandom)
+		e, err := start(g, [32]byte{seed}, i, kinetic.StartRandom)
+		if limit := (*kinetic.LaneLimit)(nil); errors.As(err, &limit) {
+			t.Skip(err)
+		}
 		if err != nil {
 			t.Fatal(err)
+		}
+		if lanes == 64 {
+			return e
 		}
 		b.lanes = append(b.lanes, e)
 	}
@@ -96,16 +112,25 @@ func levelsOf(g *kinetic.Generator, e kinetic.Engine, lane int) [][]uint8 {
 	return out
 }
 
-// part is one term or position in a component, and its weight there.
+// part is one term or position in a component, and what it adds by its level.
 type part struct {
 	row, at int // in the levels
-	weight  float64
+	value   []float64
 }
 
-// plainly is an observable as weights of terms, by component.
+// plainly is an observable as a sum over terms, by component.
 type plainly struct {
 	components [][]part
 	norm       float64
+}
+
+// scaled returns weight*cos(2 pi s/q), by level s.
+func scaled(q int, weight float64) []float64 {
+	out := make([]float64, q)
+	for s := range out {
+		out[s] = weight * math.Cos(2*math.Pi*float64(s)/float64(q))
+	}
+	return out
 }
 
 func plain(g *kinetic.Generator, o Observable, levels [][]uint8) plainly {
@@ -119,26 +144,30 @@ func plain(g *kinetic.Generator, o Observable, levels [][]uint8) plainly {
 			}
 		}
 	}
+	single := func(row, at int) { p.components = append(p.components, []part{{row, at, scaled(g.Levels, 1)}}) }
 	switch o.Kind {
-	case Energy, Magnetization, Terms:
-		families, one := o.Families, []part{}
+	case Energy:
+		p.components = [][]part{nil}
 		for f := range g.Families {
-			if o.Kind == Energy && g.Families[f].Energy != nil {
-				families = append(families, f)
+			if g.Families[f].Energy == nil {
+				continue
 			}
+			each([]int{f}, func(row, at int) {
+				value := g.Families[f].Energy
+				if g.Couplings != nil {
+					j := float64(g.Couplings.J[f][at]) * g.Couplings.Unit
+					value = []float64{-j, j}
+				}
+				p.components[0] = append(p.components[0], part{row, at, value})
+			})
 		}
-		each(families, func(row, at int) {
-			weight := 1.0
-			if o.Kind == Energy {
-				weight = g.Families[row].Energy[0]
-			}
-			one = append(one, part{row, at, weight})
+	case Magnetization, Terms:
+		p.components = [][]part{nil}
+		each(o.Families, func(row, at int) {
+			p.components[0] = append(p.components[0], part{row, at, scaled(g.Levels, 1)})
 		})
-		p.components = [][]part{one}
 	case Operator:
-		each([]int{len(g.Families) + o.Line}, func(row, at int) {
-			p.components = append(p.components, []part{{row, at, 1}})
-		})
+		each([]int{len(g.Families) + o.Line}, single)
 		p.norm = float64(len(p.components))
 	case Local:
 		for _, f := range o.Families {
@@ -149,7 +178,7 @@ func plain(g *kinetic.Generator, o Observable, levels [][]uint8) plainly {
 						return
 					}
 				}
-				p.components = append(p.components, []part{{row, at, 1}})
+				single(row, at)
 			})
 		}
 		p.norm = float64(len(p.components))
@@ -166,8 +195,8 @@ func plain(g *kinetic.Generator, o Observable, levels [][]uint8) plainly {
 					}
 					phase += 2 * math.Pi * float64(o.Wavevector[a]) / float64(g.Lattice.Size[a]) * from
 				}
-				p.components[0] = append(p.components[0], part{row, at, math.Cos(phase)})
-				p.components[1] = append(p.components[1], part{row, at, math.Sin(phase)})
+				p.components[0] = append(p.components[0], part{row, at, scaled(g.Levels, math.Cos(phase))})
+				p.components[1] = append(p.components[1], part{row, at, scaled(g.Levels, math.Sin(phase))})
 			})
 		}
 	default:
@@ -194,7 +223,7 @@ func (p plainly) values(levels [][]uint8) []float64 {
 	out := make([]float64, len(p.components))
 	for i, c := range p.components {
 		for _, t := range c {
-			out[i] += t.weight * (1 - 2*float64(levels[t.row][t.at]))
+			out[i] += t.value[levels[t.row][t.at]]
 		}
 	}
 	return out
@@ -204,7 +233,7 @@ func (p plainly) values(levels [][]uint8) []float64 {
 func everything(t testing.TB, g *kinetic.Generator) []Observable {
 	t.Helper()
 	requests := []Request{{Name: "energy", Kind: Energy}}
-	for _, f := range g.Families {
+	for i, f := range g.Families {
 		if f.Terms == 0 {
 			continue
 		}
@@ -217,11 +246,13 @@ func everything(t testing.TB, g *kinetic.Generator) []Observable {
 		}
 		requests = append(requests,
 			Request{Name: "terms-" + f.Name, Kind: Terms, Family: f.Name},
-			Request{Name: "local-" + f.Name, Kind: Local, Family: f.Name},
 			Request{Name: "fourier-" + f.Name, Kind: Fourier, Family: f.Name, Wavevector: k},
 			Request{Name: "along-" + f.Name, Kind: Fourier, Family: f.Name, Wavevector: lattice.Offset{1}},
 			Request{Name: "uniform-" + f.Name, Kind: Fourier, Family: f.Name},
 		)
+		if !disordered(g, []int{i}) {
+			requests = append(requests, Request{Name: "local-" + f.Name, Kind: Local, Family: f.Name})
+		}
 		if g.Lattice.Axes > 1 {
 			requests = append(requests, Request{Name: "across-" + f.Name, Kind: Fourier, Family: f.Name, Wavevector: lattice.Offset{0, 1}})
 		}
@@ -284,9 +315,27 @@ func cases(t testing.TB) map[string]*kinetic.Generator {
 		"toric 3 x 2, X":   kinetictest.ToricCode(kinetictest.Lattice(3, 2), 0.7, "X", law, "z"),
 		"planar 5 x 4":     kinetictest.ToricCode(opened(kinetictest.Lattice(5, 4), 0, 1), 0.7, "XZ", law, ""),
 	}
-	for i := range uint64(10) {
+	for i := range uint64(8) {
 		specs[fmt.Sprint("random ", i)] = kinetictest.RandomSpec(i+1, kinetictest.Larger)
 	}
+	for _, q := range []int{3, 4, 6} {
+		specs[fmt.Sprintf("Potts %d, 5 x 4", q)] = kinetictest.Potts(q, kinetictest.Lattice(5, 4), 0.5, law)
+		specs[fmt.Sprintf("Potts %d, chain", q)] = kinetictest.Potts(q, opened(kinetictest.Lattice(7), 0), 0.5, law)
+	}
+	for i := range uint64(6) {
+		q := 3 + int(i)%3
+		specs[fmt.Sprintf("random %d, %d levels", i, q)] = kinetictest.RandomLevels(i+1, q, kinetictest.Larger)
+	}
+	signs := kinetictest.Ising(kinetictest.Lattice(6, 5), 0.5, law)
+	signs.Families[0].Signs = make([]uint8, 30)
+	sizes := kinetictest.Ising(opened(kinetictest.Lattice(6, 5), 1), 0.5, law)
+	sizes.Families[1].Couplings = make([]float64, 30)
+	for c := range 30 {
+		signs.Families[0].Signs[c] = uint8(c * c % 3 % 2)
+		sizes.Families[1].Couplings[c] = float64(c%7) - 2.25
+	}
+	specs["random signs"], specs["random sizes"] = signs, sizes
+	specs["planar 4 x 3"] = kinetictest.PlanarCode(4, 3, 0.5, "XYZ", law)
 	out := make(map[string]*kinetic.Generator)
 	for name, s := range specs {
 		out[name] = compile(t, s)

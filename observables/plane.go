@@ -24,6 +24,9 @@ func newBitPlane(g *kinetic.Generator) *bitPlane {
 
 func (p *bitPlane) row(r int) []uint64 { return p.words[r*p.stride:][:p.stride] }
 
+// span returns n rows from r on.
+func (p *bitPlane) span(r, n int) []uint64 { return p.words[r*p.stride : (r+n)*p.stride] }
+
 func (p *bitPlane) set(cell int) {
 	r, x := cell/p.length, cell%p.length
 	p.words[r*p.stride+x/64] |= 1 << (x % 64)

@@ -13,34 +13,33 @@ import (
 const MaxDistance = 4096
 
 // planePairs sums products of plane sums along one axis: P(x) is the sum of the
-// eigenvalues of all terms with coordinate x.
+// eigenvalues of all terms with coordinate x. With two levels all sums are
+// integers, and exact below 2^53.
 type planePairs struct {
 	axis   int
 	open   bool
-	sums   []int64 // P(x)
-	exists []bool  // planes that hold a term
-	pairs  []int64 // by distance, pairs of planes
-	totals []planeSum
+	whole  bool      // P is an integer
+	sums   []float64 // P(x)
+	exists []bool    // planes that hold a term
+	pairs  []int64   // by distance, pairs of planes
+	totals []pairSums
 	fft    *fourier.FFT // nil where the direct sum is quicker
 	seq    [2][]float64
 	coeff  [2][]complex128
 }
 
-// planeSum sums over pairs of planes and snapshots.
-type planeSum struct{ first, second, product int64 }
-
 // direct is the length up to which pairs are summed directly.
 const direct = 512
 
-func newPlanePairs(l lattice.Lattice, plane *termPlane, axis int) *planePairs {
+func newPlanePairs(l lattice.Lattice, f spatialField, axis int, whole bool) *planePairs {
 	n := l.Size[axis]
 	distances := min(longest(l, axis), MaxDistance) + 1
 	p := &planePairs{
-		axis: axis, open: l.Open[axis],
-		sums: make([]int64, n), exists: make([]bool, n),
-		pairs: make([]int64, distances), totals: make([]planeSum, distances),
+		axis: axis, open: l.Open[axis], whole: whole,
+		sums: make([]float64, n), exists: make([]bool, n),
+		pairs: make([]int64, distances), totals: make([]pairSums, distances),
 	}
-	for x, terms := range planeCounts(make([]int64, n), l, plane.present, axis) {
+	for x, terms := range planeCounts(make([]int64, n), l, f.presence(), axis) {
 		p.exists[x] = terms > 0
 	}
 	for d := range p.pairs {
@@ -75,19 +74,16 @@ func (p *planePairs) each(d int, visit func(x, y int)) {
 	}
 }
 
-// add takes in the plane as it was last read.
-func (p *planePairs) add(l lattice.Lattice, plane *termPlane, scratch []int64) {
-	terms := planeCounts(scratch[:len(p.sums)], l, plane.present, p.axis)
-	copy(p.sums, terms)
-	ones := planeCounts(scratch[:len(p.sums)], l, plane.bitPlane, p.axis)
+// add takes in the field as it was last read.
+func (p *planePairs) add(f spatialField) {
+	f.planeSums(p.sums, p.axis)
 	var norm float64
-	for x, n := range ones {
-		p.sums[x] -= 2 * n
-		norm += float64(p.sums[x]) * float64(p.sums[x])
+	for _, s := range p.sums {
+		norm += s * s
 	}
 	p.addMembers()
-	// Products by Fourier transform are off by some 1e-15 of the norm, and
-	// rounded to integers.
+	// Products by Fourier transform are off by some 1e-15 of the norm; integers
+	// are rounded to.
 	if p.fft != nil && norm < 1e13 {
 		p.addTransformed()
 		return
@@ -98,35 +94,35 @@ func (p *planePairs) add(l lattice.Lattice, plane *termPlane, scratch []int64) {
 		if !p.open {
 			sum += dot(p.sums[n:], p.sums[:d])
 		}
-		p.totals[d].product += sum
+		p.totals[d].fg += sum
 	}
 }
 
 // addMembers adds the sums of first and second members. An absent plane has sum
 // 0, and so has no share; its partners are left out.
 func (p *planePairs) addMembers() {
-	var all int64
+	var all float64
 	for _, s := range p.sums {
 		all += s
 	}
 	for d := range p.totals {
 		if !p.open {
-			p.totals[d].first += all
-			p.totals[d].second += all
+			p.totals[d].f += all
+			p.totals[d].g += all
 			continue
 		}
 		n := len(p.sums) - d
 		for x := range n {
 			if p.exists[x] && p.exists[x+d] {
-				p.totals[d].first += p.sums[x]
-				p.totals[d].second += p.sums[x+d]
+				p.totals[d].f += p.sums[x]
+				p.totals[d].g += p.sums[x+d]
 			}
 		}
 	}
 }
 
-func dot(a, b []int64) int64 {
-	var sum int64
+func dot(a, b []float64) float64 {
+	var sum float64
 	b = b[:len(a)]
 	for i, x := range a {
 		sum += x * b[i]
@@ -139,14 +135,10 @@ func (p *planePairs) addTransformed() {
 	n := len(p.sums)
 	for i := range p.seq {
 		clear(p.seq[i])
-		for x, s := range p.sums {
-			p.seq[i][x] = float64(s)
-		}
+		copy(p.seq[i], p.sums)
 	}
 	if !p.open {
-		for d := range len(p.totals) {
-			p.seq[1][n+d] = float64(p.sums[d])
-		}
+		copy(p.seq[1][n:], p.sums[:len(p.totals)])
 	}
 	for i := range p.seq {
 		p.fft.Coefficients(p.coeff[i], p.seq[i])
@@ -157,7 +149,11 @@ func (p *planePairs) addTransformed() {
 	}
 	p.fft.Sequence(p.seq[0], p.coeff[0])
 	for d := range p.totals {
-		p.totals[d].product += int64(math.Round(p.seq[0][d] / float64(len(p.seq[0]))))
+		product := p.seq[0][d] / float64(len(p.seq[0]))
+		if p.whole {
+			product = math.Round(product)
+		}
+		p.totals[d].fg += product
 	}
 }
 

@@ -5,27 +5,33 @@ import (
 )
 
 // reading is the values of all observables in the present state of an engine.
-// Observables are read as channels (numbers) and tracks (bit vectors): a scalar
-// is one channel, a Fourier amplitude two, real and imaginary part; Local and
-// Operator observables are tracks.
+// Observables are read as channels (numbers) and tracks (vectors of single
+// levels): a scalar is one channel, a Fourier amplitude two, real and imaginary
+// part; Local and Operator observables are tracks. With two levels a track is a
+// bit vector, else a byte vector.
 type reading struct {
 	values []float64  // lane, channel
-	bits   [][]uint64 // by track: lane, word
-	ones   [][]int64  // by track and lane: bits set
+	bits   [][]uint64 // two levels: by track: lane, word
+	levels [][]uint8  // more levels: by track: lane, component
+	counts [][]int64  // by track: lane, level: how many components are at it
 
-	layout []slot // by observable
-	e      kinetic.Engine
-	g      *kinetic.Generator
+	layout     []slot    // by observable
+	eigenvalue []float64 // by level
+	e          kinetic.Engine
+	g          *kinetic.Generator
+	words      kinetic.LaneWords // e, if its lanes are the bits of words
 
 	lanes    int
 	channels int
 	tracks   []track
 
 	sums     []int64
-	patterns []uint16 // of one lane; nil if no observable needs them
+	patterns []uint16 // two levels: of one lane; nil if no observable needs them
 	planes   map[int]*termPlane
-	order    []int // families with planes, increasing
+	cells    map[int][]uint8 // more levels: of one lane by family and cell
+	order    []int           // families in planes or cells, as first asked for
 	scratch  []uint8
+	columns  wordColumns
 }
 
 // slot says where an observable stands in a reading.
@@ -33,8 +39,11 @@ type slot struct {
 	Observable
 	channel int // of its value or real part, -1 for tracks
 	track   int // -1 for channels
-	sources []amplitudeOf
+	parts   []amplitude
 }
+
+// amplitude is the part that one family has in a Fourier amplitude.
+type amplitude interface{ of() complex128 }
 
 // components returns the number of terms or positions behind a track, and 1 for
 // a scalar; Fourier amplitudes have norm 1.
@@ -45,41 +54,26 @@ func (r *reading) components(o int) int {
 	return 1
 }
 
-// amplitudeOf is the part that one family has in a Fourier amplitude.
-type amplitudeOf struct {
-	family int
-	*amplitude
-}
-
-// track is a bit vector that is read from patterns (local) or from a line.
-type track struct {
-	local      localTrack
-	chosen     []chosenTerm
-	line       int // -1 for local
-	components int
-	words      int
-}
-
 func newReading(e kinetic.Engine, g *kinetic.Generator, obs []Observable) *reading {
-	r := &reading{e: e, g: g, lanes: e.Lanes(), planes: make(map[int]*termPlane)}
+	r := &reading{
+		e: e, g: g, lanes: e.Lanes(), eigenvalue: eigenvalues(g.Levels),
+		planes: make(map[int]*termPlane), cells: make(map[int][]uint8),
+	}
+	r.words, _ = e.(kinetic.LaneWords)
 	for _, o := range obs {
 		s := slot{Observable: o, channel: -1, track: -1}
 		switch o.Kind {
 		case Local:
-			t := track{line: -1, chosen: sublattice(g, o.Families)}
-			t.local = newLocalTrack(t.chosen)
-			t.components = len(t.chosen)
-			s.track = r.addTrack(t)
-			r.needPatterns()
+			s.track = r.addTrack(newLocalTrack(g, sublattice(g, o.Families)))
+			r.needTerms(o.Families)
 		case Operator:
-			t := track{line: o.Line, components: positions(g.Lines[o.Line])}
-			s.track = r.addTrack(t)
+			s.track = r.addTrack(newLineTrack(g, o.Line))
 			r.scratch = make([]uint8, max(len(r.scratch), g.Lines[o.Line].Positions))
 		case Fourier:
 			s.channel = r.channels
 			r.channels += 2
 			for _, f := range o.Families {
-				s.sources = append(s.sources, amplitudeOf{f, newAmplitude(g, f, r.plane(f), o.Wavevector)})
+				s.parts = append(s.parts, r.amplitude(f, o))
 			}
 		default:
 			s.channel = r.channels
@@ -88,72 +82,94 @@ func newReading(e kinetic.Engine, g *kinetic.Generator, obs []Observable) *readi
 		r.layout = append(r.layout, s)
 	}
 	r.values = make([]float64, r.lanes*r.channels)
+	if r.words != nil {
+		r.columns = newWordColumns(g, r)
+	}
 	return r
 }
 
-// positions returns how many instances of a line exist.
-func positions(l kinetic.Line) int {
-	if l.Exists == nil {
-		return l.Positions
+// eigenvalues returns the real part of exp(2 pi i s/q), by level s.
+func eigenvalues(q int) []float64 {
+	out := make([]float64, q)
+	for s := range out {
+		out[s] = real(turn(s, q))
 	}
-	n := 0
-	for _, ok := range l.Exists {
-		if ok {
-			n++
-		}
-	}
-	return n
+	return out
 }
 
 func (r *reading) addTrack(t track) int {
-	t.words = (t.components + 63) / 64
 	r.tracks = append(r.tracks, t)
-	r.bits = append(r.bits, make([]uint64, r.lanes*t.words))
-	r.ones = append(r.ones, make([]int64, r.lanes))
+	if r.g.Levels == 2 {
+		r.bits = append(r.bits, make([]uint64, r.lanes*t.words))
+	} else {
+		r.levels = append(r.levels, make([]uint8, r.lanes*t.components))
+	}
+	r.counts = append(r.counts, make([]int64, r.lanes*r.g.Levels))
 	return len(r.tracks) - 1
 }
 
-func (r *reading) needPatterns() {
-	if r.patterns == nil {
-		r.patterns = make([]uint16, r.g.Addresses())
+// needTerms has what single terms of families are read from read with every
+// sample.
+func (r *reading) needTerms(families []int) {
+	if r.g.Levels == 2 {
+		if r.patterns == nil && r.words == nil {
+			r.patterns = make([]uint16, r.g.Addresses())
+		}
+		return
+	}
+	for _, f := range families {
+		if r.cells[f] == nil {
+			r.cells[f] = make([]uint8, r.g.Cells())
+			r.order = append(r.order, f)
+		}
 	}
 }
 
-// plane returns the plane of a family, which is read with every sample from
-// then on.
-func (r *reading) plane(f int) *termPlane {
+// amplitude prepares the part of family f in a Fourier amplitude.
+func (r *reading) amplitude(f int, o Observable) amplitude {
+	r.needTerms([]int{f})
+	if r.g.Levels > 2 {
+		return newLevelAmplitude(r.g, f, r.cells[f], o.Wavevector)
+	}
 	if r.planes[f] == nil {
-		r.needPatterns()
 		r.planes[f] = newTermPlane(r.g, f)
 		r.order = append(r.order, f)
 	}
-	return r.planes[f]
-}
-
-// words returns the widths of the tracks.
-func (r *reading) words() []int {
-	out := make([]int, len(r.tracks))
-	for i := range r.tracks {
-		out[i] = r.tracks[i].words
-	}
-	return out
+	return newBitAmplitude(r.g, f, r.planes[f], o.Wavevector)
 }
 
 // take reads all observables in all lanes.
 func (r *reading) take() {
 	r.sums = r.e.Sums(r.sums[:0])
 	width := len(r.sums) / r.lanes
+	if r.words != nil {
+		r.columns.take(r)
+	}
 	for lane := range r.lanes {
-		if r.patterns != nil {
-			r.e.Patterns(lane, r.patterns)
-		}
-		for _, f := range r.order {
-			r.planes[f].read(r.patterns)
-		}
+		r.takeTerms(lane)
 		sums := r.sums[lane*width:][:width]
 		values := r.values[lane*r.channels:][:r.channels]
 		for i := range r.layout {
 			r.takeOne(&r.layout[i], lane, sums, values)
+		}
+	}
+}
+
+// takeTerms reads the terms of one lane.
+func (r *reading) takeTerms(lane int) {
+	switch {
+	case r.words != nil:
+		for _, f := range r.order {
+			r.columns.plane(r.planes[f], f, lane)
+		}
+	case r.g.Levels > 2:
+		for _, f := range r.order {
+			r.e.Terms(f, lane, r.cells[f])
+		}
+	case r.patterns != nil:
+		r.e.Patterns(lane, r.patterns)
+		for _, f := range r.order {
+			r.planes[f].read(r.patterns)
 		}
 	}
 }
@@ -164,41 +180,47 @@ func (r *reading) takeOne(s *slot, lane int, sums []int64, values []float64) {
 		values[s.channel] = r.e.Energy(lane)
 	case Fourier:
 		var f complex128
-		for _, a := range s.sources {
-			f += a.of(r.planes[a.family])
+		for _, a := range s.parts {
+			f += a.of()
 		}
 		values[s.channel], values[s.channel+1] = real(f), imag(f)
 	case Local, Operator:
-		t := &r.tracks[s.track]
-		vector := r.bits[s.track][lane*t.words:][:t.words]
-		if s.Kind == Local {
-			t.local.gather(vector, r.patterns)
-		} else {
-			r.gatherLine(vector, t.line, lane)
-		}
-		r.ones[s.track][lane] = count(vector)
+		r.takeTrack(s.track, lane)
 	default:
-		var total int64
-		for _, f := range s.Families {
-			total += sums[f]
-		}
-		values[s.channel] = float64(total)
+		values[s.channel] = r.total(s.Families, sums)
 	}
 }
 
-// gatherLine writes the levels of a line's existing positions into dst.
-func (r *reading) gatherLine(dst []uint64, line, lane int) {
-	levels := r.scratch[:r.g.Lines[line].Positions]
-	r.e.Terms(len(r.g.Families)+line, lane, levels)
-	clear(dst)
-	i := 0
-	for _, s := range levels {
-		if s == kinetic.Absent {
-			continue
+// total adds up families from the sums of a lane: of eigenvalues for two levels,
+// else numbers of terms by level.
+func (r *reading) total(families []int, sums []int64) float64 {
+	if q := r.g.Levels; q > 2 {
+		total := 0.0
+		for _, f := range families {
+			for s, n := range sums[f*q : (f+1)*q] {
+				total += float64(n) * r.eigenvalue[s]
+			}
 		}
-		dst[i/64] |= uint64(s&1) << (i & 63)
-		i++
+		return total
 	}
+	var total int64
+	for _, f := range families {
+		total += sums[f]
+	}
+	return float64(total)
+}
+
+// origins returns, by channel, a value near the data: that of a scalar in lane 0,
+// and 0 for Fourier amplitudes, which vary about it.
+func (r *reading) origins() []float64 {
+	out := make([]float64, r.channels)
+	copy(out, r.values)
+	for i := range r.layout {
+		if l := &r.layout[i]; l.Kind == Fourier {
+			out[l.channel], out[l.channel+1] = 0, 0
+		}
+	}
+	return out
 }
 
 // mean returns the mean over components of an observable in a lane; for a
@@ -206,12 +228,25 @@ func (r *reading) gatherLine(dst []uint64, line, lane int) {
 func (r *reading) mean(o, lane int) float64 {
 	s := &r.layout[o]
 	if s.track >= 0 {
-		k := r.tracks[s.track].components
-		return float64(int64(k)-2*r.ones[s.track][lane]) / float64(k)
+		return r.weigh(r.counts[s.track][lane*r.g.Levels:][:r.g.Levels], 1) / float64(r.components(o))
 	}
 	v := r.values[lane*r.channels+s.channel]
 	if s.Kind == Fourier {
 		v += r.values[lane*r.channels+s.channel+1]
 	}
 	return v
+}
+
+// weigh returns the sum of a power of the eigenvalues over numbers of
+// components by level.
+func (r *reading) weigh(counts []int64, power int) float64 {
+	sum := 0.0
+	for s, n := range counts {
+		v := float64(n)
+		for range power {
+			v *= r.eigenvalue[s]
+		}
+		sum += v
+	}
+	return sum
 }

@@ -80,7 +80,6 @@ type recorder struct {
 	transients *transients
 	spatial    *spatial // nil if not asked for
 	every      int64    // samples between snapshots
-	snapshot   []uint16
 }
 
 // pieceAttempts bounds the attempted jumps between two looks at the context: at
@@ -89,11 +88,15 @@ const pieceAttempts = 1 << 18
 
 func newRecorder(e kinetic.Engine, g *kinetic.Generator, obs []Observable, pairs [][2]int, plan Plan) (*recorder, error) {
 	r := &recorder{e: e, g: g, plan: plan, pairs: pairs, reading: newReading(e, g, obs)}
-	r.piece = pieceAttempts / (g.Rates[len(g.Rates)-1] * float64(g.Addresses()) * float64(e.Lanes()))
+	moves := 0
+	for _, s := range g.Seats {
+		moves += len(s.Moves)
+	}
+	r.piece = pieceAttempts / (g.MaxRate() * float64(moves) * float64(g.Cells()) * float64(e.Lanes()))
 	r.tl = newTimeline(plan.Samples())
 	channelPairs := r.channelPairs()
-	r.correlator = newCorrelator(r.tl, r.lanes, r.reading.channels, channelPairs, r.words())
-	r.moments = newMoments(r.reading.channels, len(r.tracks))
+	r.correlator = newCorrelator(r.tl, r.reading, channelPairs)
+	r.moments = newMoments(r.reading.channels, len(r.tracks), g.Levels)
 	r.dirichlet = newDirichlet(e, g, r.reading, pairs)
 	r.transients = newTransients(TransientTimes(plan.Settle, plan.Span, plan.Step), r.lanes, len(obs))
 	if plan.Covariance != "" {
@@ -101,12 +104,8 @@ func newRecorder(e kinetic.Engine, g *kinetic.Generator, obs []Observable, pairs
 		if err != nil {
 			return nil, err
 		}
-		r.spatial = newSpatial(g, families, plan.Limit)
+		r.spatial = newSpatial(e, g, families, plan.Limit)
 		r.every = max(1, int64(math.Round(plan.Every/plan.Step)))
-		r.snapshot = r.patterns
-		if r.snapshot == nil {
-			r.snapshot = make([]uint16, g.Addresses())
-		}
 	}
 	return r, nil
 }
@@ -192,13 +191,12 @@ func (r *recorder) advance(t float64) bool {
 func (r *recorder) sample(k int64) {
 	r.tl.next()
 	r.correlator.add(r.reading)
-	r.moments.add(r.tl.segment(k, MomentSegments), r.lanes, r.reading)
+	r.moments.add(r.tl.segment(k, MomentSegments), r.reading)
 	if k%r.stride == 0 {
 		r.dirichlet.add(r.tl.segment(k, PairSegments))
 	}
 	if r.spatial != nil && k%r.every == 0 {
-		r.e.Patterns(int(k/r.every%int64(r.lanes)), r.snapshot)
-		r.spatial.add(r.snapshot)
+		r.spatial.add()
 	}
 }
 
@@ -210,17 +208,13 @@ func (r *recorder) sample(k int64) {
 // are so many samples. It is fixed before the first sample is taken, so it does
 // not select states.
 func (r *recorder) dirichletStride() int64 {
-	var fastest float64
-	for i := range r.g.Shapes {
-		for _, rates := range r.g.Shapes[i].Rate {
-			for _, rate := range rates {
-				fastest = math.Max(fastest, rate)
-			}
-		}
+	apart := 1 / r.g.MaxRate()
+	seats := float64(r.g.Addresses())
+	if r.g.Couplings != nil {
+		seats *= 8 // the sum over seats takes as much longer than a census
 	}
-	apart := 1 / fastest
 	if jumps := float64(r.e.Jumps()) / float64(r.lanes); r.plan.Settle > 0 && jumps > 0 {
-		apart = math.Max(apart, float64(r.g.Addresses())/2*r.plan.Settle/jumps)
+		apart = math.Max(apart, seats/2*r.plan.Settle/jumps)
 	}
 	most := max(1, r.plan.Samples()/(64*PairSegments))
 	samples := math.Min(math.Ceil(apart/r.plan.Step), float64(most))
@@ -262,7 +256,7 @@ func (r *recorder) momentRows() []MomentRow {
 			var sums powerSums
 			switch {
 			case l.track >= 0:
-				sums = r.moments.track(s, l.track, r.components(o))
+				sums = r.moments.track(s, l.track, r.reading)
 			default:
 				sums = r.moments.channel(s, l.channel)
 				if l.Kind == Fourier {
@@ -324,6 +318,9 @@ func (r *recorder) dirichletRows() []DirichletRow {
 			continue
 		}
 		for p, pair := range r.pairs {
+			if !r.dirichlet.known(p) {
+				continue
+			}
 			out = append(out, DirichletRow{
 				Segment: int32(s), F: r.layout[pair[0]].Name, G: r.layout[pair[1]].Name,
 				Count: n, Sum: r.dirichlet.sums[s*len(r.pairs)+p],

@@ -13,17 +13,17 @@ func TestSumsKeepDigits(t *testing.T) {
 	const n = 2000
 	rng := rand.New(rand.NewPCG(3, 4))
 	tl := newTimeline(n)
-	c := newCorrelator(tl, 1, 1, [][2]int{{0, 0}}, nil)
-	m := newMoments(1, 0)
+	c := newCorrelator(tl, &reading{lanes: 1, channels: 1}, [][2]int{{0, 0}})
+	m := newMoments(1, 0, 2)
 	series := make([]float64, n)
 	x := 0.0
 	for k := range series {
 		x = 0.9*x + rng.NormFloat64()
 		series[k] = -1e7 + math.Round(400*x)
-		r := &reading{values: series[k : k+1]}
+		r := &reading{lanes: 1, channels: 1, values: series[k : k+1]}
 		tl.next()
 		c.add(r)
-		m.add(tl.segment(int64(k), MomentSegments), 1, r)
+		m.add(tl.segment(int64(k), MomentSegments), r)
 	}
 	var powers [5]*big.Float
 	for p := range powers {

@@ -13,25 +13,57 @@ import (
 // edge covariances differ from those inside; all pairs that fit are counted.
 type spatial struct {
 	g         *kinetic.Generator
+	d         []lattice.Offset
 	families  []int
-	points    []*pointPairs
+	fields    []spatialField
 	planes    [][]*planePairs // family, axis
-	scratch   []int64
+	snapshot  snapshot
 	snapshots int64
 }
 
-func newSpatial(g *kinetic.Generator, families []int, limit int) *spatial {
-	s := &spatial{g: g, families: families, scratch: make([]int64, longestAxis(g.Lattice))}
-	d := displacements(g.Lattice, limit)
+// spatialField is the terms of one family, and the sums over their pairs.
+type spatialField interface {
+	// read takes the terms from a snapshot.
+	read(s *snapshot)
+	// add takes in the terms as last read.
+	add()
+	// pair returns the sums over pairs at displacement k, and their number.
+	pair(k int) (int64, pairSums)
+	// presence tells which cells have a term.
+	presence() *bitPlane
+	// planeSums writes the sums of the terms last read, by coordinate.
+	planeSums(dst []float64, axis int)
+}
+
+// snapshot is the state of one lane.
+type snapshot struct {
+	e        kinetic.Engine
+	lane     int
+	patterns []uint16 // two levels
+	levels   []uint8  // more levels: scratch, by cell
+}
+
+func newSpatial(e kinetic.Engine, g *kinetic.Generator, families []int, limit int) *spatial {
+	s := &spatial{g: g, families: families, d: displacements(g.Lattice, limit), snapshot: snapshot{e: e}}
+	if g.Levels == 2 {
+		s.snapshot.patterns = make([]uint16, g.Addresses())
+	} else {
+		s.snapshot.levels = make([]uint8, g.Cells())
+	}
 	for _, f := range families {
-		plane := newTermPlane(g, f)
-		s.points = append(s.points, newPointPairs(g.Lattice, plane, d))
+		var field spatialField
+		if g.Levels == 2 {
+			field = newBitField(g, f, s.d)
+		} else {
+			field = newLevelField(g, f, s.d)
+		}
+		s.fields = append(s.fields, field)
 		var axes []*planePairs
 		for a := range g.Lattice.Axes {
 			if g.Lattice.Axes == 1 {
 				break // its planes are the terms
 			}
-			axes = append(axes, newPlanePairs(g.Lattice, plane, a))
+			axes = append(axes, newPlanePairs(g.Lattice, field, a, g.Levels == 2))
 		}
 		s.planes = append(s.planes, axes)
 	}
@@ -40,13 +72,17 @@ func newSpatial(g *kinetic.Generator, families []int, limit int) *spatial {
 
 func longestAxis(l lattice.Lattice) int { return max(l.Size[0], l.Size[1], l.Size[2], l.Size[3]) }
 
-// add takes a snapshot from the patterns of one lane.
-func (s *spatial) add(patterns []uint16) {
-	for i, p := range s.points {
-		p.plane.read(patterns)
-		p.add()
+// add takes a snapshot of one lane.
+func (s *spatial) add() {
+	s.snapshot.lane = int(s.snapshots % int64(s.snapshot.e.Lanes()))
+	if s.snapshot.patterns != nil {
+		s.snapshot.e.Patterns(s.snapshot.lane, s.snapshot.patterns)
+	}
+	for i, f := range s.fields {
+		f.read(&s.snapshot)
+		f.add()
 		for _, axis := range s.planes[i] {
-			axis.add(s.g.Lattice, p.plane, s.scratch)
+			axis.add(f)
 		}
 	}
 	s.snapshots++
@@ -59,27 +95,26 @@ func (s *spatial) rows() []CovarianceRow {
 	if s.snapshots == 0 {
 		return nil
 	}
-	for i, f := range s.families {
-		name := s.g.Families[f].Name
-		for k := range s.points[i].d {
+	for i := range s.fields {
+		for k := range s.d {
 			out = s.pointRow(out, i, k, -1)
 		}
 		if s.g.Lattice.Axes == 1 {
-			for k, d := range s.points[i].d {
+			for k, d := range s.d {
 				if d[0] == k { // not yet thinned out
 					out = s.pointRow(out, i, k, 0)
 				}
 			}
 		}
-		for _, axis := range s.planes[i] {
-			for d, t := range axis.totals {
-				if axis.pairs[d] == 0 {
+		for _, p := range s.planes[i] {
+			for d, t := range p.totals {
+				if p.pairs[d] == 0 {
 					continue
 				}
 				out = append(out, CovarianceRow{
-					Of: name, Axis: int32(axis.axis), Displacement: []int32{int32(d)},
-					Snapshots: s.snapshots, Pairs: axis.pairs[d] * s.snapshots,
-					SumF: float64(t.first), SumG: float64(t.second), SumFG: float64(t.product),
+					Of: s.name(i), Axis: int32(p.axis), Displacement: []int32{int32(d)},
+					Snapshots: s.snapshots, Pairs: p.pairs[d] * s.snapshots,
+					SumF: t.f, SumG: t.g, SumFG: t.fg,
 				})
 			}
 		}
@@ -87,21 +122,21 @@ func (s *spatial) rows() []CovarianceRow {
 	return out
 }
 
+func (s *spatial) name(i int) string { return s.g.Families[s.families[i]].Name }
+
 // pointRow appends the sums over pairs of terms of family i at displacement k,
 // if there are such pairs.
 func (s *spatial) pointRow(out []CovarianceRow, i, k, axis int) []CovarianceRow {
-	t := s.points[i].totals[k]
-	if t.pairs == 0 {
+	n, sums := s.fields[i].pair(k)
+	if n == 0 {
 		return out
 	}
 	row := CovarianceRow{
-		Of: s.g.Families[s.families[i]].Name, Axis: int32(axis), Snapshots: s.snapshots, Pairs: t.pairs,
-		SumF:  float64(t.pairs - 2*t.first),
-		SumG:  float64(t.pairs - 2*t.second),
-		SumFG: float64(t.pairs - 2*t.differ),
+		Of: s.name(i), Axis: int32(axis), Snapshots: s.snapshots, Pairs: n,
+		SumF: sums.f, SumG: sums.g, SumFG: sums.fg,
 	}
 	for a := range s.g.Lattice.Axes {
-		row.Displacement = append(row.Displacement, int32(s.points[i].d[k][a]))
+		row.Displacement = append(row.Displacement, int32(s.d[k][a]))
 	}
 	return append(out, row)
 }
