@@ -64,11 +64,8 @@ func (o octaves) class(rate float64) uint32 {
 // term to term (q = 2). It needs about 21 bytes per seat and 4 for each of its
 // slots.
 func NewComposition(g *Generator, seed [32]byte, unit int, start Start) (Engine, error) {
-	if g.Levels != 2 || g.Couplings == nil {
-		return nil, fmt.Errorf("the composition engine is for couplings that vary in size; use engine = \"classes\"")
-	}
-	if g.Addresses() > math.MaxInt32 {
-		return nil, fmt.Errorf("the lattice has %d sites; the composition engine runs at most %d", g.Addresses(), math.MaxInt32)
+	if err := checkComposition(g); err != nil {
+		return nil, err
 	}
 	src := newSource(seed, unit, "start "+string(start))
 	s, err := newState(g, start, &src)
@@ -96,6 +93,16 @@ func NewComposition(g *Generator, seed [32]byte, unit int, start Start) (Engine,
 	e.refresh()
 	e.next = e.src.exponential() * e.scale
 	return e, nil
+}
+
+// CompositionBytes estimates the memory of one composition engine.
+func CompositionBytes(g *Generator) int64 {
+	slots := 0
+	for _, s := range g.Seats {
+		slots = max(slots, len(s.Slots))
+	}
+	n := int64(g.Addresses())
+	return n*(16+4*int64(slots)) + 4*int64(arenaSize(g.Addresses(), octaveCount+1)) + g.tableBytes()
 }
 
 func (e *composition) pattern(a int) uint32 { return uint32(e.seat[a].tag) & e.hot.mask }
