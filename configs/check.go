@@ -93,15 +93,14 @@ func join(section, key string) string {
 // keyOf finds a key of a section; in [hamiltonian] also a parameter of the
 // model.
 func keyOf(s *Section, name, model string) (Key, bool) {
-	if k, ok := s.find(name); ok {
-		return k, true
-	}
 	if s.Name == "hamiltonian" {
 		if m, ok := models.Find(model); ok {
-			return parameterKey(m, name)
+			if k, ok := parameterKey(m, name); ok {
+				return k, true
+			}
 		}
 	}
-	return Key{}, false
+	return s.find(name)
 }
 
 // parameterKey is a model's parameter as a key of [hamiltonian].
@@ -112,6 +111,9 @@ func parameterKey(m models.Model, name string) (Key, bool) {
 			if p.Follows != "" {
 				k.Default = "as " + p.Follows
 			}
+			if p.Whole {
+				k.Type, k.Range = Integer, Range{Set: true, Min: float64(p.Min), Max: float64(p.Max)}
+			}
 			return k, true
 		}
 	}
@@ -119,7 +121,7 @@ func parameterKey(m models.Model, name string) (Key, bool) {
 }
 
 // customKeys are the keys of [hamiltonian] that only a custom model has.
-var customKeys = []string{"levels", "sites_per_cell", "family", "tracked"}
+var customKeys = []string{"levels", "sites_per_cell", "family", "tracked", "absent"}
 
 // ofModel reports whether a key of [hamiltonian] is one of the study's model,
 // and reports those of other models.

@@ -23,6 +23,12 @@ func lawKeys(law, rate string) []Key {
 	}
 }
 
+// powersKey says which powers of a bath operator there are.
+func powersKey(otherwise string) Key {
+	return Key{Name: "powers", Type: Integers, Range: oneUp, Default: otherwise, Needs: "more than 2 levels",
+		Doc: "powers of X, Y = XZ and Z, each a bath operator of its own; inverses are added"}
+}
+
 // laws are the laws as a study names them.
 var laws = []string{"heat-bath", "metropolis", "power", "ohmic", "symmetric", "table"}
 
@@ -52,7 +58,7 @@ var schema = []Section{
 	}},
 	{Name: "hamiltonian", Doc: "The commuting Hamiltonian: a built-in one with its parameters, or custom.", Keys: []Key{
 		{Name: "model", Type: Name, Needs: "needed", Doc: "a built-in Hamiltonian (see sojourn models), or custom"},
-		{Name: "levels", Type: Integer, Range: Range{Set: true, Min: 2, Max: 2}, Default: "2", Needs: "custom only",
+		{Name: "levels", Type: Integer, Range: Range{Set: true, Min: 2, Max: 16}, Default: "2", Needs: "custom; a parameter of some models",
 			Doc: "q, levels of a site"},
 		{Name: "sites_per_cell", Type: Integer, Range: Range{Set: true, Min: 1, Max: 64}, Default: "1", Needs: "custom only",
 			Doc: "sites in each cell"},
@@ -62,8 +68,10 @@ var schema = []Section{
 		{Name: "x", Type: Polynomials, Doc: "sites on which the term has an X"},
 		{Name: "z", Type: Polynomials, Doc: "sites on which the term has a Z"},
 		{Name: "coupling", Type: Number, Default: "1", Scan: true, Doc: "J; J > 0 favours the value +1"},
-		{Name: "cut", Type: Word, Words: []string{"drop", "truncate"}, Default: "drop",
-			Doc: "at open edges a term that would leave the lattice is absent, or keeps the factors inside"},
+		{Name: "energies", Type: WordOrNumbers, Words: []string{"clock", "potts"}, Default: "clock",
+			Doc: "energy of level s: -J cos(2 pi s/q), which for two levels is -J and J; -J at s = 0 and 0 elsewhere; or J times one number for each level"},
+		{Name: "cut", Type: WordOrWords, Words: []string{"drop", "truncate"}, Default: "drop",
+			Doc: "at open edges a term that would leave the lattice, or meet an absent site, is absent or keeps the factors inside; for all axes, or one word per axis"},
 		{Name: "group", Type: Name, Doc: "families of one group can be asked for together"},
 	}},
 	{Name: "hamiltonian.tracked", Repeated: true, Doc: "An operator without energy whose value is followed; it commutes with every term.", Keys: []Key{
@@ -72,16 +80,23 @@ var schema = []Section{
 		{Name: "z", Type: Polynomials, Doc: "likewise"},
 		{Name: "order", Type: Flag, Default: "false", Doc: "its sum over the lattice is the magnetization"},
 	}},
+	{Name: "hamiltonian.absent", Repeated: true, Doc: "A site that the cells at one open edge of a custom Hamiltonian lack.", Keys: []Key{
+		{Name: "site", Type: Integer, Range: notNegative, Needs: "needed", Doc: "site of the cell, counted from 0"},
+		{Name: "axis", Type: Word, Words: []string{"x", "y", "z", "w"}, Needs: "needed", Doc: "axis that ends at the edge"},
+		{Name: "end", Type: Word, Words: []string{"first", "last"}, Needs: "needed", Doc: "cells with the first coordinate along it, or the last"},
+	}},
 	{Name: "bath", Doc: "The thermal bath and its coupling to the sites.", Keys: append([]Key{
 		{Name: "beta", Short: "beta", Type: Number, Range: notNegative, Scan: true,
 			Needs: "needed, here or in a scan", Doc: "inverse temperature, in inverse energy units"}},
 		append(lawKeys("heat-bath", "1"),
 			Key{Name: "couples", Type: Words, Words: []string{"X", "Y", "Z"}, later: []string{"XX"}, Default: `["X"]`, Needs: "not with [[bath.operator]]",
-				Doc: "the bath operators on each site, all with this law"})...)},
+				Doc: "the bath operators on each site, all with this law"},
+			powersKey("those of the model, or [1]"))...)},
 	{Name: "bath.operator", Repeated: true, Doc: "One bath operator with a strength and law of its own; what it leaves out is taken from [bath].",
 		Keys: append(append([]Key{
 			{Name: "on", Type: Word, Words: []string{"X", "Y", "Z"}, later: []string{"XX"}, Needs: "needed", Doc: "the operator that couples a site to the bath"}},
 			lawKeys("that of [bath]", "that of [bath]")...),
+			powersKey("those of [bath]"),
 			Key{Name: "sites", Type: Integers, Range: notNegative, Doc: "sites of the cell that it acts on, counted from 0; without it, all"})},
 	{Name: "trajectory", Doc: "How many trajectories, from where and how long.", Keys: []Key{
 		{Name: "count", Short: "count", Type: Integer, Range: countRange, Default: "16", Scan: true,

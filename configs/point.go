@@ -40,7 +40,8 @@ func (r *reading) point() (p Point, ok bool) {
 		p.Pairs = r.pairs(list)
 		p.Model, p.Parameters = h.model, h.parameters
 		p.Spec = kinetic.Spec{
-			Lattice: l, Levels: h.Levels, Sites: h.Sites, Families: h.Families, Tracked: h.Tracked, Bath: operators, Beta: beta,
+			Lattice: l, Levels: h.Levels, Sites: h.Sites, Families: h.Families, Tracked: h.Tracked, Absent: h.Absent,
+			Bath: operators, Beta: beta,
 		}
 	}
 	if !r.failed && len(r.d.faults) == 0 {
@@ -151,12 +152,12 @@ func (r *reading) checkTerms(g compiled, c *Covariance, list []requested) {
 func idle(b kinetic.BathOperator, h *hamiltonian) bool {
 	one := []kinetic.BathOperator{b}
 	for _, f := range h.Families {
-		if f.Coupling != 0 && changedBy(f.Operator, one) {
+		if f.Coupling != 0 && changedBy(f.Operator, one, h.Levels) {
 			return false
 		}
 	}
 	for _, t := range h.Tracked {
-		if changedBy(t.Operator, one) {
+		if changedBy(t.Operator, one, h.Levels) {
 			return false
 		}
 	}
@@ -182,8 +183,11 @@ func shortened(s kinetic.Spec) lattice.Lattice {
 			reach = max(reach, length(t.Operator, a))
 		}
 		// A site feels terms one reach away, and at open edges what these lack
-		// one reach further, on either side.
+		// one reach further, on either side, and the sites absent there.
 		enough := 4*reach + 3
+		if s.Absent != nil {
+			enough += 2
+		}
 		if n > enough+1 {
 			l.Size[a] = enough + (n-enough)%2
 		}
@@ -205,7 +209,10 @@ func (r *reading) refused(err error, h *hamiltonian, axes int) {
 	v := r.section("hamiltonian")
 	var commute *kinetic.NotCommuting
 	var missing *bath.MissingEnergyError
+	var terms *kinetic.TooManyTerms
 	switch {
+	case errors.As(err, &terms) && h.Levels > 2:
+		v.fault("levels", "%s", err)
 	case errors.As(err, &commute):
 		key := "family"
 		if commute.Tracked {

@@ -1,6 +1,7 @@
 package configs
 
 import (
+	"fmt"
 	"slices"
 	"strings"
 
@@ -20,8 +21,8 @@ var lawTakes = map[string][]string{
 
 var lawParameters = []string{"rate", "exponent", "cutoff", "energies", "rates"}
 
-// powers are the powers of X and Z of each bath operator.
-var powers = map[string][2]int{"X": {1, 0}, "Y": {1, 1}, "Z": {0, 1}}
+// letters are the powers of X and Z in each bath operator.
+var letters = map[string][2]int{"X": {1, 0}, "Y": {1, 1}, "Z": {0, 1}}
 
 // bath reads [bath] and its operators.
 func (r *reading) bath(sites int) (beta float64, operators []kinetic.BathOperator) {
@@ -45,9 +46,10 @@ func (r *reading) bath(sites int) (beta float64, operators []kinetic.BathOperato
 			o.need("on", "write X, Y or Z")
 		}
 		o.label += "." + name
-		op := kinetic.BathOperator{Name: name, X: powers[name][0], Z: powers[name][1], Sites: o.sites(sites)}
-		if op.Law, ok = o.law(v, beta); ok {
-			operators = append(operators, op)
+		op := kinetic.BathOperator{Name: name, X: letters[name][0], Z: letters[name][1], Sites: o.sites(sites)}
+		powers, right := o.powers(v)
+		if op.Law, ok = o.law(v, beta); ok && right {
+			operators = append(operators, op.Powers(powers, r.levels())...)
 		}
 		taken = append(taken, lawTakes[lawName(o, v)]...)
 	}
@@ -73,14 +75,65 @@ func (v view) couples(beta float64) []kinetic.BathOperator {
 	} else {
 		v.fill("couples", `["X"]`)
 	}
-	if !ok {
+	powers, right := v.powers(v)
+	if !ok || !right {
 		return nil
 	}
 	var out []kinetic.BathOperator
 	for _, w := range words {
-		out = append(out, kinetic.BathOperator{Name: w, X: powers[w][0], Z: powers[w][1], Law: law})
+		op := kinetic.BathOperator{Name: w, X: letters[w][0], Z: letters[w][1], Law: law}
+		out = append(out, op.Powers(powers, v.r.levels())...)
 	}
 	return out
+}
+
+// levels is q; 2 if the Hamiltonian is not known.
+func (r *reading) levels() int {
+	if r.model == nil {
+		return 2
+	}
+	return r.model.Levels
+}
+
+// powers reads the powers of a bath operator; what it leaves out is that of
+// base, else of the model.
+func (v view) powers(base view) (out []int, ok bool) {
+	levels := v.r.levels()
+	from := v.or(base, "powers")
+	n, found := from.find("powers")
+	switch {
+	case v.r.model == nil:
+		return nil, true // reported elsewhere
+	case !found:
+		out = v.r.model.Powers
+		if out == nil {
+			out = []int{1}
+		}
+		if levels > 2 {
+			base.fillOnce("powers", strings.ReplaceAll(fmt.Sprint(out), " ", ", "))
+		}
+		return out, true
+	case n.bad:
+		return nil, false
+	case levels == 2:
+		from.refuse("powers", "are for more than 2 levels; with 2, X, Y and Z have no others")
+		return nil, false
+	}
+	ok = true
+	for _, item := range from.list("powers") {
+		k := int(min(item.integer, 1<<31))
+		switch {
+		case k >= levels:
+			from.faultAt(item.at, "powers", "%s is not below the number of levels, %d", item.shown(), levels)
+			ok = false
+		case slices.Contains(out, k):
+			from.faultAt(item.at, "powers", "names %d twice", k)
+			ok = false
+		default:
+			out = append(out, k)
+		}
+	}
+	return out, ok
 }
 
 // sites reads the sites of the cell that an operator acts on.

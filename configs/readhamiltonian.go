@@ -65,6 +65,11 @@ func (h *hamiltonian) order() (kinetic.TrackedSpec, bool) {
 }
 
 func (r *reading) hamiltonian(l lattice.Lattice) (h *hamiltonian, ok bool) {
+	defer func() {
+		if ok {
+			r.model = h
+		}
+	}()
 	v := r.section("hamiltonian")
 	name, ok := v.word("model")
 	if !ok {
@@ -136,6 +141,9 @@ func (v view) custom(l lattice.Lattice) (*hamiltonian, bool) {
 		return nil, false
 	}
 	h.Levels, h.Sites = int(levels), int(sites)
+	for _, a := range v.items("absent") {
+		h.addAbsent(a, l)
+	}
 	families, tracked := v.items("family"), v.items("tracked")
 	if len(families) == 0 && !v.has("family") {
 		v.need("family", "a custom Hamiltonian is spelt out in [[hamiltonian.family]] tables")
@@ -174,11 +182,8 @@ func (h *hamiltonian) addFamily(v view, l lattice.Lattice) {
 	f := kinetic.FamilySpec{Name: h.claim(&v)}
 	f.Operator = h.operator(v, l)
 	f.Coupling, _ = v.number("coupling")
-	cut := "drop"
-	if v.has("cut") || !l.Periodic() {
-		cut, _ = v.word("cut")
-	}
-	f.Cut = kinetic.Cut(cut)
+	f.Shape = v.energies(h.Levels)
+	f.Cut = v.cut(l)
 	f.Group, _ = v.word("group")
 	if f.Operator.Extended() {
 		v.faultAt(v.at, "", "runs along whole axes, as only [[hamiltonian.tracked]] operators can")

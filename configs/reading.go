@@ -13,6 +13,7 @@ type reading struct {
 	scanned  map[target]*node
 	values   map[string]Setting // every number that was read, by dotted name
 	defaults []Setting
+	model    *hamiltonian // once it has been read; nil if it is wrong
 	failed   bool
 }
 

@@ -1,6 +1,8 @@
 package configs
 
 import (
+	"slices"
+
 	"sojourn/kinetic/lattice"
 	"sojourn/kinetic/models"
 )
@@ -86,8 +88,15 @@ func (r *reading) axes(v view) int {
 // open reads the boundaries.
 func (r *reading) open(v view, axes int) ([]bool, bool) {
 	out := make([]bool, axes)
+	name, _ := r.section("hamiltonian").word("model")
+	m, _ := models.Find(name)
 	n, found := v.find("boundary")
 	switch {
+	case !found && m.Open:
+		for a := range out {
+			out[a] = true
+		}
+		v.fill("boundary", `"open"`)
 	case !found:
 		v.fill("boundary", `"periodic"`)
 	case n.bad:
@@ -103,6 +112,10 @@ func (r *reading) open(v view, axes int) ([]bool, bool) {
 		for a, item := range n.items {
 			out[a] = item.text == "open"
 		}
+	}
+	if m.Open && slices.Contains(out, false) {
+		v.fault("boundary", "the model %s has edges: every axis is open", name)
+		return nil, false
 	}
 	return out, true
 }

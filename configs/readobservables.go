@@ -24,9 +24,15 @@ var kindTakes = map[string][]string{
 type requested struct {
 	Observable
 	operators []pauli.Operator
+	levels    int
+	tracked   bool // it is made of tracked operators
 	at        int
 	view      view // nothing if it was not asked for
 }
+
+// scalar reports whether the observable is one real number: a sum of tracked
+// operators of more than two levels is complex.
+func (o requested) scalar() bool { return o.Observable.scalar() && !(o.tracked && o.levels > 2) }
 
 // scalar reports whether the observable is one number, so that its covariance
 // with another means something.
@@ -64,16 +70,17 @@ func (r *reading) observables(h *hamiltonian, l lattice.Lattice, bath []kinetic.
 
 // chosen lists the observables of a study that names none.
 func (r *reading) chosen(h *hamiltonian, bath []kinetic.BathOperator) []requested {
-	out := []requested{{Observable: Observable{Name: kindEnergy, Kind: kindEnergy}, at: nowhere}}
+	out := []requested{{Observable: Observable{Name: kindEnergy, Kind: kindEnergy}, levels: h.Levels, at: nowhere}}
 	if t, ok := h.order(); ok {
 		out = append(out, requested{
-			Observable: Observable{Name: kindMagnetization, Kind: kindMagnetization}, operators: []pauli.Operator{t.Operator}, at: nowhere})
+			Observable: Observable{Name: kindMagnetization, Kind: kindMagnetization}, operators: []pauli.Operator{t.Operator},
+			levels: h.Levels, tracked: true, at: nowhere})
 	} else {
 		for _, t := range h.Tracked {
-			if t.Operator.Extended() && changedBy(t.Operator, bath) {
+			if t.Operator.Extended() && changedBy(t.Operator, bath, h.Levels) {
 				out = append(out, requested{
 					Observable: Observable{Name: kindOperator + "-" + t.Name, Kind: kindOperator, Tracked: t.Name},
-					operators:  []pauli.Operator{t.Operator}, at: nowhere})
+					operators:  []pauli.Operator{t.Operator}, levels: h.Levels, tracked: true, at: nowhere})
 			}
 		}
 	}
@@ -86,7 +93,7 @@ func (r *reading) chosen(h *hamiltonian, bath []kinetic.BathOperator) []requeste
 }
 
 func (v view) observable(h *hamiltonian, l lattice.Lattice) (o requested, ok bool) {
-	o.at, o.view = v.at, v
+	o.at, o.view, o.levels = v.at, v, h.Levels
 	kind, ok := v.word("kind")
 	if !ok {
 		if !v.has("kind") {
@@ -100,11 +107,13 @@ func (v view) observable(h *hamiltonian, l lattice.Lattice) (o requested, ok boo
 	if n, found := v.find("family"); found && ok {
 		o.Family = n.text
 		o.operators, ok = v.resolveFamily("family", n, h)
+		o.tracked = len(h.family(n.text)) == 0
 		label += "-" + o.Family
 	}
 	if n, found := v.find("tracked"); found && ok {
 		o.Tracked = n.text
 		o.operators, ok = v.resolveTracked(n, h)
+		o.tracked = true
 		label += "-" + o.Tracked
 	}
 	if ok && kind == kindFourier {
@@ -122,7 +131,7 @@ func (v view) observable(h *hamiltonian, l lattice.Lattice) (o requested, ok boo
 			v.fault("kind", "this Hamiltonian has no magnetization; it has %s", h.inventory())
 			ok = false
 		}
-		o.operators = []pauli.Operator{t.Operator}
+		o.operators, o.tracked = []pauli.Operator{t.Operator}, true
 	}
 	o.Name = label
 	if n, found := v.find("name"); found {
@@ -289,7 +298,7 @@ func (v view) alike(h *hamiltonian, l lattice.Lattice, name string) bool {
 	var names []string
 	for _, f := range families {
 		names = append(names, f.Name)
-		same = same && f.Coupling == families[0].Coupling
+		same = same && f.Coupling == families[0].Coupling && slices.Equal(f.Shape, families[0].Shape)
 	}
 	if !same {
 		v.fault("family", "the families of the group %s may have different means on this lattice: ask for one of %s", name, listed(names, "or"))
@@ -299,19 +308,19 @@ func (v view) alike(h *hamiltonian, l lattice.Lattice, name string) bool {
 
 // noteConstant says that nothing in the bath changes an observable.
 func (v view) noteConstant(o requested, h *hamiltonian, bath []kinetic.BathOperator) {
-	if o.Kind == kindEnergy || slices.ContainsFunc(o.operators, func(op pauli.Operator) bool { return changedBy(op, bath) }) {
+	if o.Kind == kindEnergy || slices.ContainsFunc(o.operators, func(op pauli.Operator) bool { return changedBy(op, bath, h.Levels) }) {
 		return
 	}
 	v.r.d.note(v.at, "observable", "%s is constant: no bath operator changes it", o.Name)
 }
 
-// changedBy reports whether a bath operator anticommutes with the operator on
-// some site.
-func changedBy(op pauli.Operator, bath []kinetic.BathOperator) bool {
+// changedBy reports whether a bath operator does not commute with the operator
+// on some site.
+func changedBy(op pauli.Operator, bath []kinetic.BathOperator, levels int) bool {
 	for _, f := range op.Factors() {
 		for _, b := range bath {
 			acts := b.Sites == nil || slices.Contains(b.Sites, f.Site)
-			if acts && (b.X*f.Z+b.Z*f.X)%2 != 0 {
+			if acts && (b.X*f.Z-b.Z*f.X)%levels != 0 {
 				return true
 			}
 		}

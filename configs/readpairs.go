@@ -89,7 +89,11 @@ func (v view) pair(list []requested) (p [2]int, ok bool) {
 	}
 	for i, o := range []requested{f, g} {
 		if !o.scalar() {
-			v.faultAt(n.items[i].at, "of", "%s has several components: only energy, magnetization and terms have cross-covariances", o.Name)
+			what := "only energy, magnetization and terms have cross-covariances"
+			if o.Observable.scalar() {
+				what = "with more than two levels sums of tracked operators are complex, and have no cross-covariances"
+			}
+			v.faultAt(n.items[i].at, "of", "%s has several components: %s", o.Name, what)
 			return p, false
 		}
 	}
@@ -101,7 +105,7 @@ func (v view) pair(list []requested) (p [2]int, ok bool) {
 func anticommute(f, g requested) bool {
 	for _, a := range f.operators {
 		for _, b := range g.operators {
-			if _, ok := pauli.Commute(a, b, 2); !ok {
+			if _, ok := pauli.Commute(a, b, f.levels); !ok {
 				return true
 			}
 		}

@@ -33,24 +33,25 @@ type Type int
 
 // The types.
 const (
-	Text        Type = iota // any string
-	Name                    // a string of letters, digits, _ and -, beginning with a letter
-	Word                    // one of a few strings
-	Number                  // a finite number
-	Integer                 // an integer
-	Flag                    // true or false
-	Integers                // a list of integers
-	Numbers                 // a list of numbers
-	Words                   // a list of strings out of a few
-	WordOrWords             // one of a few strings, or a list of them
-	Polynomials             // a list of strings, one polynomial per site of the cell
-	Names                   // a list of names
+	Text          Type = iota // any string
+	Name                      // a string of letters, digits, _ and -, beginning with a letter
+	Word                      // one of a few strings
+	Number                    // a finite number
+	Integer                   // an integer
+	Flag                      // true or false
+	Integers                  // a list of integers
+	Numbers                   // a list of numbers
+	Words                     // a list of strings out of a few
+	WordOrWords               // one of a few strings, or a list of them
+	WordOrNumbers             // one of a few strings, or a list of numbers
+	Polynomials               // a list of strings, one polynomial per site of the cell
+	Names                     // a list of names
 )
 
 // String is the type in words.
 func (t Type) String() string {
 	return [...]string{"a string", "a name", "a word", "a number", "an integer", "true or false", "a list of integers",
-		"a list of numbers", "a list of words", "a word or a list of words", "a list of polynomials", "a list of names"}[t]
+		"a list of numbers", "a list of words", "a word or a list of words", "a word or a list of numbers", "a list of polynomials", "a list of names"}[t]
 }
 
 // Range is an interval of numbers. Its zero value is every finite number.

@@ -22,6 +22,8 @@ func (d *decoder) checkValue(k Key, n *node, path string) {
 		d.checkList(k, one, n, path)
 	case n.kind == kindList && !many && k.Scan:
 		d.wrong(n, path, "takes %s; lists of values belong in [scan]", k.Type)
+	case n.kind != kindList && k.Type == WordOrNumbers:
+		d.checkScalar(k, Word, n, path)
 	case n.kind != kindList && many && k.Type != WordOrWords:
 		d.wrong(n, path, "takes %s: write [%s]", k.Type, n.shown())
 	default:
@@ -34,7 +36,7 @@ func (t Type) elements() (one Type, many bool) {
 	switch t {
 	case Integers:
 		return Integer, true
-	case Numbers:
+	case Numbers, WordOrNumbers:
 		return Number, true
 	case Words, WordOrWords:
 		return Word, true
@@ -115,8 +117,6 @@ func (d *decoder) checkNumber(k Key, t Type, n *node, path string) {
 		d.wrong(n, path, "takes an integer: write %s", strconv.FormatFloat(n.number, 'f', -1, 64))
 	case t == Integer && n.kind == kindFloat:
 		d.wrong(n, path, "takes an integer, not %s", n.shown())
-	case !k.Range.holds(n.number) && k.Name == "levels":
-		d.wrong(n, path, "levels = %s is not supported; this version runs levels = 2", n.shown())
 	case !k.Range.holds(n.number):
 		d.wrong(n, path, "%s is out of range; it must be %s", n.shown(), k.Range)
 	}

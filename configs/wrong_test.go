@@ -85,7 +85,7 @@ func (w wrong) text(t *testing.T) string {
 }
 
 func TestWrongStudies(t *testing.T) {
-	for _, table := range [][]wrong{wrongSyntax, wrongKeys, wrongValues, wrongHamiltonians, wrongBaths, wrongObservables, wrongTimes, wrongScans} {
+	for _, table := range [][]wrong{wrongSyntax, wrongKeys, wrongValues, wrongHamiltonians, wrongBaths, wrongObservables, wrongTimes, wrongScans, wrongLevels} {
 		for _, w := range table {
 			t.Run(w.name, func(t *testing.T) { w.check(t) })
 		}
@@ -126,7 +126,7 @@ func (w wrong) check(t *testing.T) {
 }
 
 func TestBaseStudiesAreRight(t *testing.T) {
-	for _, text := range []string{base, spelt} {
+	for _, text := range []string{base, spelt, pottsSpelt, planarSpelt} {
 		if _, err := Decode("shelf", "", []byte(text)); err != nil {
 			t.Error(err)
 		}
