@@ -84,26 +84,55 @@ func BenchmarkShare(b *testing.B) {
 			if err != nil {
 				b.Fatal(err)
 			}
-			plan := Plan{Settle: 100, Span: 1 << 20, Step: 1}
-			e.Advance(plan.Settle)
-			plan.Step = max(1, size*size/8*plan.Settle/float64(e.Jumps()))
-			r, err := newRecorder(e, g, obs, allPairs(obs), plan)
+			shareOf(b, e, g, obs)
+		})
+	}
+}
+
+// shareOf times jumps and recording apart, so that what else the machine does
+// falls on both.
+func shareOf(b *testing.B, e kinetic.Engine, g *kinetic.Generator, obs []Observable) {
+	plan := Plan{Settle: 100, Span: 1 << 20, Step: 1}
+	e.Advance(plan.Settle)
+	plan.Step = max(1, float64(g.Addresses()*e.Lanes())/8*plan.Settle/float64(e.Jumps()))
+	r, err := newRecorder(e, g, obs, allPairs(obs), plan)
+	if err != nil {
+		b.Fatal(err)
+	}
+	r.stride = r.dirichletStride()
+	var jumping, recording time.Duration
+	before := e.Jumps()
+	for k := int64(0); b.Loop(); k++ {
+		start := time.Now()
+		e.Advance(plan.Settle + float64(k+1)*plan.Step)
+		middle := time.Now()
+		r.take()
+		r.sample(k)
+		jumping += middle.Sub(start)
+		recording += time.Since(middle)
+	}
+	b.ReportMetric(100*float64(recording)/float64(jumping), "%")
+	b.ReportMetric(float64(jumping.Nanoseconds())/float64(e.Jumps()-before), "ns/jump")
+}
+
+// The lane engine at one sample for every N/8 jumps of a lane.
+func BenchmarkShareOfLanes(b *testing.B) {
+	const size = 128
+	g := compile(b, kinetictest.Ising(kinetictest.Lattice(size, size), 0.44, kinetictest.HeatBath))
+	for _, requests := range [][]Request{
+		{{Name: "e", Kind: Energy}, {Name: "m", Kind: Magnetization}},
+		{{Name: "e", Kind: Energy}, {Name: "m", Kind: Magnetization}, {Name: "s", Kind: Local, Family: "spin"}},
+	} {
+		obs, err := Bind(g, requests)
+		if err != nil {
+			b.Fatal(err)
+		}
+		b.Run(fmt.Sprint(len(obs)), func(b *testing.B) {
+			e, err := kinetic.NewLanes(g, [32]byte{1}, 0, kinetic.StartRandom)
 			if err != nil {
 				b.Fatal(err)
 			}
-			r.stride = r.dirichletStride()
-			var jumping, recording time.Duration
-			for k := int64(0); b.Loop(); k++ {
-				start := time.Now()
-				e.Advance(plan.Settle + float64(k+1)*plan.Step)
-				middle := time.Now()
-				r.take()
-				r.sample(k)
-				jumping += middle.Sub(start)
-				recording += time.Since(middle)
-			}
-			b.ReportMetric(100*float64(recording)/float64(jumping), "%")
-			b.ReportMetric(float64(jumping.Nanoseconds())/float64(e.Jumps()), "ns/jump")
+			shareOf(b, e, g, obs)
 		})
 	}
 }

@@ -69,7 +69,7 @@ func bind(g *kinetic.Generator, r Request) (Observable, error) {
 		if err == nil && disordered(g, o.Families) {
 			err = fmt.Errorf("the couplings of family %q differ from term to term, and so do the means of its terms; use kind terms", r.Family)
 		}
-		if err == nil && !g.Lattice.Periodic() && len(sublattice(g, o.Families)) == 0 {
+		if err == nil && !g.Lattice.Periodic() && len(sublattice(g, o.Families, MaxLocal)) == 0 {
 			err = fmt.Errorf("family %q has no term in the middle of the lattice, where single terms are read if there are edges", r.Family)
 		}
 	case Fourier:

@@ -25,7 +25,7 @@ func Bytes(g *kinetic.Generator, obs []Observable, pairs [][2]int, plan Plan, la
 		switch o.Kind {
 		case Local:
 			patterns = true
-			limit := int64(localLimit(g))
+			limit := int64(localLimit(g, lanes))
 			width += trackBytes(g, limit)
 			total += limit * int64(unsafe.Sizeof(chosenTerm{})+unsafe.Sizeof(spot{}))
 			if !g.Lattice.Periodic() {

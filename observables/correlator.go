@@ -11,7 +11,8 @@ type correlator struct {
 	channels int
 	pairs    [][2]int // of channels
 
-	history []float64 // place, lane, channel
+	history []float64 // place, channel, lane
+	totals  []float64 // place, channel: over lanes
 	sums    []pairSums
 	shift   []float64 // by channel
 
@@ -29,6 +30,7 @@ func newCorrelator(tl *timeline, r *reading, pairs [][2]int) *correlator {
 	c := &correlator{
 		tl: tl, lanes: r.lanes, channels: r.channels, pairs: pairs,
 		history: make([]float64, tl.places()*r.lanes*r.channels),
+		totals:  make([]float64, tl.places()*r.channels),
 		sums:    make([]pairSums, PairSegments*len(tl.lags)*len(pairs)),
 		shift:   make([]float64, r.channels),
 	}
@@ -56,33 +58,58 @@ func (c *correlator) add(r *reading) {
 }
 
 func (c *correlator) addChannels(values []float64) {
-	width := c.lanes * c.channels
 	for _, place := range c.tl.stores {
-		at := c.history[int(place)*width:][:width]
-		for i, v := range values {
-			at[i] = v - c.shift[i%c.channels]
+		for i := range c.channels {
+			total := 0.0
+			at := c.of(place, i)
+			for lane := range at {
+				d := values[lane*c.channels+i] - c.shift[i]
+				at[lane] = d
+				total += d
+			}
+			c.totals[int(place)*c.channels+i] = total
 		}
 	}
 	for _, v := range c.tl.visits {
-		first := c.history[int(v.first)*width:][:width]
-		again := c.history[int(v.again)*width:][:width]
+		first := c.totals[int(v.first)*c.channels:][:c.channels]
+		again := c.totals[int(v.again)*c.channels:][:c.channels]
 		sums := c.sums[(int(v.segment)*len(c.tl.lags)+int(v.lag))*len(c.pairs):][:len(c.pairs)]
-		for ; len(first) > 0; first, again = first[c.channels:], again[c.channels:] {
-			for p, pair := range c.pairs {
-				s := &sums[p]
-				i, j := pair[0], pair[1]
-				if i == j {
-					s.f += first[i]
-					s.g += again[i]
-					s.fg += first[i] * again[i]
-					continue
-				}
-				s.f += first[i] + again[i]
-				s.g += first[j] + again[j]
-				s.fg += first[i]*again[j] + first[j]*again[i]
+		for p, pair := range c.pairs {
+			s := &sums[p]
+			i, j := pair[0], pair[1]
+			s.f += first[i]
+			s.g += again[j]
+			s.fg += dot(c.of(v.first, i), c.of(v.again, j))
+			if i != j {
+				s.f += again[i]
+				s.g += first[j]
+				s.fg += dot(c.of(v.first, j), c.of(v.again, i))
 			}
 		}
 	}
+}
+
+// of returns the values of a channel in all lanes at a place of the history.
+func (c *correlator) of(place int32, channel int) []float64 {
+	return c.history[(int(place)*c.channels+channel)*c.lanes:][:c.lanes]
+}
+
+// dot returns the scalar product of vectors of equal length, in four interleaved
+// partial sums.
+func dot(a, b []float64) float64 {
+	var s0, s1, s2, s3 float64
+	for len(a) >= 4 && len(b) >= 4 {
+		s0 += a[0] * b[0]
+		s1 += a[1] * b[1]
+		s2 += a[2] * b[2]
+		s3 += a[3] * b[3]
+		a, b = a[4:], b[4:]
+	}
+	b = b[:len(a)]
+	for i, x := range a {
+		s0 += x * b[i]
+	}
+	return s0 + s1 + s2 + s3
 }
 
 // channelPair returns the sums over pairs of channel pair p, and how many pairs

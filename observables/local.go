@@ -6,11 +6,12 @@ import (
 )
 
 // MaxLocal is the largest number of terms that a Local observable reads: a
-// quarter of it where terms have more than two levels.
+// quarter of it where terms have more than two levels, or there are several
+// lanes.
 const MaxLocal = 4096
 
-func localLimit(g *kinetic.Generator) int {
-	if g.Levels > 2 {
+func localLimit(g *kinetic.Generator, lanes int) int {
+	if g.Levels > 2 || lanes > 1 {
 		return MaxLocal / 4
 	}
 	return MaxLocal
@@ -22,9 +23,9 @@ func localLimit(g *kinetic.Generator) int {
 // terms at different distances from an edge have different means, and the mean
 // over the lattice of their covariances could not be had from their mean value.
 // All chosen terms of a family are images of each other under translations.
-func sublattice(g *kinetic.Generator, families []int) []chosenTerm {
+func sublattice(g *kinetic.Generator, families []int, limit int) []chosenTerm {
 	var out []chosenTerm
-	limit := localLimit(g) / len(families)
+	limit /= len(families)
 	for _, f := range families {
 		loc := newLocator(g, f)
 		lo, hi := extent(g, f)

@@ -23,7 +23,7 @@ func TestSublattice(t *testing.T) {
 		{opened(kinetictest.Lattice(101, 90), 0, 1), 1},
 	} {
 		g := compile(t, kinetictest.Ising(c.l, 0.3, kinetictest.HeatBath))
-		chosen := sublattice(g, []int{g.Lattice.Axes}) // the spins
+		chosen := sublattice(g, []int{g.Lattice.Axes}, MaxLocal) // the spins
 		if len(chosen) < c.least || len(chosen) > MaxLocal {
 			t.Errorf("%v: %d cells, want at least %d", c.l.Lengths(), len(chosen), c.least)
 		}
@@ -54,7 +54,7 @@ func TestLocalOnLargeLattice(t *testing.T) {
 	e := newBundle(t, g, 1, 6)
 	e.Advance(1)
 	levels := levelsOf(g, e, 0)
-	chosen := sublattice(g, obs[0].Families)
+	chosen := sublattice(g, obs[0].Families, MaxLocal)
 	want := 0.0
 	for _, c := range chosen {
 		want += 1 - 2*float64(levels[1][c.cell])

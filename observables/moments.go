@@ -36,14 +36,18 @@ func (m *moments) add(segment int, r *reading) {
 		m.started = true
 	}
 	m.count[segment] += int64(r.lanes)
-	for i, v := range r.values {
-		c := i % channels
-		m.channels[segment*channels+c].add(v - m.shift[c])
+	sums := m.channels[segment*channels:][:channels]
+	for values := r.values; len(values) > 0; values = values[channels:] {
+		for c, v := range values[:channels] {
+			sums[c].add(v - m.shift[c])
+		}
 	}
 	for i, counts := range r.counts {
 		at := m.levels[(segment*m.tracks+i)*m.q:][:m.q]
-		for k, n := range counts {
-			at[k%m.q] += n
+		for ; len(counts) > 0; counts = counts[m.q:] {
+			for s, n := range counts[:m.q] {
+				at[s] += n
+			}
 		}
 	}
 }

@@ -121,15 +121,6 @@ func (p *planePairs) addMembers() {
 	}
 }
 
-func dot(a, b []float64) float64 {
-	var sum float64
-	b = b[:len(a)]
-	for i, x := range a {
-		sum += x * b[i]
-	}
-	return sum
-}
-
 // addTransformed adds the products of all distances by the correlation theorem.
 func (p *planePairs) addTransformed() {
 	n := len(p.sums)

@@ -64,7 +64,7 @@ func newReading(e kinetic.Engine, g *kinetic.Generator, obs []Observable) *readi
 		s := slot{Observable: o, channel: -1, track: -1}
 		switch o.Kind {
 		case Local:
-			s.track = r.addTrack(newLocalTrack(g, sublattice(g, o.Families)))
+			s.track = r.addTrack(newLocalTrack(g, sublattice(g, o.Families, localLimit(g, r.lanes))))
 			r.needTerms(o.Families)
 		case Operator:
 			s.track = r.addTrack(newLineTrack(g, o.Line))

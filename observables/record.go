@@ -200,23 +200,29 @@ func (r *recorder) sample(k int64) {
 	}
 }
 
-// dirichletStride returns every how many samples the Dirichlet forms are
-// taken: a power of two, so that they are at least the inverse of the largest
-// rate of a bath operator apart, and that, at the activity seen while settling,
-// there are half as many jumps as seats in between (a census costs about as much
-// as a jump for every 25 seats); but at least 64 times in each segment, if there
+// dirichletStride returns every how many samples the Dirichlet forms are taken: a
+// power of two, so that they are at least the inverse of the largest rate of a
+// bath operator apart, and cost little beside the jumps in between, at the
+// activity seen while settling; but a number of times in each segment, if there
 // are so many samples. It is fixed before the first sample is taken, so it does
 // not select states.
 func (r *recorder) dirichletStride() int64 {
+	// A census takes about as long as a jump for every 25 seats: it waits for a
+	// jump at every other one. A sum over seats takes longer than a census; with
+	// lanes jumps are quicker, and one time gives many states.
+	wait, least := 0.5, int64(64)
+	switch {
+	case r.g.Couplings != nil:
+		wait *= 8
+	case r.lanes > 1:
+		wait *= 16
+		least = 8
+	}
 	apart := 1 / r.g.MaxRate()
-	seats := float64(r.g.Addresses())
-	if r.g.Couplings != nil {
-		seats *= 8 // the sum over seats takes as much longer than a census
-	}
 	if jumps := float64(r.e.Jumps()) / float64(r.lanes); r.plan.Settle > 0 && jumps > 0 {
-		apart = math.Max(apart, seats/2*r.plan.Settle/jumps)
+		apart = math.Max(apart, wait*float64(r.g.Addresses())*r.plan.Settle/jumps)
 	}
-	most := max(1, r.plan.Samples()/(64*PairSegments))
+	most := max(1, r.plan.Samples()/(least*PairSegments))
 	samples := math.Min(math.Ceil(apart/r.plan.Step), float64(most))
 	if !(samples >= 1) {
 		return 1

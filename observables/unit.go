@@ -50,7 +50,8 @@ type AutocorrelationRow struct {
 //
 //	E(f,g) = 1/2 sum_a r_a (Delta_a f)(Delta_a g)
 //
-// over the times at which it was taken.
+// over the times at which it was taken, and over lanes. Tracked operators with an
+// extent have none in systems of more than two levels.
 type DirichletRow struct {
 	Segment int32 // 0..3
 	F, G    string
