@@ -6,6 +6,8 @@ import (
 	"path/filepath"
 	"strings"
 	"testing"
+
+	"sojourn/kinetic/models"
 )
 
 // The help shows every verb, flag and exit status that there is.
@@ -68,6 +70,38 @@ func TestForeignFlagsAreRefused(t *testing.T) {
 				t.Errorf("%s --%s: status %d, %s", v.name, f.name, status, stderr)
 			}
 		}
+	}
+}
+
+// Every built-in Hamiltonian is listed, and described with its parameters and
+// its source.
+func TestModelsAreDescribed(t *testing.T) {
+	_, all, _ := sojourn("models")
+	for _, m := range models.All() {
+		status, text, _ := sojourn("models", m.Name)
+		if status != exitDone || !strings.Contains(all, text) {
+			t.Errorf("%s: status %d, or the list says something else", m.Name, status)
+		}
+		flat := strings.Join(strings.Fields(text), " ")
+		for _, what := range []string{m.Name, m.Summary, m.Formula, m.Ground, m.Paper} {
+			if !strings.Contains(flat, strings.Join(strings.Fields(what), " ")) {
+				t.Errorf("%s: %q is not said", m.Name, what)
+			}
+		}
+		for _, p := range m.Parameters {
+			if !strings.Contains(flat, p.Name+" = ") {
+				t.Errorf("%s: the parameter %s is not described", m.Name, p.Name)
+			}
+		}
+		for _, line := range strings.Split(text, "\n") {
+			if len(line) > 100 {
+				t.Errorf("%s: a line of %d characters: %s", m.Name, len(line), line)
+			}
+		}
+	}
+	status, _, stderr := sojourn("models", "no-such-model")
+	if status != exitBadRequest || !strings.Contains(stderr, models.All()[0].Name) {
+		t.Errorf("an unknown model: status %d, %s", status, stderr)
 	}
 }
 

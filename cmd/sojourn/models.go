@@ -83,7 +83,9 @@ func (c *console) models(o *options, args []string) error {
 }
 
 func describeModel(b *strings.Builder, m models.Model) {
-	fmt.Fprintf(b, "%s: %s\n", m.Name, m.Summary)
+	for _, line := range wrap(m.Name+": "+m.Summary, pageWidth, "  ") {
+		fmt.Fprintf(b, "%s\n", line)
+	}
 	axes := fmt.Sprintf("%d", m.MinAxes)
 	if m.MaxAxes > m.MinAxes {
 		axes = fmt.Sprintf("%d to %d", m.MinAxes, m.MaxAxes)

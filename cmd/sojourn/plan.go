@@ -77,8 +77,21 @@ func (q *prepared) closedClasses() (all, reached *int) {
 	return number(exact.Everything), number(exact.Moved)
 }
 
+// why says how the point came by its engine.
 func (q *prepared) why() string {
-	return fmt.Sprintf("%s; jumps are drawn by class of equal rate", plural(len(q.generator.Rates)-1, "distinct rate"))
+	t := &q.config.Trajectory
+	rates := plural(len(q.generator.Rates)-1, "distinct rate")
+	if t.Engine != kinetic.AutoEngine {
+		return rates + "; as asked for"
+	}
+	use := kinetic.Use{Step: t.Step}
+	for _, o := range q.observables {
+		use.OneByOne = use.OneByOne || o.Kind == observables.Local || o.Kind == observables.Operator
+	}
+	if name, why, err := kinetic.Choose(q.generator, t.Engine, use); err == nil && name == t.EngineName {
+		return rates + "; " + why
+	}
+	return rates + "; chosen for every point unless asked otherwise"
 }
 
 // diskBytes is roughly what the tables of all trajectories take.

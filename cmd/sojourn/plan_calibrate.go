@@ -48,7 +48,7 @@ func (q *prepared) calibrate() (load, error) {
 
 // timed records the first trajectory under a plan and returns how long it took.
 func (q *prepared) timed(plan observables.Plan) (time.Duration, error) {
-	e, err := q.engine(0)
+	e, err := q.begin(0)
 	if err != nil {
 		return 0, err
 	}
@@ -62,7 +62,7 @@ func (q *prepared) timed(plan observables.Plan) (time.Duration, error) {
 // long enough to leave the start behind: at least 100 000 jumps, and two on
 // every site unless that takes too long.
 func (q *prepared) jumpRate() (float64, error) {
-	e, err := q.engine(0)
+	e, err := q.begin(0)
 	if err != nil {
 		return 0, err
 	}

@@ -67,7 +67,7 @@ func jsonOfPlan(s *configs.Study, list []planned) planJSON {
 			Point: i, Key: p.config.Key, Model: p.config.Model, Beta: p.config.Spec.Beta, Length: size[0], Size: size,
 			Sites: p.sites(), Terms: map[string]int{}, Closed: p.closed, Reached: p.reached, Engine: p.config.Trajectory.EngineName, Why: p.why(),
 			Units: p.config.Trajectory.Count, Samples: p.plan.Samples(), Lags: observables.Lags(p.plan.Samples()), Step: p.plan.Step,
-			Bytes: p.bytes(), DiskBytes: p.diskBytes(), Jumps: math.Round(p.load.jumps), Seconds: p.load.seconds,
+			Bytes: p.bytes, DiskBytes: p.diskBytes(), Jumps: math.Round(p.load.jumps), Seconds: p.load.seconds,
 		}
 		for _, f := range p.generator.Families {
 			if f.Energy != nil {

@@ -15,15 +15,16 @@ func planText(s *configs.Study, list []planned, workers int) string {
 		head += ": " + s.Title
 	}
 	var total load
-	units, disk := 0, int64(0)
+	units, trajectories, disk := 0, 0, int64(0)
 	for i := range list {
 		total.jumps += list[i].load.jumps
 		total.seconds += list[i].load.seconds
 		units += list[i].config.Trajectory.Count
+		trajectories += list[i].config.Trajectory.Count * list[i].lanes
 		disk += list[i].diskBytes()
 	}
 	fmt.Fprintf(&b, "%s\n%s, %s, about %s jumps; about %s on one processor, %s on %d here; about %s of tables\n\n",
-		head, plural(len(list), "point"), plural(units, "trajectory"), count(total.jumps), duration(total.seconds),
+		head, plural(len(list), "point"), plural(trajectories, "trajectory"), count(total.jumps), duration(total.seconds),
 		duration(total.seconds/float64(min(workers, units))), workers, bytesOf(disk))
 	t := newSheet("point", "beta", "size", "", "sites", "trajectories", "settle", "span", "samples", "lags", "jumps", "time", "memory").text(2, 3)
 	for i := range list {
@@ -36,8 +37,8 @@ func planText(s *configs.Study, list []planned, workers int) string {
 			}
 		}
 		t.add(fmt.Sprint(i), shortest(p.config.Spec.Beta), sizeText(p.generator.Lattice.Lengths()), strings.Join(others, ", "),
-			fmt.Sprint(p.sites()), fmt.Sprint(x.Count), shortest(x.Settle), shortest(x.Span), count(float64(p.plan.Samples())),
-			fmt.Sprint(len(observables.Lags(p.plan.Samples()))), count(p.load.jumps), duration(p.load.seconds), bytesOf(p.bytes()))
+			fmt.Sprint(p.sites()), fmt.Sprint(x.Count*p.lanes), shortest(x.Settle), shortest(x.Span), count(float64(p.plan.Samples())),
+			fmt.Sprint(len(observables.Lags(p.plan.Samples()))), count(p.load.jumps), duration(p.load.seconds), bytesOf(p.bytes))
 	}
 	t.write(&b, "  ")
 	b.WriteString("\n")

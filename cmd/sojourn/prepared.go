@@ -23,7 +23,9 @@ type prepared struct {
 	generator   *kinetic.Generator
 	observables []observables.Observable
 	plan        observables.Plan
-	spins       bool // whether there is a magnetization, so that starts up and down mean something
+	lanes       int   // trajectories in a unit
+	bytes       int64 // of memory, while one unit runs
+	spins       bool  // whether there is a magnetization, so that starts up and down mean something
 }
 
 // siteFloor is what any engine needs at least, in bytes per site. It serves to
@@ -60,8 +62,14 @@ func prepare(p *configs.Point, available int64) (*prepared, error) {
 	for i := range g.Families {
 		q.spins = q.spins || g.Families[i].Order && g.Families[i].Terms > 0
 	}
-	if need := q.bytes(); available > 0 && need > available {
-		return nil, tooLarge(p, float64(need), available)
+	name := p.Trajectory.EngineName
+	if err := kinetic.CheckEngine(name, g); err != nil {
+		return nil, badRequest("%s: %w", pointText(p), err)
+	}
+	q.lanes = kinetic.EngineLanes(name)
+	q.bytes = kinetic.EngineBytes(name, g) + observables.Bytes(g, q.observables, p.Pairs, q.plan, q.lanes)
+	if available > 0 && q.bytes > available {
+		return nil, tooLarge(p, float64(q.bytes), available)
 	}
 	return q, nil
 }
@@ -112,12 +120,6 @@ func planOf(p *configs.Point) observables.Plan {
 	return plan
 }
 
-// bytes is the memory that one unit takes while it runs.
-func (q *prepared) bytes() int64 {
-	return kinetic.ClassBytes(q.generator) +
-		observables.Bytes(q.generator, q.observables, q.config.Pairs, q.plan, 1)
-}
-
 // start is the state in which a unit begins. With `both` even units start up and
 // odd ones down, or where there are no spins from the reference and at random.
 func (q *prepared) start(unit int) kinetic.Start {
@@ -134,8 +136,9 @@ func (q *prepared) start(unit int) kinetic.Start {
 	return odd
 }
 
-func (q *prepared) engine(unit int) (kinetic.Engine, error) {
-	return kinetic.NewClasses(q.generator, q.config.Stream, unit, q.start(unit))
+// begin returns the engine at the start of a unit.
+func (q *prepared) begin(unit int) (kinetic.Engine, error) {
+	return kinetic.NewEngine(q.config.Trajectory.EngineName, q.generator, q.config.Stream, unit, q.start(unit))
 }
 
 // siteRate is the largest total rate of one site.
@@ -150,7 +153,7 @@ func (q *prepared) cost() sharing.Cost {
 	t := &q.config.Trajectory
 	return sharing.Cost{
 		Sites: float64(q.sites()), Rate: q.siteRate(), Time: t.Settle + t.Span,
-		Samples: float64(q.plan.Samples()), Lanes: 1,
+		Samples: float64(q.plan.Samples()), Lanes: float64(q.lanes),
 	}
 }
 
@@ -182,7 +185,7 @@ func (q *prepared) facts() (archive.Facts, error) {
 	c, g := q.config, q.generator
 	f := archive.Facts{
 		Model: c.Model, Beta: c.Spec.Beta, Size: g.Lattice.Lengths(),
-		Sites: q.sites(), Levels: g.Levels, Engine: c.Trajectory.EngineName, Lanes: 1, Start: c.Trajectory.Start,
+		Sites: q.sites(), Levels: g.Levels, Engine: c.Trajectory.EngineName, Lanes: q.lanes, Start: c.Trajectory.Start,
 		Seed: c.Trajectory.Seed, Settle: c.Trajectory.Settle, Span: c.Trajectory.Span, Step: c.Trajectory.Step,
 		Lags: observables.Lags(q.plan.Samples()), MaxRate: c.MaxRate, Pairs: c.Pairs,
 		Families: []archive.Family{}, Bath: []archive.BathFact{}, Observables: []archive.Observable{},

@@ -142,7 +142,7 @@ func jobPoints(d *archive.Dir, points []*prepared) []sharing.Point {
 
 // record runs one unit.
 func (q *prepared) record(ctx context.Context, unit int, audit bool, progress func(uint64)) (observables.Unit, error) {
-	e, err := q.engine(unit)
+	e, err := q.begin(unit)
 	if err != nil {
 		return observables.Unit{}, err
 	}
@@ -275,7 +275,7 @@ func (c *console) workersOf(o *options, points []*prepared, room int64) (int, er
 	}
 	var largest int64
 	for _, q := range points {
-		largest = max(largest, q.bytes())
+		largest = max(largest, q.bytes)
 	}
 	if fit := room / max(largest, 1); room > 0 && int64(workers) > fit {
 		c.warn("only %s at a time: each needs %s of memory, and there are %s", plural(int(fit), "trajectory"), bytesOf(largest), bytesOf(room))
