@@ -7,6 +7,7 @@ import (
 	"os"
 	"path/filepath"
 	"regexp"
+	"runtime"
 	"strconv"
 	"strings"
 	"testing"
@@ -23,7 +24,9 @@ import (
 // "stdout N" and "stderr N" of the Nth command (a missing one is empty). Times
 // and speeds, which differ from run to run, stand as <time> and <speed>. A
 // command that must end with status 2 must leave the directory as it found it.
-// With -update the sections of output are rewritten.
+// With -update the sections of output are rewritten. Numbers that come from
+// trajectories are the same bit for bit on one architecture only: a script that
+// prints some says "# golden on amd64", and elsewhere its output is not compared.
 type script struct {
 	path     string
 	head     string
@@ -146,6 +149,9 @@ func playScript(t *testing.T, s *script) {
 	}
 	if *update {
 		rewriteScript(t, s, outputs)
+		return
+	}
+	if strings.Contains(s.head, "# golden on amd64") && runtime.GOARCH != "amd64" {
 		return
 	}
 	for i := range s.commands {
