@@ -96,7 +96,7 @@ func (q *prepared) why() string {
 
 // diskBytes is roughly what the tables of all trajectories take.
 func (q *prepared) diskBytes() int64 {
-	const perRow = 30 // bytes, compressed, as found on the bundled studies
+	const perRow = 8 // bytes, compressed, as found on the bundled studies
 	lags := len(observables.Lags(q.plan.Samples()))
 	rows := len(q.observables)*observables.MomentSegments + len(q.config.Pairs)*observables.PairSegments*(lags+1) +
 		len(q.observables)*len(observables.TransientTimes(q.plan.Settle, q.plan.Span, q.plan.Step)) + 1
