@@ -51,7 +51,7 @@ func readManifest(path string) (*Manifest, error) {
 	file := filepath.Join(path, manifestFile)
 	data, err := os.ReadFile(file)
 	if err != nil {
-		return nil, err
+		return nil, durable.Explain("read", file, err)
 	}
 	var m Manifest
 	if err := readJSON(file, data, &m); err != nil {

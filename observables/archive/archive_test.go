@@ -185,6 +185,20 @@ func TestPrepareRefusesAndWritesNothing(t *testing.T) {
 	}
 }
 
+func TestPrepareOnAFile(t *testing.T) {
+	path := filepath.Join(t.TempDir(), "results")
+	if err := os.WriteFile(path, []byte("text"), 0o666); err != nil {
+		t.Fatal(err)
+	}
+	_, openErr := Open(path)
+	_, err := Prepare(path, testManifest(4, 0), []byte(studyText))
+	for _, err := range []error{err, openErr} {
+		if err == nil || !strings.HasPrefix(err.Error(), path) || !strings.Contains(err.Error(), "a file stands where a directory is needed") {
+			t.Errorf("error %v", err)
+		}
+	}
+}
+
 func TestPrepareGoesOnAfterACrash(t *testing.T) {
 	path := t.TempDir()
 	// What can be there before the manifest is.

@@ -51,7 +51,7 @@ func checkEmpty(path string, study []byte) error {
 		return nil
 	}
 	if err != nil {
-		return fmt.Errorf("%w; choose a directory that you may read and write", err)
+		return durable.Explain("read", path, err)
 	}
 	ours := []string{partsDir, receiptsDir, journalDir, claimsDir, fitsDir}
 	for _, e := range entries {

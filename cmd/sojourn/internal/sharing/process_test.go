@@ -3,6 +3,7 @@ package sharing
 import (
 	"bufio"
 	"context"
+	"errors"
 	"fmt"
 	"io"
 	"math/rand/v2"
@@ -48,7 +49,11 @@ func child(args []string) int {
 	var ran atomic.Int64
 	j := job(&t, prepare(&t, path, points), points, workers, &ran)
 	fmt.Print(opened)
-	if len(args) > 4 {
+	switch {
+	case len(args) == 4:
+	case args[4] == "together":
+		io.ReadAll(os.Stdin) // until all are there
+	default:
 		j.Run = stubborn(args[4])
 	}
 	o, err := j.Work(ctx)
@@ -84,35 +89,57 @@ func (quiet) Helper()           {}
 func (quiet) Log(...any)        {}
 func (quiet) Fatal(args ...any) { panic(fmt.Sprint(args...)) }
 
+// process is a child that runs.
+type process struct {
+	*exec.Cmd
+	in  io.WriteCloser
+	out *bufio.Reader
+}
+
 // start starts a child.
-func start(t *testing.T, args ...any) (cmd *exec.Cmd, out io.Reader) {
+func start(t *testing.T, args ...any) process {
 	t.Helper()
 	var text []string
 	for _, a := range args {
 		text = append(text, fmt.Sprint(a))
 	}
-	cmd = exec.Command(os.Args[0], text...)
+	cmd := exec.Command(os.Args[0], text...)
 	cmd.Env = append(os.Environ(), "SHARING_TEST_CHILD=1")
 	cmd.Stderr = os.Stderr
-	pipe, err := cmd.StdoutPipe()
-	if err != nil {
+	in, errIn := cmd.StdinPipe()
+	out, errOut := cmd.StdoutPipe()
+	if err := errors.Join(errIn, errOut); err != nil {
 		t.Fatal(err)
 	}
 	if err := cmd.Start(); err != nil {
 		t.Fatal(err)
 	}
 	t.Cleanup(func() { cmd.Process.Kill() })
-	return cmd, pipe
+	return process{cmd, in, bufio.NewReader(out)}
+}
+
+// await reads up to a line that a child must say.
+func (p process) await(t *testing.T, line string) {
+	t.Helper()
+	for {
+		got, err := p.out.ReadString('\n')
+		if err != nil {
+			t.Fatalf("it never says %q: %v", line, err)
+		}
+		if got == line {
+			return
+		}
+	}
 }
 
 // outcome waits for a child that shall end well.
-func outcome(t *testing.T, cmd *exec.Cmd, out io.Reader) (ran, left int) {
+func (p process) outcome(t *testing.T) (ran, left int) {
 	t.Helper()
-	text, _ := io.ReadAll(out)
-	if err := cmd.Wait(); err != nil {
+	text, _ := io.ReadAll(p.out)
+	if err := p.Wait(); err != nil {
 		t.Fatalf("%v\n%s", err, text)
 	}
-	if _, err := fmt.Sscanf(strings.TrimPrefix(string(text), opened), "ran %d left %d", &ran, &left); err != nil {
+	if _, err := fmt.Sscanf(string(text), "ran %d left %d", &ran, &left); err != nil {
 		t.Fatalf("%v in %q", err, text)
 	}
 	return ran, left
@@ -120,10 +147,14 @@ func outcome(t *testing.T, cmd *exec.Cmd, out io.Reader) (ran, left int) {
 
 func TestTwoProcessesShareTheWork(t *testing.T) {
 	path := t.TempDir()
-	a, outA := start(t, path, 4, 40, 1)
-	b, outB := start(t, path, 4, 40, 2)
-	ranA, leftA := outcome(t, a, outA)
-	ranB, leftB := outcome(t, b, outB)
+	a := start(t, path, 4, 40, 1, "together")
+	b := start(t, path, 4, 40, 2, "together")
+	a.await(t, opened)
+	b.await(t, opened)
+	a.in.Close()
+	b.in.Close()
+	ranA, leftA := a.outcome(t)
+	ranB, leftB := b.outcome(t)
 	t.Logf("%d and %d units", ranA, ranB)
 	if ranA+ranB != 160 || ranA < 16 || ranB < 16 {
 		t.Errorf("the processes ran %d and %d of 160 units", ranA, ranB)
@@ -139,39 +170,40 @@ func TestTwoProcessesShareTheWork(t *testing.T) {
 func TestKilledProcessesLoseNothingButRunningUnits(t *testing.T) {
 	path := t.TempDir()
 	random := rand.New(rand.NewPCG(20261201, 7)) // moments of the kills; not reproducible in what they hit
-	kills, done := 0, 0
+	kills := 0
 	for _, count := range []int{6, 21} {
 		for complete := false; !complete; {
-			cmd, out := start(t, path, 3, count, 2)
+			child := start(t, path, 3, count, 2)
 			// One in four ends while it opens the directory, the others while
 			// they work. The first three are too short for all 63 units, 3 ms
 			// each; later ones live longer, so that it ends on any machine.
-			lines := bufio.NewReader(out)
 			if random.IntN(4) > 0 {
-				lines.ReadString('\n')
+				child.await(t, opened)
 			}
 			longest := 20
 			if kills >= 3 {
 				longest = 60 + 4*kills
 			}
 			life := time.Duration(random.IntN(longest)) * time.Millisecond
-			timer := time.AfterFunc(life, func() { cmd.Process.Kill() })
-			text, _ := io.ReadAll(lines)
-			err := cmd.Wait()
+			timer := time.AfterFunc(life, func() { child.Process.Kill() })
+			text, _ := io.ReadAll(child.out)
+			err := child.Wait()
 			timer.Stop()
 			checkReadable(t, path)
-			if err != nil {
+			var ran, left int
+			_, unsaid := fmt.Sscanf(strings.TrimPrefix(string(text), opened), "ran %d left %d", &ran, &left)
+			switch {
+			case unsaid == nil && left > 0:
+				t.Fatalf("%d parts are left by a process that was alone", left)
+			case unsaid == nil: // if it was killed, then on its way out
+				complete = true
+			case err == nil:
+				t.Fatalf("it ended without a word: %s", text)
+			default:
 				if kills++; kills > 200 {
 					t.Fatalf("killed 200 times and not done: %s", text)
 				}
-				continue
 			}
-			var ran, left int
-			fmt.Sscanf(strings.TrimPrefix(string(text), opened), "ran %d left %d", &ran, &left)
-			if complete = left == 0; !complete {
-				t.Errorf("%d parts are left by a process that was alone", left)
-			}
-			done++
 		}
 		checkWhole(t, path, testPoints(3, count))
 	}
@@ -204,32 +236,36 @@ func checkReadable(t *testing.T, path string) {
 
 func TestSignals(t *testing.T) {
 	for _, s := range []syscall.Signal{syscall.SIGINT, syscall.SIGTERM} {
-		cmd, out := start(t, t.TempDir(), 1, 8, 1, "patient")
-		lines := bufio.NewScanner(out)
-		for lines.Scan() && lines.Text() != "running" {
-		}
+		child := start(t, t.TempDir(), 1, 8, 1, "patient")
+		child.await(t, "running\n")
 		sent := time.Now()
-		cmd.Process.Signal(s)
-		for lines.Scan() {
-			t.Log(lines.Text())
-		}
-		cmd.Wait()
-		if code := cmd.ProcessState.ExitCode(); code != 3 {
+		child.Process.Signal(s)
+		io.Copy(io.Discard, child.out)
+		child.Wait()
+		if code := child.ProcessState.ExitCode(); code != 3 {
 			t.Errorf("%v: exit status %d, want 3", s, code)
 		}
 		if took := time.Since(sent); took > 3*time.Second {
 			t.Errorf("%v: it took %v", s, took)
 		}
 
-		cmd, out = start(t, t.TempDir(), 1, 8, 1, "deaf")
-		lines = bufio.NewScanner(out)
-		for lines.Scan() && lines.Text() != "running" {
+		child = start(t, t.TempDir(), 1, 8, 1, "deaf")
+		child.await(t, "running\n")
+		ended := make(chan struct{})
+		go func() {
+			child.Wait()
+			close(ended)
+		}()
+		// Two signals that meet may count as one: it is sent until it acts.
+		for waiting := true; waiting; {
+			child.Process.Signal(s)
+			select {
+			case <-ended:
+				waiting = false
+			case <-time.After(100 * time.Millisecond):
+			}
 		}
-		cmd.Process.Signal(s)
-		time.Sleep(100 * time.Millisecond)
-		cmd.Process.Signal(s)
-		cmd.Wait()
-		if code := cmd.ProcessState.ExitCode(); code != 128+int(s) {
+		if code := child.ProcessState.ExitCode(); code != 128+int(s) {
 			t.Errorf("%v twice: exit status %d, want %d", s, code, 128+int(s))
 		}
 	}

@@ -30,7 +30,8 @@ func (s Share) whole() bool { return s.Tasks <= 1 }
 
 // arrays lists, by batch system, the variables that describe an array job: this
 // task's index, the first and the last one, and the step between them; and, if
-// there is one, their number. Names from memory of the systems' manuals.
+// there is one, their number. Slurm's are as its jobs see them; Grid Engine's are
+// from memory of its manual.
 var arrays = []struct{ index, first, last, step, count string }{
 	{"SLURM_ARRAY_TASK_ID", "SLURM_ARRAY_TASK_MIN", "SLURM_ARRAY_TASK_MAX", "SLURM_ARRAY_TASK_STEP", "SLURM_ARRAY_TASK_COUNT"},
 	{"SGE_TASK_ID", "SGE_TASK_FIRST", "SGE_TASK_LAST", "SGE_TASK_STEPSIZE", ""},
