@@ -11,58 +11,70 @@ const CompositionEngine = "composition"
 
 // composition draws trajectories where rates form a continuum, by composition
 // and rejection (A. Slepoy, A. P. Thompson, S. J. Plimpton, J. Chem. Phys. 128,
-// 205101 (2008)): seats are listed by the octave of their rate, a seat of an
-// octave is drawn uniformly and kept with probability rate/(top of the octave),
-// which is at least 1/2. Each seat's rate is computed afresh from its pattern
-// and couplings whenever the pattern changes, and no sum of rates is kept, so
-// nothing drifts. Energies are integers.
+// 205101 (2008)): seats are listed by the octave, or rather half octave, of a
+// bound of their rate, a seat of an octave is drawn uniformly and kept with
+// probability rate/(top of the octave). The bound comes from the pattern and
+// the couplings by integers and a table, the rate is computed when a seat is
+// drawn, and no sum of rates is kept, so nothing drifts. Energies are integers.
 type composition struct {
 	listing
 	tally
 	hot    hot
 	rate   *seatRates
-	seat   []ratedSeat
+	tags   []uint64 // by seat: its position in the arena, its octave and its pattern
 	octave octaves
 	heat   int64 // the energy, in units of Couplings.Unit
 }
 
-// ratedSeat is what the engine keeps of a seat: its position in the arena,
-// shifted, with its pattern, and its rate.
-type ratedSeat struct {
-	tag  uint64
-	rate float64
+// A tag holds the position from bit tagAt, the octave from bit tagOctave and the
+// pattern in the bits below.
+const (
+	tagOctave = MaxBits
+	tagAt     = 32
+)
+
+// octaves maps bounds of rates to classes. Class 0 is rate 0. The first is for
+// all rates up to its top; each further one reaches from the top of the one
+// before it to its own, which is 3/2 or 4/3 of that: a power of 2, or half as
+// much again.
+type octaves struct {
+	base, count int
 }
 
-// octaves maps rates to classes: class 0 is rate 0, class 1 all rates below
-// 2^(base+1), class k > 1 those in [2^(base+k-1), 2^(base+k)).
-type octaves struct{ base int }
+// octaveShift leaves exponent and first bit of a double.
+const octaveShift = 51
 
-// octaveCount is how many octaves are told apart. Rates more than 2^-62 below
-// the fastest share the lowest, which is then hardly ever drawn.
-const octaveCount = 63
+// octaveCount bounds the number of classes. Rates more than 2^-60 below the
+// fastest share the lowest, which is then hardly ever drawn.
+const octaveCount = 120
 
-func newOctaves(maxRate float64) (octaves, []float64) {
-	_, e := math.Frexp(maxRate)
-	o := octaves{base: e + 1 - octaveCount} // maxRate < 2^e, and rounding must not pass the top
-	tops := make([]float64, octaveCount+1)
-	for k := 1; k < len(tops); k++ {
-		tops[k] = math.Ldexp(1, o.base+k)
-	}
-	return o, tops
+// newOctaves covers rates from least to most.
+func newOctaves(most, least float64) octaves {
+	low, high := int(math.Float64bits(least)>>octaveShift), int(math.Float64bits(most)>>octaveShift)
+	count := min(max(high-low+1, 1), octaveCount)
+	return octaves{high - count, count}
 }
 
-func (o octaves) class(rate float64) uint32 {
+// of returns the class of a bound.
+func (o *octaves) of(rate float64) uint32 {
 	if rate == 0 {
 		return 0
 	}
-	// The biased exponent x says 2^(x-1023) <= rate < 2^(x-1022).
-	k := int(math.Float64bits(rate)>>52) - 1022 - o.base
-	return uint32(max(k, 1))
+	return uint32(max(int(math.Float64bits(rate)>>octaveShift)-o.base, 1))
+}
+
+// tops lists the largest rate of each class.
+func (o *octaves) tops() []float64 {
+	tops := make([]float64, o.count+1)
+	for k := 1; k < len(tops); k++ {
+		tops[k] = math.Float64frombits(uint64(o.base+k+1) << octaveShift)
+	}
+	return tops
 }
 
 // NewComposition returns the composition engine, for couplings that vary from
-// term to term (q = 2). It needs about 21 bytes per seat and 4 for each of its
-// slots.
+// term to term (q = 2). It needs about 13 bytes per seat and 12 for each of its
+// terms.
 func NewComposition(g *Generator, seed [32]byte, unit int, start Start) (Engine, error) {
 	if err := checkComposition(g); err != nil {
 		return nil, err
@@ -72,21 +84,25 @@ func NewComposition(g *Generator, seed [32]byte, unit int, start Start) (Engine,
 	if err != nil {
 		return nil, err
 	}
-	e := &composition{hot: newHot(g), rate: newSeatRates(g), seat: make([]ratedSeat, len(s.patterns))}
-	most := e.rate.maxSeat()
+	e := &composition{hot: newHot(g), rate: newSeatRates(g), tags: make([]uint64, len(s.patterns))}
+	e.rate.findBins()
+	most, least := e.rate.most()
 	if math.IsInf(most, 0) || math.IsNaN(most) {
 		return nil, fmt.Errorf("the rates reach beyond the largest number at beta = %v", g.Spec.Beta)
 	}
-	var tops []float64
-	e.octave, tops = newOctaves(most)
+	e.octave = newOctaves(most, least)
+	for _, c := range e.rate.bins {
+		for i, x := range c.bounds {
+			c.octave[i] = uint8(e.octave.of(x.ceiling))
+		}
+	}
 	e.listing = listing{
-		rates: tops, seats: len(e.seat), touches: e.hot.touches,
+		rates: e.octave.tops(), seats: len(e.tags), touches: e.hot.touches,
 		src: newSource(seed, unit, "jumps"),
 	}
 	for a, p := range s.patterns {
-		e.seat[a].tag = uint64(p)
+		e.tags[a] = uint64(p)
 	}
-	e.computeRates()
 	e.fill()
 	e.tally = newTally(g, s.patterns, s.lines, e.hot.words)
 	e.heat = e.sumEnergy(s.patterns)
@@ -97,24 +113,19 @@ func NewComposition(g *Generator, seed [32]byte, unit int, start Start) (Engine,
 
 // CompositionBytes estimates the memory of one composition engine.
 func CompositionBytes(g *Generator) int64 {
-	slots := 0
-	for _, s := range g.Seats {
-		slots = max(slots, len(s.Slots))
-	}
 	n := int64(g.Addresses())
-	return n*(16+4*int64(slots)) + 4*int64(arenaSize(g.Addresses(), octaveCount+1)) + g.tableBytes()
+	return n*(8+12*int64(g.energySlots())) + 4*int64(arenaSize(g.Addresses(), octaveCount+1)) + g.tableBytes()
 }
 
-func (e *composition) pattern(a int) uint32 { return uint32(e.seat[a].tag) & e.hot.mask }
+func (e *composition) pattern(a int) uint32 { return uint32(e.tags[a]) & e.hot.mask }
+
+// class is the octave of a seat, as its tag says.
+func (e *composition) class(a int) uint32 { return uint32(e.tags[a]>>tagOctave) & 0xffff }
 
 func (e *composition) patterns() []uint16 {
-	p := make([]uint16, len(e.seat))
+	p := make([]uint16, len(e.tags))
 	e.Patterns(0, p)
 	return p
-}
-
-func (e *composition) computeRates() {
-	e.rate.each(func(a int, shape uint16) { e.seat[a].rate = e.rate.total(a, shape, e.pattern(a)) })
 }
 
 // sumEnergy adds up the energy of all terms.
@@ -138,14 +149,16 @@ func (e *composition) sumEnergy(patterns []uint16) int64 {
 
 func (e *composition) fill() {
 	var counts [256]int
-	for a := range e.seat {
-		counts[e.octave.class(e.seat[a].rate)]++
-	}
+	e.rate.each(func(a int, shape uint16) {
+		k := e.rate.octave(a, shape, e.pattern(a), &e.octave)
+		e.tags[a] = uint64(k)<<tagOctave | uint64(e.pattern(a))
+		counts[k]++
+	})
 	e.layOut(&counts)
-	for a := range e.seat {
-		k := e.octave.class(e.seat[a].rate)
+	for a := range e.tags {
+		k := e.class(a)
 		e.arena[e.end[k]] = uint32(a)
-		e.seat[a].tag = uint64(e.end[k])<<e.hot.bits | uint64(e.pattern(a))
+		e.tags[a] |= uint64(e.end[k]) << tagAt
 		e.end[k]++
 	}
 }
@@ -153,10 +166,8 @@ func (e *composition) fill() {
 func (e *composition) refresh() {
 	for !e.setBounds() {
 		moved := e.widen()
-		for a := range e.seat {
-			s := &e.seat[a]
-			at := uint32(s.tag>>e.hot.bits) + moved[e.octave.class(s.rate)]
-			s.tag = uint64(at)<<e.hot.bits | uint64(e.pattern(a))
+		for a := range e.tags {
+			e.tags[a] += uint64(moved[e.class(a)]) << tagAt // mod 2^32
 		}
 	}
 	e.newStretch()
@@ -187,39 +198,34 @@ func (e *composition) attempt(tk token) (over bool) {
 		return false
 	}
 	j := e.arena[tk.at]
-	s := &e.seat[j]
-	// A seat is kept if u*top < rate; the move is the one in whose share of the
-	// rate u*top falls.
-	x := uniform(tk.rest) * e.rates[tk.class]
-	if x >= s.rate {
-		e.nulls++
-		return false
-	}
 	h := &e.hot
 	hi, _ := bits.Mul64(uint64(j), h.magic)
 	row := uint32(hi) + j&h.single
 	col := j - row*h.rowLen
 	place := &h.places[e.g.Row[row]+uint32(e.g.Col[col])]
-	pattern := uint32(s.tag) & h.mask
-	move, w := e.choose(int(j), place, pattern, x)
-	mv := &h.moves[move]
+	pattern := uint32(e.tags[j]) & h.mask
+	move, w := e.rate.choose(int(j), place.shape, pattern, uniform(tk.rest)*e.rates[tk.class])
+	if move < 0 {
+		e.nulls++
+		return false
+	}
+	mv := &h.moves[place.first+uint32(move)]
 	for i := range h.words {
 		e.packed[i] += h.delta[mv.delta+pattern*h.words+i]
 	}
 	e.heat -= 2 * w
-	mask := uint64(h.mask)
 	for i := mv.first; i < mv.energy; i++ {
 		touch := &e.g.Touch[i]
 		a := uint32(int32(j) + touch.Delta)
-		t := &e.seat[a]
-		p := e.g.Tables[touch.Table+uint32(t.tag&mask)] & 0xffff
-		rate := e.rate.total(int(a), e.g.tableShape[touch.Table>>h.bits], p)
-		over = e.shift(a, t, rate, p) || over
+		p := e.g.Tables[touch.Table+uint32(e.tags[a])&h.mask] & 0xffff
+		to := e.rate.octave(int(a), e.g.tableShape[touch.Table>>h.bits], p, &e.octave)
+		over = e.shift(a, to, p) || over
 	}
+	mask := uint64(h.mask)
 	for i := mv.energy; i < mv.last; i++ {
 		touch := &e.g.Touch[i]
-		t := &e.seat[uint32(int32(j)+touch.Delta)]
-		t.tag = t.tag&^mask | uint64(e.g.Tables[touch.Table+uint32(t.tag&mask)]&0xffff)
+		t := &e.tags[uint32(int32(j)+touch.Delta)]
+		*t = *t&^mask | uint64(e.g.Tables[touch.Table+uint32(*t&mask)]&0xffff)
 	}
 	if mv.firstHit < mv.lastHit {
 		e.hitLines(mv, row, col)
@@ -231,45 +237,22 @@ func (e *composition) attempt(tk token) (over bool) {
 	return over
 }
 
-// choose returns the move in whose share of the seat's rate x falls, and the
-// energy that it hands to the bath.
-func (e *composition) choose(a int, place *hotPlace, pattern uint32, x float64) (move uint32, w int64) {
-	moves := e.rate.moves[place.shape]
-	last, lastW := uint32(0), int64(0)
-	for i := range moves {
-		rate, w := e.rate.move(a, &moves[i], pattern)
-		if rate > 0 {
-			last, lastW = uint32(i), w
-			if x < rate {
-				break
-			}
-		}
-		x -= rate
-	}
-	return place.first + last, lastW
-}
-
-// shift gives a seat a new rate and pattern; it returns true if the class it
+// shift gives a seat a new octave and pattern; it returns true if the octave it
 // enters passes its bound.
-func (e *composition) shift(a uint32, s *ratedSeat, rate float64, pattern uint32) bool {
-	from, to := e.octave.class(s.rate)&255, e.octave.class(rate)&255
-	s.rate = rate
-	width := e.hot.bits
-	if from == to {
-		s.tag = s.tag>>width<<width | uint64(pattern)
-		return false
-	}
+func (e *composition) shift(a uint32, to, pattern uint32) bool {
+	tag := e.tags[a]
+	from := uint32(tag>>tagOctave) & 255
 	last := e.end[from] - 1
 	e.end[from] = last
 	moved := e.arena[last]
-	at := s.tag >> width
+	at := tag >> tagAt
 	e.arena[at] = moved
-	e.seat[moved].tag = e.seat[moved].tag&uint64(e.hot.mask) | at<<width
-	end := e.end[to]
+	e.tags[moved] = e.tags[moved]&(1<<tagAt-1) | at<<tagAt
+	end := e.end[to&255]
 	e.arena[end] = a
-	e.end[to] = end + 1
-	s.tag = uint64(end)<<width | uint64(pattern)
-	return end >= e.bound[to]
+	e.end[to&255] = end + 1
+	e.tags[a] = uint64(end)<<tagAt | uint64(to)<<tagOctave | uint64(pattern)
+	return end >= e.bound[to&255]
 }
 
 func (e *composition) Sums(dst []int64) []int64 { return e.appendSums(dst) }
@@ -288,22 +271,25 @@ func (e *composition) Terms(family, _ int, dst []uint8) {
 }
 
 func (e *composition) Patterns(_ int, dst []uint16) {
-	for a := range e.seat {
+	for a := range e.tags {
 		dst[a] = uint16(e.pattern(a))
 	}
 }
 
-// Audit checks lists, tags, rates, levels, sums and the energy.
+// Audit checks lists, tags, octaves, levels, sums and the energy.
 func (e *composition) Audit() error {
-	for a := range e.seat {
-		s := &e.seat[a]
-		k := e.octave.class(s.rate)
-		at := uint32(s.tag >> e.hot.bits)
-		if at < e.first[k] || at >= e.end[k] || e.arena[at] != uint32(a) {
+	for a := range e.tags {
+		k := e.class(a)
+		at := uint32(e.tags[a] >> tagAt)
+		if k > octaveCount || at < e.first[k] || at >= e.end[k] || e.arena[at] != uint32(a) {
 			return fmt.Errorf("seat %d is not where its tag says, at %d of octave %d", a, at, k)
 		}
-		if want := e.rate.total(a, e.g.Places[e.g.PlaceOf(a)].Shape, e.pattern(a)); want != s.rate {
-			return fmt.Errorf("seat %d has rate %v, its terms give %v", a, s.rate, want)
+		shape := e.g.Places[e.g.PlaceOf(a)].Shape
+		if want := e.rate.octave(a, shape, e.pattern(a), &e.octave); want != k {
+			return fmt.Errorf("seat %d is in octave %d, its terms put it in %d", a, k, want)
+		}
+		if rate := e.rate.total(a, shape, e.pattern(a)); rate > e.rates[k] {
+			return fmt.Errorf("seat %d has rate %v, above the top %v of its octave", a, rate, e.rates[k])
 		}
 	}
 	patterns := e.patterns()

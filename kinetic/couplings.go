@@ -98,12 +98,11 @@ func allWhole(values [][]float64, scale float64) bool {
 	return true
 }
 
-// seatCouplings lists the couplings of every seat's slots, `slots` to a seat; 0
-// where there is no term or it has no energy.
+// seatCouplings lists the couplings of the energy terms in every seat's slots,
+// `slots` to a seat; 0 where there is no term. Terms with energy fill the first
+// slots of a seat.
 func (g *Generator) seatCouplings() (j []int32, slots int) {
-	for _, s := range g.Seats {
-		slots = max(slots, len(s.Slots))
-	}
+	slots = g.energySlots()
 	j = make([]int32, g.Addresses()*slots)
 	for a := range g.Addresses() {
 		shape := &g.Shapes[g.Places[g.PlaceOf(a)].Shape]
@@ -117,4 +116,20 @@ func (g *Generator) seatCouplings() (j []int32, slots int) {
 		}
 	}
 	return j, slots
+}
+
+// energySlots is the largest number of energy terms that a seat shows, at least
+// 1.
+func (g *Generator) energySlots() int {
+	most := 1
+	for _, s := range g.Seats {
+		n := 0
+		for _, slot := range s.Slots {
+			if g.Families[slot.Family].Energy != nil {
+				n++
+			}
+		}
+		most = max(most, n)
+	}
+	return most
 }

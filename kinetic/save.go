@@ -140,7 +140,7 @@ func (e *classes[T]) Restore(src []byte) error {
 	return nil
 }
 
-const savedComposition = "composition 1\n"
+const savedComposition = "composition 2\n"
 
 // Save appends all that the trajectory depends on.
 func (e *composition) Save(dst []byte) []byte {
@@ -149,8 +149,8 @@ func (e *composition) Save(dst []byte) []byte {
 		for _, l := range e.lines {
 			b = append(b, l...)
 		}
-		for a := range e.seat {
-			b = binary.LittleEndian.AppendUint64(b, e.seat[a].tag)
+		for _, tag := range e.tags {
+			b = binary.LittleEndian.AppendUint64(b, tag)
 		}
 		return b
 	})
@@ -169,11 +169,10 @@ func (e *composition) Restore(src []byte) error {
 	for _, l := range e.lines {
 		copy(l, r.take(len(l)))
 	}
-	for a := range e.seat {
-		e.seat[a].tag = r.u64()
-		e.arena[e.seat[a].tag>>e.hot.bits] = uint32(a)
+	for a := range e.tags {
+		e.tags[a] = r.u64()
+		e.arena[e.tags[a]>>tagAt] = uint32(a)
 	}
-	e.computeRates()
 	patterns := e.patterns()
 	e.tally = newTally(e.g, patterns, e.lines, e.hot.words)
 	e.heat = e.sumEnergy(patterns)
