@@ -11,7 +11,8 @@ import (
 //
 //	K(r) = mean over pairs of Cov(s_x, s_(x+r)),
 //
-// pairs being those that the lattice has.
+// pairs being those that the lattice has; for complex eigenvalues the real part
+// of Cov(s_x^*, s_(x+r)).
 type SpatialCovariance struct {
 	lattice lattice.Lattice
 	sum     []float64 // by displacement, folded; open axes from -(L-1)
@@ -26,15 +27,22 @@ type SpatialCovariance struct {
 func (st *States) Covariance(o Observable) (*SpatialCovariance, error) {
 	s := st.System
 	var cells []lattice.Offset
-	var values [][]float64
+	var values [][][]float64 // by term: its real part, and its imaginary part if it has one
+	last := -1
 	for _, c := range o.Components {
 		if len(c) != 1 || s.Kinds[s.Instances[c[0].Instance].Kind].Line {
 			return nil, fmt.Errorf("%s is not made of single terms", o.Name)
 		}
-		cells = append(cells, s.cell(c[0].Instance))
 		v := make([]float64, st.Len())
 		st.Values(c, v)
-		values = append(values, v)
+		st.centre(v)
+		if c[0].Instance == last {
+			values[len(values)-1] = append(values[len(values)-1], v)
+			continue
+		}
+		last = c[0].Instance
+		cells = append(cells, s.cell(last))
+		values = append(values, [][]float64{v})
 	}
 	k := &SpatialCovariance{lattice: s.Spec.Lattice, size: s.Spec.Lattice.Size}
 	n := 1
@@ -49,17 +57,14 @@ func (st *States) Covariance(o Observable) (*SpatialCovariance, error) {
 	for a := range planes {
 		planes[a] = make([]float64, k.size[a])
 	}
-	mean := make([]float64, len(values))
-	for x, v := range values {
-		for i, f := range v {
-			mean[x] += st.Weight[i] * f
-		}
-	}
 	for x := range values {
 		for y := range values {
 			c := 0.0
-			for i, w := range st.Weight {
-				c += w * (values[x][i] - mean[x]) * (values[y][i] - mean[y])
+			for part := range values[x] {
+				f, g := values[x][part], values[y][part]
+				for i, w := range st.Weight {
+					c += w * f[i] * g[i]
+				}
 			}
 			d := k.index(cells[y].Add(cells[x].Neg()))
 			k.sum[d] += c
@@ -71,6 +76,17 @@ func (st *States) Covariance(o Observable) (*SpatialCovariance, error) {
 	}
 	k.normalise(planes)
 	return k, nil
+}
+
+// centre subtracts the mean.
+func (st *States) centre(v []float64) {
+	mean := 0.0
+	for i, f := range v {
+		mean += st.Weight[i] * f
+	}
+	for i := range v {
+		v[i] -= mean
+	}
 }
 
 // normalise turns sums over planes into means per pair of planes and term of a

@@ -19,7 +19,8 @@ type Kind struct {
 	// Energy is the energy of an instance by level; nil for a tracked operator.
 	Energy []float64
 	exact  []*big.Rat
-	Order  bool // its sum is the magnetization
+	shape  []float64 // energy over -J by level, as given
+	Order  bool      // its sum is the magnetization
 	// Line tells an operator with an extent from one that is local to a cell.
 	Line bool
 	// Index counts families (energy families with J != 0, then local tracked
@@ -64,7 +65,7 @@ func (s *System) enumerate() error {
 		if f.Coupling == 0 {
 			continue
 		}
-		k := Kind{Name: f.Name, Group: f.Group, Index: families}
+		k := Kind{Name: f.Name, Group: f.Group, Index: families, shape: f.Shape}
 		families++
 		levels, err := levelEnergies(f, s.Spec.Levels)
 		if err != nil {

@@ -24,17 +24,34 @@ type Part struct {
 	Value    []float64
 }
 
-// eigenvalues returns the real part of w^s times a factor: for q = 2 factor
-// and -factor.
-func (s *System) eigenvalues(factor float64) []float64 {
-	v := make([]float64, s.Spec.Levels)
-	for l := range v {
-		v[l] = factor * math.Cos(2*math.Pi*float64(l)/float64(len(v)))
+// values returns what an instance is worth by its level s: for two levels the
+// eigenvalue (-1)^s, for more the energy over -J if it has one, else the
+// eigenvalue exp(2 pi i s/q), whose imaginary part is nil where it vanishes.
+func (s *System) values(k Kind) (re, im []float64) {
+	q := s.Spec.Levels
+	switch {
+	case q == 2:
+		return []float64{1, -1}, nil
+	case k.Energy != nil:
+		return k.shape, nil
 	}
-	if len(v) == 2 {
-		v[0], v[1] = factor, -factor
+	for l := range q {
+		sin, cos := math.Sincos(2 * math.Pi * float64(l) / float64(q))
+		re, im = append(re, cos), append(im, sin)
 	}
-	return v
+	return re, im
+}
+
+// combine returns a x + b y.
+func combine(a float64, x []float64, b float64, y []float64) []float64 {
+	out := make([]float64, len(x))
+	for i := range x {
+		out[i] = a * x[i]
+		if y != nil {
+			out[i] += b * y[i]
+		}
+	}
+	return out
 }
 
 // family returns the kind of a family (as counted by kinetic.Generator).
@@ -78,7 +95,9 @@ func (s *System) Magnetization() (Observable, error) {
 	return o, err
 }
 
-// Terms returns the sum of the eigenvalues of families.
+// Terms returns the sum of the values of families: (-1)^s for two levels, else
+// -E/J of terms with energy and exp(2 pi i s/q) of tracked operators. If there
+// are complex ones, real and imaginary part are two components.
 func (s *System) Terms(families ...int) (Observable, error) {
 	o := Observable{Name: "terms", Components: make([]Component, 1), Norm: 1}
 	for _, f := range families {
@@ -86,8 +105,15 @@ func (s *System) Terms(families ...int) (Observable, error) {
 		if err != nil {
 			return o, err
 		}
+		re, im := s.values(k)
+		if im != nil && len(o.Components) == 1 {
+			o.Components = append(o.Components, nil)
+		}
 		for i := k.First; i < k.First+k.Count; i++ {
-			o.Components[0] = append(o.Components[0], Part{i, s.eigenvalues(1)})
+			o.Components[0] = append(o.Components[0], Part{i, re})
+			if im != nil {
+				o.Components[1] = append(o.Components[1], Part{i, im})
+			}
 		}
 	}
 	return o, nil
@@ -125,10 +151,15 @@ func (s *System) Line(line int) (Observable, error) {
 	return o, fmt.Errorf("no line %d", line)
 }
 
-// each adds the instances of a kind as components.
+// each adds the instances of a kind as components, two for each if they are
+// complex.
 func (o *Observable) each(s *System, k Kind) {
+	re, im := s.values(k)
 	for i := k.First; i < k.First+k.Count; i++ {
-		o.Components = append(o.Components, Component{{i, s.eigenvalues(1)}})
+		o.Components = append(o.Components, Component{{i, re}})
+		if im != nil {
+			o.Components = append(o.Components, Component{{i, im}})
+		}
 	}
 	o.Norm += float64(k.Count)
 }
@@ -149,8 +180,9 @@ func (s *System) Fourier(n lattice.Offset, families ...int) (Observable, error) 
 				phase += 2 * math.Pi * float64(mod(n[a]*x, l)) / float64(l)
 			}
 			sin, cos := math.Sincos(phase)
-			o.Components[0] = append(o.Components[0], Part{i, s.eigenvalues(cos)})
-			o.Components[1] = append(o.Components[1], Part{i, s.eigenvalues(sin)})
+			re, im := s.values(kind)
+			o.Components[0] = append(o.Components[0], Part{i, combine(cos, re, -sin, im)})
+			o.Components[1] = append(o.Components[1], Part{i, combine(sin, re, cos, im)})
 		}
 	}
 	return o, nil
