@@ -7,8 +7,11 @@ import (
 
 // Thresholds of the decay in space.
 const (
-	noDecayRatio = 0.5 // of the lattice: a longer fitted length is "no decay"
-	smallLattice = 6.0 // L in xi
+	noDecayRatio    = 0.5 // of the lattice: a longer fitted length is "no decay"
+	smallLattice    = 6.0 // L in xi
+	fewestDistances = 4
+	worstFit        = 10.0 // chi^2 per degree of freedom
+	seenAbove       = 3.0  // standard errors: what is smaller is noise
 )
 
 // planeSums is the covariance of plane sums along one axis, pooled.
@@ -76,6 +79,18 @@ func (s *planeSums) covariance(out int) []float64 {
 	return k
 }
 
+// flat reports whether K falls by less than it would over half the lattice if
+// xi were noDecayRatio times its length.
+func (s *planeSums) flat() bool {
+	half := min(s.length/2, len(s.k)-1)
+	fall := math.Exp(-float64(half) / (noDecayRatio * float64(s.length)))
+	if !s.open {
+		x := 1 / noDecayRatio / 2
+		fall = 1 / math.Cosh(x)
+	}
+	return s.k[half] > fall*s.k[0]
+}
+
 // errors returns the standard error at each distance.
 func (s *planeSums) errors() []float64 {
 	se := make([]float64, len(s.k))
@@ -108,39 +123,38 @@ func decay(p *Point, of string, plane *Plane) Decay {
 		return d
 	}
 	switch {
-	case len(s.k) < tailLeast:
-		return absent(codeNoData, "fewer than three distances were recorded")
+	case len(s.k) < fewestDistances:
+		return absent(codeSmallLattice, fmt.Sprintf("only %d distances along this axis, at least %d are needed", len(s.k), fewestDistances))
 	case s.k[0] <= 1e-11*s.total[0].SFG/float64(s.total[0].N):
 		return absent(codeConstant, "the plane sums did not change")
 	case len(s.units) < fewestBlocks:
 		return absent(codeFewUnits, fmt.Sprintf("only %d units to resample, at least %d are needed (raise count)", len(s.units), fewestBlocks))
 	}
+	if s.flat() {
+		d.NoDecay = true
+		return absent(codeNoDecay, fmt.Sprintf("the covariance does not decay within the lattice (L = %d): ordered, or xi above L/2", s.length))
+	}
 	f, err := s.fitted()
 	if err != "" {
 		return absent(codeNoise, err)
 	}
-	d.From, d.To = 0, f.at[len(f.at)-1]
+	d.From, d.To = f.at[0], f.at[len(f.at)-1]
 	t, ok := newTails(f)
 	if !ok {
 		return absent(codeNoise, "the errors of the covariance are degenerate")
 	}
-	ln, _, ok := t.average(f.y, true)
+	ln, se, logs, ok := t.estimate()
 	if !ok {
 		return absent(codeNoise, "no decay can be fitted")
 	}
 	xi := math.Exp(ln)
 	if xi > noDecayRatio*float64(s.length) {
 		d.NoDecay = true
-		return absent(codeNoDecay, fmt.Sprintf("the covariance does not decay within the lattice (L = %d): ordered, or xi comparable to L or longer", s.length))
+		return absent(codeNoDecay, fmt.Sprintf("the covariance does not decay within the lattice (L = %d): a fit gives %.3g", s.length, xi))
 	}
-	logs, ok := resampled(len(f.without), func(b int) (float64, bool) {
-		ln, _, ok := t.average(f.without[b], false)
-		return ln, ok
-	})
-	if !ok {
-		return absent(codeNoise, "no decay can be fitted without one of the units")
+	if t.reduced > worstFit {
+		return absent(codePoorFit, fmt.Sprintf("no range of distances follows an exponential (chi^2 %.3g per degree of freedom)", t.reduced))
 	}
-	se := jackknife(logs)
 	if se > noisyLog {
 		return absent(codeNoise, fmt.Sprintf("its standard error would be %.0f %%", 100*se))
 	}
@@ -160,9 +174,10 @@ func decay(p *Point, of string, plane *Plane) Decay {
 	return d
 }
 
-// fitted chooses distances, 0 to 4 and then by a ratio of 1.2 up to where K is
+// fitted chooses distances, 1 to 5 and then by a ratio of 1.2 up to where K is
 // lost in its error, and shrinks their covariance towards that of a Gaussian
-// chain with the same K.
+// chain with the same K. Distance 0, where all short-ranged parts add, is taken
+// only if fewer than five are left.
 func (s *planeSums) fitted() (*fitted, string) {
 	se := s.errors()
 	limit := len(s.k) - 1
@@ -172,7 +187,7 @@ func (s *planeSums) fitted() (*fitted, string) {
 	end := limit
 	for r := 1; r <= limit; r++ {
 		if s.k[r] < lagNoise*se[r] {
-			end = min(limit, max(r, tailLeast))
+			end = min(limit, max(r, fewestDistances))
 			break
 		}
 	}
@@ -182,6 +197,9 @@ func (s *planeSums) fitted() (*fitted, string) {
 		f.wrap = float64(s.length)
 	}
 	next := 0.0
+	if end >= 5 {
+		next = 1
+	}
 	for r := 0; r <= end; r++ {
 		if float64(r) >= next {
 			f.at = append(f.at, r)
@@ -237,26 +255,26 @@ func chainCovariance(at []int, a float64, length int) [][]float64 {
 	return cov
 }
 
-// amplitude is c/K(0) of the fitted exponential.
+// amplitude is c/K(0) of an exponential with length xi through the middle of the
+// fitted distances. Its error includes that of xi.
 func (s *planeSums) amplitude(f *fitted, xi, se float64, logs []float64) Estimate {
-	at := func(y []float64, xi float64) float64 {
-		// The last distance that carries weight fixes c once xi is known.
-		m := len(y) / 2
-		r := f.times[m]
-		e := math.Exp(-r / xi)
+	r := f.at[len(f.at)/2]
+	e := func(xi float64) float64 {
+		e := math.Exp(-float64(r) / xi)
 		if f.wrap > 0 {
-			e += math.Exp(-(f.wrap - r) / xi)
+			e += math.Exp(-(f.wrap - float64(r)) / xi)
 		}
-		return y[m] / e / y[0]
+		return e
 	}
-	c := at(f.y, xi)
-	without, ok := resampled(len(f.without), func(b int) (float64, bool) {
-		return at(f.without[b], math.Exp(logs[b])), true
+	at := func(k []float64, xi float64) float64 { return k[r] / e(xi) / k[0] }
+	c := at(s.k, xi)
+	without, ok := resampled(len(s.without), func(b int) (float64, bool) {
+		return at(s.without[b], math.Exp(logs[b])), true
 	})
 	if !ok {
 		return missing(codeNoise, "it cannot be told from noise")
 	}
-	return symmetric(c, jackknife(without), len(f.without))
+	return symmetric(c, math.Hypot(jackknife(without), c*float64(r)/xi*math.Sqrt(math.Max(0, se*se-math.Pow(jackknife(logs), 2)))), len(f.without))
 }
 
 // secondMoment is xi_2 = sqrt(S(0)/S(k1) - 1) / (2 sin(k1/2)), k1 = 2 pi/L,
@@ -273,28 +291,24 @@ func (s *planeSums) secondMoment() Estimate {
 		return missing(codeNoData, "distances up to half the lattice were not recorded")
 	}
 	k1 := 2 * math.Pi / float64(s.length)
-	of := func(k []float64) (float64, bool) {
+	ratio := func(k []float64) (q float64, ok bool) { // S(0)/S(k1) - 1
 		var s0, s1 float64
 		for r := range s.length {
 			v := k[min(r, s.length-r)]
 			s0 += v
 			s1 += v * math.Cos(k1*float64(r))
 		}
-		q := s0/s1 - 1
-		return math.Log(math.Sqrt(math.Max(q, 0)) / (2 * math.Sin(k1/2))), s1 > 0 && q > 0
+		return s0/s1 - 1, s1 > 0
 	}
-	ln, ok := of(s.k)
-	const noise = "S(0) does not exceed S(k1) beyond noise"
+	q, ok := ratio(s.k)
+	without, ok2 := resampled(len(s.without), func(b int) (float64, bool) { return ratio(s.without[b]) })
+	if !ok || !ok2 || q <= seenAbove*jackknife(without) {
+		return missing(codeNoise, fmt.Sprintf("S(0) does not exceed S(k1) by %g standard errors", seenAbove))
+	}
+	of := func(q float64) float64 { return math.Log(math.Sqrt(q) / (2 * math.Sin(k1/2))) }
+	logs, ok := resampled(len(without), func(b int) (float64, bool) { return of(without[b]), without[b] > 0 })
 	if !ok {
-		return missing(codeNoise, noise)
+		return missing(codeNoise, "S(0) does not exceed S(k1) without one of the units")
 	}
-	logs, ok := resampled(len(s.without), func(b int) (float64, bool) { return of(s.without[b]) })
-	if !ok {
-		return missing(codeNoise, noise)
-	}
-	se := jackknife(logs)
-	if se > noisyLog {
-		return missing(codeNoise, noise)
-	}
-	return logarithmic(ln, se, len(s.without))
+	return logarithmic(of(q), jackknife(logs), len(logs))
 }

@@ -67,7 +67,7 @@ func TestRingDecay(t *testing.T) {
 		wg.Go(func() {
 			for i := w; i < repeats; i += 2 {
 				rng := rand.New(rand.NewPCG(uint64(i), 0xc0))
-				p := ringPoint(ringPlanes(rng, beta, n, 16, 60), n)
+				p := ringPoint(ringPlanes(rng, beta, n, 16, 150), n)
 				results[i] = decay(&p, "spin", &p.Spatial[0].Planes[0])
 			}
 		})

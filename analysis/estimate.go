@@ -1,6 +1,7 @@
 package analysis
 
 import (
+	"fmt"
 	"math"
 
 	"gonum.org/v1/gonum/stat/distuv"
@@ -69,4 +70,23 @@ func logarithmic(ln, se float64, units int) Estimate {
 	t := studentT(0.025, units-1)
 	v := math.Exp(ln)
 	return Estimate{Value: v, Err: v * se, Low: v * math.Exp(-t*se), High: v * math.Exp(t*se), Units: units, OK: true}
+}
+
+// withError prints a value with its error in the last digits: 12.41(7).
+func withError(value, err float64) string {
+	if !(err > 0) || math.IsInf(err, 0) {
+		return fmt.Sprintf("%.4g", value)
+	}
+	place := int(math.Floor(math.Log10(err)))
+	if err/math.Pow(10, float64(place)) < 2.95 { // two digits of a small leading one
+		place--
+	}
+	unit := math.Pow(10, float64(place))
+	switch {
+	case place >= 0:
+		return fmt.Sprintf("%.0f(%.0f)", math.Round(value/unit)*unit, math.Round(err/unit)*unit)
+	case err >= 1: // the point is within the error
+		return fmt.Sprintf("%.*f(%.*f)", -place, value, -place, err)
+	}
+	return fmt.Sprintf("%.*f(%.0f)", -place, value, err/unit)
 }

@@ -173,3 +173,25 @@ func TestStudentQuantile(t *testing.T) {
 		}
 	}
 }
+
+func TestWithError(t *testing.T) {
+	for _, test := range []struct {
+		value, err float64
+		want       string
+	}{{12.4137, 0.07, "12.41(7)"}, {12.4137, 0.12, "12.41(12)"}, {10.47, 2, "10.5(2.0)"}, {1234, 50, "1230(50)"}, {1234, 12, "1234(12)"}, {0.00123, 0.00004, "0.00123(4)"}, {3, 0, "3"}} {
+		if got := withError(test.value, test.err); got != test.want {
+			t.Errorf("%g +- %g: %s, want %s", test.value, test.err, got, test.want)
+		}
+	}
+}
+
+// Pooling neighbours that rise: by hand.
+func TestDecreasing(t *testing.T) {
+	y := []float64{5, 2, 4, 3, 1, 2}
+	decreasing(y, []float64{1, 1, 3, 1, 1, 1})
+	for i, want := range []float64{5, 3.5, 3.5, 3, 1.5, 1.5} {
+		if math.Abs(y[i]-want) > 1e-12 {
+			t.Fatalf("%v at %d, want %g", y, i, want)
+		}
+	}
+}

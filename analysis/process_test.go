@@ -12,8 +12,7 @@ type process struct {
 	name   string
 	terms  []exponential
 	sample func(rng *rand.Rand, x []float64, step float64) // fills x
-	// dirichlet is E(f,f); a constant of the path for these processes.
-	exact func() (initial, integrated, slowest float64)
+	exact  func() (initial, integrated, slowest float64)
 }
 
 // ou is a sum of independent Ornstein-Uhlenbeck processes with variances c.

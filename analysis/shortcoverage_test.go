@@ -97,7 +97,7 @@ func TestSlowModeCoverage(t *testing.T) {
 		}
 		t.Logf("%s: slow mode %.0f %.0f, Rayleigh %.0f %.0f, bound above the truth %d", test.m.name,
 			tau.cover68(), tau.cover95(), rayleigh.cover68(), rayleigh.cover95(), above)
-		if tau.n < repeats*98/100 || tau.cover68() < 53 || tau.cover95() < 87 {
+		if tau.n < repeats*88/100 || tau.cover68() < 53 || tau.cover95() < 87 {
 			t.Errorf("%s: slow mode in %d, covers %.0f and %.0f %%", test.m.name, tau.n, tau.cover68(), tau.cover95())
 		}
 		if above > 17 { // 5 % and four standard errors
@@ -123,11 +123,12 @@ func TestShares(t *testing.T) {
 	}
 }
 
-// Proportional observables leave one combination; a constant leaves none.
+// Proportional observables leave one combination, a constant leaves none; and
+// one combination gives no more than a bound.
 func TestReduced(t *testing.T) {
 	m := mixture{"proportional", []float64{1, 5}, [][]float64{{1, 1}, {2, 2}, {0, 0}}}
 	r := Infer(m.point(78, 16, 60, 0.1), Options{}).SlowMode
-	if !r.Tau.OK || len(r.Dropped) != 2 || len(r.Shares) != 2 {
+	if r.Tau.OK || r.Tau.Code != codeLowerBound || !r.Bound.OK || r.Bound.Value > 1 || len(r.Dropped) != 2 || len(r.Shares) != 2 {
 		t.Errorf("tau %v, dropped %q, shares %v", r.Tau, r.Dropped, r.Shares)
 	}
 }

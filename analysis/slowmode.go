@@ -210,12 +210,16 @@ func (m *mode) report(out *SlowMode) {
 		out.Warnings = append(out.Warnings, warn(codeNoise, "no slow mode: %s", reason))
 		return
 	}
-	out.Tau = logarithmic(m.tau, m.se, u)
 	out.Bound = Bound{Value: math.Exp(m.tau - studentT(boundTail, u-1)*math.Hypot(m.se, m.spread)), Confidence: 0.95, OK: true}
 	if u < 8 {
 		out.Warnings = append(out.Warnings, warn(codeFewUnits, "errors of the slow mode rest on %d blocks only", u))
 	}
 	m.shares(out)
+	if len(m.r) == 1 || m.alone(out.Shares) {
+		out.Tau = missing(codeLowerBound, "one observable alone shares in the mode, so that faster modes cannot be told apart from it: a lower bound is all it gives")
+		return
+	}
+	out.Tau = logarithmic(m.tau, m.se, u)
 	m.warnings(out)
 }
 
@@ -271,16 +275,9 @@ func (m *mode) warnings(out *SlowMode) {
 	if largest < barelySeen {
 		out.Warnings = append(out.Warnings, warn(codeBarelySeen, "no observable shares more than %.0f %% of its variance with the slow mode", 100*largest))
 	}
-	if len(m.r) == 1 {
-		out.Warnings = append(out.Warnings, warn(codeLowerBound, "the mode rests on one observable: read tau as a lower bound, a second observable would show faster modes apart"))
-		return
-	}
 	second, se, ok := m.second()
-	switch {
-	case ok && second+se > closeRates:
-		out.Warnings = append(out.Warnings, warn(codeCloseRates, "the next time of these observables is %.2g(%.1g) of the slowest: with a third mode nearby tau is a lower bound", second, se))
-	case len(out.Shares) > 1 && m.alone(out.Shares):
-		out.Warnings = append(out.Warnings, warn(codeLowerBound, "the other observables hardly share in the mode, which rests on one: read tau as a lower bound"))
+	if ok && second+se > closeRates {
+		out.Warnings = append(out.Warnings, warn(codeCloseRates, "the next time of these observables is %s of the slowest: with a third mode nearby tau is a lower bound", withError(second, se)))
 	}
 }
 

@@ -7,15 +7,18 @@ import (
 // tails averages single exponentials c exp(-t/tau) fitted from each first lag
 // on, with weights
 //
-//	exp[-(chi^2 + 2 (parameters) + 2 (lags cut away))/2]
+//	exp[-(chi^2 + 2 (lags cut away))/2] / sqrt(standard error)
 //
-// (W. I. Jay, E. T. Neil, Phys. Rev. D 103, 114502 (2021), eq. 50). For a sum
-// of exponentials with positive weights ln C is convex: what is seen in any
-// window is at most the slowest.
+// (W. I. Jay, E. T. Neil, Phys. Rev. D 103, 114502 (2021), eq. 50, for the
+// exponential). Without the last factor late tails of few noisy lags take part
+// and double the error; with the full standard error in its place remnants of
+// faster parts bias the average. For a sum of exponentials with positive weights
+// ln C is convex: what is seen in any window is at most the slowest.
 type tails struct {
 	f       *fitted
 	factors [][][]float64 // Cholesky factors of the tails' covariances, by first lag
-	rates   []float64     // of the last full fit, by first lag
+	work    []float64
+	reduced float64 // chi^2 per degree of freedom of the tail with most weight
 }
 
 // tailLeast is the fewest lags of a tail.
@@ -31,52 +34,70 @@ func newTails(f *fitted) (*tails, bool) {
 		}
 		t.factors = append(t.factors, l)
 	}
-	t.rates = make([]float64, len(t.factors))
+	t.work = make([]float64, 2*n)
 	return t, true
 }
 
-// average returns ln tau for the data y and the variance of ln tau between
-// tails. first says whether the fits search over all rates (and remember where
-// they ended) or near the remembered ones.
-func (t *tails) average(y []float64, first bool) (lnTau, spread float64, ok bool) {
-	n := len(y)
-	var sum, squares, weight, least float64
-	least = math.Inf(1)
-	work := make([]float64, 2*n)
-	for k, l := range t.factors {
-		fit := tailFit{l: l, times: t.f.times[k:], wrap: t.f.wrap, model: work[:n-k], y: work[n : 2*n-k]}
-		copy(fit.y, y[k:])
-		solveLower(l, fit.y)
-		var rate, chi2 float64
-		if first {
-			rate, chi2 = fit.search(t.f.low, t.f.high)
-			t.rates[k] = rate
-		} else {
-			rate, chi2 = fit.refine(t.rates[k]/2, t.rates[k]*2)
+// estimate returns ln tau with its standard error, and ln tau without each
+// block at the same weights. The error combines the jackknife with the spread
+// between tails.
+func (t *tails) estimate() (lnTau, se float64, logs []float64, ok bool) {
+	n := len(t.factors)
+	value, cost, errs := make([]float64, n), make([]float64, n), make([]float64, n)
+	without := make([][]float64, n)
+	least := math.Inf(1)
+	for k := range n {
+		rate, chi2 := t.tail(k, t.f.y).search(t.f.low, t.f.high)
+		value[k], cost[k] = -math.Log(rate), chi2+2*float64(k)
+		for _, y := range t.f.without {
+			r, _ := t.tail(k, y).refine(rate/2, rate*2)
+			without[k] = append(without[k], -math.Log(r))
 		}
-		aic := chi2 + 2*float64(k)
-		if math.IsNaN(aic) || math.IsInf(aic, 0) {
+		errs[k] = jackknife(without[k])
+		if math.IsNaN(cost[k]) || !(errs[k] > 0) {
+			cost[k] = math.Inf(1)
+		}
+		least = math.Min(least, cost[k])
+	}
+	if math.IsInf(least, 0) {
+		return 0, 0, nil, false
+	}
+	weight, norm := make([]float64, n), 0.0
+	for k := range weight {
+		if !math.IsInf(cost[k], 1) {
+			weight[k] = math.Exp((least-cost[k])/2) / math.Sqrt(errs[k])
+			norm += weight[k]
+		}
+	}
+	logs = make([]float64, len(t.f.without))
+	for k := range weight {
+		weight[k] /= norm
+		if weight[k] == 0 {
 			continue
 		}
-		if aic < least {
-			if !math.IsInf(least, 1) {
-				scale := math.Exp((aic - least) / 2)
-				sum *= scale
-				squares *= scale
-				weight *= scale
-			}
-			least = aic
+		lnTau += weight[k] * value[k]
+		for b := range logs {
+			logs[b] += weight[k] * without[k][b]
 		}
-		w := math.Exp((least - aic) / 2)
-		sum -= w * math.Log(rate)
-		squares += w * math.Log(rate) * math.Log(rate)
-		weight += w
 	}
-	if weight == 0 {
-		return 0, 0, false
+	spread, most := 0.0, 0.0
+	for k, w := range weight {
+		if w > most {
+			most = w
+			t.reduced = (cost[k] - 2*float64(k)) / float64(len(t.f.y)-k-2)
+		}
+		spread += w * (value[k] - lnTau) * (value[k] - lnTau)
 	}
-	lnTau = sum / weight
-	return lnTau, math.Max(0, squares/weight-lnTau*lnTau), true
+	return lnTau, math.Hypot(jackknife(logs), math.Sqrt(spread)), logs, true
+}
+
+// tail prepares the fit from lag k on.
+func (t *tails) tail(k int, y []float64) *tailFit {
+	n := len(y)
+	fit := &tailFit{l: t.factors[k], times: t.f.times[k:], wrap: t.f.wrap, model: t.work[:n-k], y: t.work[n : 2*n-k]}
+	copy(fit.y, y[k:])
+	solveLower(fit.l, fit.y)
+	return fit
 }
 
 // tailFit is a fit of one exponential in whitened coordinates, with its image

@@ -129,23 +129,28 @@ func (t transient) approach(opt Options) Approach {
 	return a
 }
 
-// within is when |mean - limit| first falls to epsilon times its first value,
-// interpolated with ln|mean - limit| linear between times.
+// within is when |mean - limit| first falls to epsilon times its first value. The
+// distance is made monotone first, which keeps single noisy times from deciding,
+// and its logarithm is linear between times.
 func (t transient) within(epsilon float64, se []float64) Estimate {
 	first := math.Abs(t.mean[0] - t.limit.Value)
+	weights := make([]float64, len(se))
+	for i, x := range se {
+		weights[i] = 1 / math.Max(x*x, 1e-6*first*first)
+	}
 	of := func(mean []float64) (float64, bool) {
-		goal := epsilon * math.Abs(mean[0]-t.limit.Value)
+		sign := math.Copysign(1, mean[0]-t.limit.Value)
+		distance := make([]float64, len(mean))
 		for i := range mean {
-			d := math.Abs(mean[i] - t.limit.Value)
-			if d > goal {
+			distance[i] = sign * (mean[i] - t.limit.Value)
+		}
+		decreasing(distance, weights)
+		goal := epsilon * distance[0]
+		for i := 1; i < len(mean); i++ {
+			if distance[i] > goal {
 				continue
 			}
-			before := math.Abs(mean[i-1] - t.limit.Value)
-			if d <= 0 {
-				d = math.SmallestNonzeroFloat64
-			}
-			// Log-linear between d and before, but never closer than noise allows.
-			f := math.Log(before/goal) / math.Log(before/math.Max(d, goal/10))
+			f := math.Log(distance[i-1]/goal) / math.Log(distance[i-1]/math.Max(distance[i], goal/10))
 			return t.times[i-1] + f*(t.times[i]-t.times[i-1]), true
 		}
 		return 0, false
@@ -170,6 +175,32 @@ func (t transient) within(epsilon float64, se []float64) Estimate {
 	return symmetric(v, jackknife(without), len(t.without))
 }
 
+// decreasing replaces y by the closest decreasing sequence in weighted least
+// squares: neighbours that rise are pooled (M. Ayer et al., Ann. Math. Stat. 26,
+// 641 (1955)).
+func decreasing(y, weights []float64) {
+	type pooled struct {
+		mean, weight float64
+		n            int
+	}
+	var stack []pooled
+	for i := range y {
+		stack = append(stack, pooled{y[i], weights[i], 1})
+		for k := len(stack); k > 1 && stack[k-1].mean > stack[k-2].mean; k = len(stack) {
+			a, b := stack[k-2], stack[k-1]
+			w := a.weight + b.weight
+			stack = append(stack[:k-2], pooled{(a.mean*a.weight + b.mean*b.weight) / w, w, a.n + b.n})
+		}
+	}
+	i := 0
+	for _, p := range stack {
+		for range p.n {
+			y[i] = p.mean
+			i++
+		}
+	}
+}
+
 // lastDecay averages exponential tails of mean - limit, as for C(t). It returns
 // ln tau without each unit too.
 func (t transient) lastDecay(se []float64) (Estimate, []float64) {
@@ -190,8 +221,11 @@ func (t transient) lastDecay(se []float64) (Estimate, []float64) {
 		f.y = append(f.y, distance(t.mean, i))
 		next = t.times[i] * 1.25
 	}
-	if len(f.at) < fewestFit || len(t.without) < 8 {
-		return missing(codeNoise, "fewer than 4 times of the decay stand out of noise, or fewer than 8 units"), nil
+	if len(t.without) < 16 {
+		return missing(codeFewUnits, "fits of a decay need at least 16 units of each start"), nil
+	}
+	if len(f.at) < fewestFit {
+		return missing(codeNoise, "fewer than 4 times of the decay stand out of noise"), nil
 	}
 	f.without = make([][]float64, len(t.without))
 	for u, mean := range t.without {
@@ -217,18 +251,10 @@ func (t transient) lastDecay(se []float64) (Estimate, []float64) {
 	if !ok {
 		return missing(codeNoise, "the errors of the mean are degenerate"), nil
 	}
-	ln, spread, ok := tl.average(f.y, true)
+	ln, se2, logs, ok := tl.estimate()
 	if !ok {
 		return missing(codeNoise, "no decay can be fitted"), nil
 	}
-	logs, ok := resampled(len(f.without), func(u int) (float64, bool) {
-		ln, _, ok := tl.average(f.without[u], false)
-		return ln, ok
-	})
-	if !ok {
-		return missing(codeNoise, "no decay can be fitted without one of the units"), nil
-	}
-	se2 := math.Hypot(jackknife(logs), math.Sqrt(spread))
 	if se2 > noisyLog {
 		return missing(codeNoise, "its error would exceed the value"), nil
 	}

@@ -22,7 +22,9 @@ func trends(results []Result) []Trend {
 	var out []Trend
 	for _, s := range allSeries(results) {
 		out = append(out, alongLength(results, s)...)
-		out = append(out, alongBeta(results, s)...)
+		if s.quantity != "approach" {
+			out = append(out, alongBeta(results, s)...)
+		}
 		if s.quantity == "tau_int" || s.quantity == "tau_slow_mode" {
 			out = append(out, alongXi(results, s)...)
 		}
@@ -254,8 +256,8 @@ func sizeRegime(t *Trend) string {
 		return "changes with the size " + span + ": not yet the length of a large lattice"
 	}
 	if z, ok := t.exponent(); ok && t.Models[0].Name == "constant" && math.Abs(z.Value) < 2*z.Err && z.Err < flatness {
-		return fmt.Sprintf("flat %s within errors (a power of L would have exponent %.2f(%.2f)): consistent with a gap that stays open, as far as this observable sees; it does not show rapid mixing",
-			span, z.Value, z.Err)
+		return fmt.Sprintf("flat %s within errors (a power of L would have exponent %s): consistent with a gap that stays open, as far as this observable sees; it does not show rapid mixing",
+			span, withError(z.Value, z.Err))
 	}
 	switch {
 	case kinds["power"] > decisive:
@@ -317,7 +319,7 @@ func betaRegime(t *Trend) string {
 	case "constant":
 		return "the same at all temperatures " + span
 	case "Arrhenius":
-		return fmt.Sprintf("Arrhenius %s, with activation energy %.4g(%.1g)", span, best.Parameters[1].Value, best.Parameters[1].Err)
+		return fmt.Sprintf("Arrhenius %s, with activation energy %s", span, withError(best.Parameters[1].Value, best.Parameters[1].Err))
 	}
 	return "grows faster than Arrhenius " + span
 }
