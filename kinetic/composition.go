@@ -73,7 +73,7 @@ func (o *octaves) tops() []float64 {
 }
 
 // NewComposition returns the composition engine, for couplings that vary from
-// term to term (q = 2). It needs about 13 bytes per seat and 12 for each of its
+// term to term (q = 2). It needs about 13 bytes per seat and 4 for each of its
 // terms.
 func NewComposition(g *Generator, seed [32]byte, unit int, start Start) (Engine, error) {
 	if err := checkComposition(g); err != nil {
@@ -114,7 +114,7 @@ func NewComposition(g *Generator, seed [32]byte, unit int, start Start) (Engine,
 // CompositionBytes estimates the memory of one composition engine.
 func CompositionBytes(g *Generator) int64 {
 	n := int64(g.Addresses())
-	return n*(8+12*int64(g.energySlots())) + 4*int64(arenaSize(g.Addresses(), octaveCount+1)) + g.tableBytes()
+	return n*(8+4*int64(g.energySlots())) + 4*int64(arenaSize(g.Addresses(), octaveCount+1)) + g.tableBytes()
 }
 
 func (e *composition) pattern(a int) uint32 { return uint32(e.tags[a]) & e.hot.mask }
