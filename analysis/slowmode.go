@@ -217,6 +217,7 @@ func (m *mode) report(out *SlowMode) {
 	m.shares(out)
 	if len(m.r) == 1 || m.alone(out.Shares) {
 		out.Tau = missing(codeLowerBound, "one observable alone shares in the mode, so that faster modes cannot be told apart from it: a lower bound is all it gives")
+		out.Warnings = append(out.Warnings, warn(codeLowerBound, "no tau of the slow mode, only its bound: %s", out.Tau.Reason))
 		return
 	}
 	out.Tau = logarithmic(m.tau, m.se, u)

@@ -7,6 +7,9 @@ type WarningKind struct {
 	Code      string
 	Meaning   string
 	Threshold string // "" where there is none
+	// Note marks remarks: findings and reasons of absence that throw no doubt on
+	// the numbers that are there.
+	Note bool
 }
 
 // Codes of warnings, and of the reasons why estimates are missing.
@@ -42,49 +45,57 @@ const (
 
 // WarningKinds lists every warning code that results can carry.
 var WarningKinds = []WarningKind{
-	{codeFewUnits, "too few resampling blocks for an error that can be trusted", "refused below 4; fit-based values refused below 8, doubtful below 16"},
-	{codeShortTotal, "the total time of all trajectories is short against the relaxation time", "doubtful below 160 tau, refused below 40 tau"},
-	{codeShortSpan, "one trajectory is short against the relaxation time", "doubtful below 20 tau; refused where lags (a quarter of the span) end while they may leave out 0.4 of the standard error"},
-	{codeCoarseStep, "the time between samples is long against the initial relaxation time", "doubtful above 0.5 tau_initial, refused above 1.6 tau_initial"},
-	{codeNoise, "the covariance cannot be told from noise", ""},
-	{codeConstant, "the observable did not change", ""},
-	{codeNoData, "nothing was recorded that the estimate could be made from", ""},
-	{codeErrorsDiffer, "resampling and Wolff's formula give different errors of tau_int", "a factor above 1.5 with at least 16 blocks"},
-	{codeChain, "tau_initial <= tau_int <= tau_slowest does not hold within errors", "3 standard errors"},
-	{codeDrift, "the mean drifts along the recorded span", "5 % over the study (Holm)"},
-	{codeStarts, "trajectories from different starts disagree", "5 % over the study (Holm)"},
-	{codeStartsUnknown, "trajectories from different starts could not be compared", "fewer than 2 units of one start"},
-	{codeInhomogeneous, "an average over positions was taken where positions are not equivalent", "open axes"},
-	{codeSingle, "declared a single exponential, but the data contradict it", "5 %"},
-	{codePlateau, "no plateau: the slow mode's time still grows at the last usable lag", "fewer than 3 valid points, or a rise above 2 standard errors"},
-	{codeBarelySeen, "the observables hardly overlap with the slow mode", "largest share below 0.2"},
-	{codeCloseRates, "two slow rates lie close together and may not be resolved: the time is a lower bound", "within a factor of 2"},
-	{codeReduced, "observables were left out of the slow mode", "constant, or a correlation-matrix eigenvalue below 0.05"},
-	{codeNoDecay, "the covariance in space does not decay within the lattice", "fitted length above half the lattice"},
-	{codeSmallLattice, "the lattice is small against the correlation length", "L below 6 xi"},
-	{codeWeightFloor, "the interval of tau_slowest assumes that the slowest mode carries a stated share of the variance", ""},
-	{codeNotMeaningful, "the quantity has no meaning here", ""},
-	{codeNotReached, "the mean did not come close to its limit within the recorded time", ""},
-	{codeLowerBound, "the value is a lower bound on 1/gap", ""},
-	{codePoorFit, "no form fits the trend", "best chi^2 above its degrees of freedom by 4 standard deviations"},
-	{codeExtrapolated, "a time lies beyond what was recorded clearly and was extrapolated", ""},
-	{codeFrozen, "no jumps happened in a trajectory", ""},
+	{codeFewUnits, "too few resampling blocks for an error that can be trusted", "refused below 4; fit-based values refused below 8, doubtful below 16", false},
+	{codeShortTotal, "the total time of all trajectories is short against the relaxation time", "doubtful below 160 tau, refused below 40 tau", false},
+	{codeShortSpan, "one trajectory is short against the relaxation time", "doubtful below 20 tau; refused where lags (a quarter of the span) end while they may leave out 0.4 of the standard error", false},
+	{codeCoarseStep, "the time between samples is long against the initial relaxation time", "doubtful above 0.5 tau_initial, refused above 1.6 tau_initial", false},
+	{codeNoise, "the covariance cannot be told from noise", "", false},
+	{codeConstant, "the observable did not change", "", true},
+	{codeNoData, "nothing was recorded that the estimate could be made from", "", false},
+	{codeErrorsDiffer, "resampling and Wolff's formula give different errors of tau_int", "a factor above 1.5 with at least 16 blocks", false},
+	{codeChain, "tau_initial <= tau_int <= tau_slowest does not hold within errors", "3 standard errors", false},
+	{codeDrift, "the mean drifts along the recorded span", "5 % over the study (Holm)", false},
+	{codeStarts, "trajectories from different starts disagree", "5 % over the study (Holm)", false},
+	{codeStartsUnknown, "trajectories from different starts could not be compared", "fewer than 2 units of one start", false},
+	{codeInhomogeneous, "an average over positions was taken where positions are not equivalent", "open axes", false},
+	{codeSingle, "declared a single exponential, but the data contradict it", "5 %", false},
+	{codePlateau, "no plateau: the slow mode's time still grows at the last usable lag", "fewer than 3 valid points, or a rise above 2 standard errors", false},
+	{codeBarelySeen, "the observables hardly overlap with the slow mode", "largest share below 0.2", false},
+	{codeCloseRates, "two slow rates lie close together and may not be resolved: the time is a lower bound", "within a factor of 2", false},
+	{codeReduced, "observables were left out of the slow mode", "constant, or a correlation-matrix eigenvalue below 0.05", true},
+	{codeNoDecay, "the covariance in space does not decay within the lattice", "fitted length above half the lattice", true},
+	{codeSmallLattice, "the lattice is small against the correlation length", "L below 6 xi", false},
+	{codeWeightFloor, "the interval of tau_slowest assumes that the slowest mode carries a stated share of the variance", "", true},
+	{codeNotMeaningful, "the quantity has no meaning here", "", true},
+	{codeNotReached, "the mean did not come close to its limit within the recorded time", "", false},
+	{codeLowerBound, "the value is a lower bound on 1/gap", "", true},
+	{codePoorFit, "no form fits the trend", "best chi^2 above its degrees of freedom by 4 standard deviations", false},
+	{codeExtrapolated, "a time lies beyond what was recorded clearly and was extrapolated", "", true},
+	{codeFrozen, "no jumps happened in a trajectory", "", false},
 }
 
-var warningKinds = func() map[string]bool {
-	m := make(map[string]bool, len(WarningKinds))
-	for _, k := range WarningKinds {
-		if m[k.Code] {
+var warningKinds = func() map[string]*WarningKind {
+	m := make(map[string]*WarningKind, len(WarningKinds))
+	for i := range WarningKinds {
+		k := &WarningKinds[i]
+		if m[k.Code] != nil {
 			panic("analysis: warning code listed twice: " + k.Code)
 		}
-		m[k.Code] = true
+		m[k.Code] = k
 	}
 	return m
 }()
 
+// Note reports whether the warning is a remark, which throws no doubt on the
+// numbers that are there.
+func (w Warning) Note() bool {
+	k := warningKinds[w.Code]
+	return k != nil && k.Note
+}
+
 // known returns code, which must be in the table.
 func known(code string) string {
-	if !warningKinds[code] {
+	if warningKinds[code] == nil {
 		panic("analysis: warning code not listed: " + code)
 	}
 	return code
