@@ -35,6 +35,15 @@ type Observable struct {
 	Scalar  bool
 	Single  bool       // declared a single exponential
 	Moments [][]Moment // unit, segment (16)
+	Flips   [][]Flips  // unit, level (the same for all units); nil if not recorded
+}
+
+// Flips counts how often an observable went from beyond one of +Level and
+// -Level to beyond the other.
+type Flips struct {
+	Level float64
+	N     int64
+	Time  float64 // recorded, over lanes
 }
 
 // Moment is a segment's sums of powers.

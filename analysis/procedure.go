@@ -85,6 +85,7 @@ func inferObservable(p *Point, o int, opt Options, pools func(int) *pool) (integ
 	res := ObservableResult{Name: obs.Name, WeightFloor: opt.WeightFloor}
 	in, tau := integrate(p, o, pools)
 	res.Integrated = tau
+	res.switches(p, o)
 	res.means(&in)
 	if !tau.OK {
 		res.Initial = tauInitial(&in)
@@ -147,6 +148,7 @@ func (res *ObservableResult) slowest(in *integrated, opt Options, code, reason s
 		res.SlowestInterval = noInterval(codeNoise, "too few lags lie within the decay")
 		return
 	}
+	res.Model = modelAverage(in, &f)
 	res.SlowestInterval = slowestInterval(&f, opt.WeightFloor, res.Slowest)
 }
 

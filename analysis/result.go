@@ -70,6 +70,9 @@ type ObservableResult struct {
 	// is left out when infinite.
 	SlowestInterval Interval
 	WeightFloor     float64
+	// Switching is what flips between two wells say. JSON flips, flip_level,
+	// tau_flips, tau_flips_low, tau_flips_high, tau_flips_bound.
+	Switching Switching
 	// Shape says which form the decay prefers: exponential, stretched, power.
 	Shape Shape
 

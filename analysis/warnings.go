@@ -38,6 +38,7 @@ const (
 	codeNotMeaningful = "not_meaningful"
 	codeNotReached    = "equilibrium_not_reached"
 	codeLowerBound    = "lower_bound"
+	codeSwitching     = "two_wells"
 	codeFrozen        = "frozen"
 	codePoorFit       = "poor_fit"
 	codeExtrapolated  = "extrapolated"
@@ -71,6 +72,7 @@ var WarningKinds = []WarningKind{
 	{codeLowerBound, "the value is a lower bound on 1/gap", "", true},
 	{codePoorFit, "no form fits the trend", "best chi^2 above its degrees of freedom by 4 standard deviations", false},
 	{codeExtrapolated, "a time lies beyond what was recorded clearly and was extrapolated", "", true},
+	{codeSwitching, "the observable has two wells, and its flips between them take over from C(t)", "a span below 20 tau", false},
 	{codeFrozen, "no jumps happened in a trajectory", "", false},
 }
 

@@ -2,8 +2,6 @@ package kinetic
 
 import "fmt"
 
-func (e *classes[T]) pattern(a int) uint16 { return uint16(uint32(e.tags[a]) & e.hot.mask) }
-
 func (e *classes[T]) Sums(dst []int64) []int64 { return e.appendSums(dst) }
 
 func (e *classes[T]) Energy(int) float64 { return e.energy() }

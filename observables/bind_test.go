@@ -82,7 +82,7 @@ func TestTablesMatchRows(t *testing.T) {
 	var u Unit
 	rows := map[string]any{
 		"trajectories": u.Trajectories, "moments": u.Moments, "autocorrelation": u.Autocorrelation,
-		"dirichlet": u.Dirichlet, "covariance": u.Covariance, "transients": u.Transients,
+		"dirichlet": u.Dirichlet, "covariance": u.Covariance, "transients": u.Transients, "flips": u.Flips,
 	}
 	types := map[string]ColumnType{"string": Text, "float64": Double, "int32": Int32, "int64": Int64, "[]int32": Ints}
 	tables := Tables([]string{"bath.beta", "lattice.size", "hamiltonian.field"})

@@ -123,5 +123,11 @@ func recorded() []Table {
 			{"sum1", Double, unitValue, "sum of f (components: sum over them, divided by the norm)"},
 			{"sum2", Double, unitValue + "^2", "sum of its square"},
 		}},
+		{"flips", "the magnetization at one hysteresis, summed over lanes", []Column{
+			observable,
+			{"level", Double, unitValue, "a flip leads from beyond +level to beyond -level, or back"},
+			{"flips", Int64, "", "flips seen at the samples"},
+			{"time", Double, unitTime, "recorded time"},
+		}},
 	}
 }

@@ -78,6 +78,7 @@ type recorder struct {
 	dirichlet  *dirichlet
 	stride     int64 // samples between Dirichlet forms
 	transients *transients
+	flips      *flips
 	spatial    *spatial // nil if not asked for
 	every      int64    // samples between snapshots
 }
@@ -99,6 +100,7 @@ func newRecorder(e kinetic.Engine, g *kinetic.Generator, obs []Observable, pairs
 	r.moments = newMoments(r.reading.channels, len(r.tracks), g.Levels)
 	r.dirichlet = newDirichlet(e, g, r.reading, pairs)
 	r.transients = newTransients(TransientTimes(plan.Settle, plan.Span, plan.Step), r.lanes, len(obs))
+	r.flips = newFlips(r.reading)
 	if plan.Covariance != "" {
 		families, err := FamiliesOf(g, plan.Covariance)
 		if err != nil {
@@ -121,7 +123,7 @@ func (r *recorder) channelPairs() [][2]int {
 		}
 		r.channels = append(r.channels, len(out))
 		out = append(out, [2]int{f.channel, g.channel})
-		if f.Kind == Fourier {
+		if f.amplitude() {
 			out = append(out, [2]int{f.channel + 1, f.channel + 1})
 		}
 	}
@@ -192,6 +194,7 @@ func (r *recorder) sample(k int64) {
 	r.tl.next()
 	r.correlator.add(r.reading)
 	r.moments.add(r.tl.segment(k, MomentSegments), r.reading)
+	r.flips.add(r.reading)
 	if k%r.stride == 0 {
 		r.dirichlet.add(r.tl.segment(k, PairSegments))
 	}
@@ -247,6 +250,7 @@ func (r *recorder) unit(label Label) Unit {
 		u.Covariance = r.spatial.rows()
 	}
 	u.Transients = r.transients.rows(r.reading, r.plan.Step)
+	u.Flips = r.flips.rows(r.reading, r.plan.Step)
 	return u
 }
 
@@ -265,7 +269,7 @@ func (r *recorder) momentRows() []MomentRow {
 				sums = r.moments.track(s, l.track, r.reading)
 			default:
 				sums = r.moments.channel(s, l.channel)
-				if l.Kind == Fourier {
+				if l.amplitude() {
 					for i, v := range r.moments.channel(s, l.channel+1) {
 						sums[i] += v
 					}
@@ -307,7 +311,7 @@ func (r *recorder) pairSums(segment, lag, p int) (int64, pairSums) {
 		return r.correlator.trackPair(segment, lag, l.track, r.components(o))
 	}
 	n, sums := r.correlator.channelPair(segment, lag, r.channels[p])
-	if l.Kind == Fourier {
+	if l.amplitude() {
 		_, im := r.correlator.channelPair(segment, lag, r.channels[p]+1)
 		sums.f += im.f
 		sums.g += im.g

@@ -11,6 +11,7 @@ type Unit struct {
 	Dirichlet       []DirichletRow
 	Covariance      []CovarianceRow
 	Transients      []TransientRow
+	Flips           []FlipRow
 }
 
 // TrajectoryRow describes one lane of a unit.
@@ -78,6 +79,16 @@ type TransientRow struct {
 	Time       float64
 	Count      int64
 	Sum1, Sum2 float64
+}
+
+// FlipRow counts, over lanes, how often the magnetization went from beyond one of
+// +Level and -Level to beyond the other, as seen at the samples, in the time
+// recorded.
+type FlipRow struct {
+	Observable string
+	Level      float64
+	Flips      int64
+	Time       float64
 }
 
 // Segments of a recorded span.

@@ -57,6 +57,12 @@ type observableJSON struct {
 	TauIntLow       *float64      `json:"tau_int_low,omitempty"`
 	TauIntHigh      *float64      `json:"tau_int_high,omitempty"`
 	TauIntFormula   *float64      `json:"tau_int_err_formula,omitempty"`
+	Flips           *int64        `json:"flips,omitempty"`
+	FlipLevel       *float64      `json:"flip_level,omitempty"`
+	TauFlips        *float64      `json:"tau_flips,omitempty"`
+	TauFlipsLow     *float64      `json:"tau_flips_low,omitempty"`
+	TauFlipsHigh    *float64      `json:"tau_flips_high,omitempty"`
+	TauFlipsBound   *float64      `json:"tau_flips_bound,omitempty"`
 	TauIntModel     *float64      `json:"tau_int_model,omitempty"`
 	TauIntModelErr  *float64      `json:"tau_int_model_err,omitempty"`
 	TauSingle       *float64      `json:"tau_single,omitempty"`
@@ -267,6 +273,12 @@ func jsonOfObservable(o *analysis.ObservableResult) observableJSON {
 	if o.SlowestInterval.OK {
 		j.TauSlowestLow, j.TauSlowestHigh = number(o.SlowestInterval.Low), number(o.SlowestInterval.High)
 		j.WeightFloor = number(o.WeightFloor)
+	}
+	if s := &o.Switching; s.OK {
+		j.Flips, j.FlipLevel, j.TauFlipsBound = &s.Flips, number(s.Level), number(s.Bound.Value)
+		if s.Tau.OK {
+			j.TauFlips, j.TauFlipsLow, j.TauFlipsHigh = number(s.Tau.Value), number(s.Tau.Low), number(s.Tau.High)
+		}
 	}
 	if o.Shape.OK {
 		j.Shape = o.Shape.Prefers

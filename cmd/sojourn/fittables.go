@@ -105,6 +105,12 @@ var fitTables = []fitTable{
 			optional("tau_slowest_high", unitTime, "upper end of that interval; missing if unbounded"),
 			optional("weight_floor", "", "share of the variance that the interval assumes in the slowest mode"),
 			optional("window", unitTime, "where the sum for tau_int stops"),
+			optional("flips", "", "flips between the two wells of the observable, where it has two"),
+			optional("flip_level", unitValue, "a flip leads from beyond +flip_level to beyond -flip_level, or back"),
+			optional("tau_flips", unitTime, "relaxation time from the flips, T/(2 flips)"),
+			optional("tau_flips_low", unitTime, "lower end of its 95 % interval"),
+			optional("tau_flips_high", unitTime, "upper end of that interval"),
+			optional("tau_flips_bound", unitTime, "with 95 % confidence the time from the flips is longer"),
 		},
 		rows: func(f *findings, row func(p *finding, values ...any)) {
 			for i := range f.points {
@@ -271,7 +277,19 @@ func relaxationRow(o *analysis.ObservableResult) []any {
 	if o.Integrated.OK {
 		window = orMissing(o.Window)
 	}
-	return append(row, slowest, boundOf(o.SlowestBound), low, high, floor, window)
+	row = append(row, slowest, boundOf(o.SlowestBound), low, high, floor, window)
+	return append(row, switchingRow(&o.Switching)...)
+}
+
+func switchingRow(s *analysis.Switching) []any {
+	if !s.OK {
+		return []any{nil, nil, nil, nil, nil, nil}
+	}
+	row := []any{float64(s.Flips), s.Level, nil, nil, nil, s.Bound.Value}
+	if s.Tau.OK {
+		row[2], row[3], row[4] = s.Tau.Value, s.Tau.Low, s.Tau.High
+	}
+	return row
 }
 
 // writeFits writes every table of fits/ that has rows for the study.

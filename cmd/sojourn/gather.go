@@ -99,6 +99,9 @@ func (g *gathering) add(u *observables.Unit) error {
 	if err := g.addTransients(u); err != nil {
 		return err
 	}
+	if err := g.addFlips(u); err != nil {
+		return err
+	}
 	g.addSpatial(u, index)
 	return nil
 }
@@ -149,6 +152,28 @@ func (g *gathering) addPairs(u *observables.Unit) error {
 		x := &pair.Dirichlet[g.units-1][r.Segment]
 		x.N += r.Count
 		x.S += r.Sum
+	}
+	return nil
+}
+
+// addFlips takes the counts of flips; tables from before there were any have
+// none.
+func (g *gathering) addFlips(u *observables.Unit) error {
+	for i := range u.Flips {
+		r := &u.Flips[i]
+		o, ok := g.byName[r.Observable]
+		if !ok {
+			return fmt.Errorf("unit %d: the flips of %q do not belong to this point", u.Unit, r.Observable)
+		}
+		obs := &g.point.Observables[o]
+		if len(obs.Flips) < g.units-1 {
+			continue // an earlier unit has none
+		}
+		if len(obs.Flips) < g.units {
+			obs.Flips = append(obs.Flips, nil)
+		}
+		unit := &obs.Flips[g.units-1]
+		*unit = append(*unit, analysis.Flips{Level: r.Level, N: r.Flips, Time: r.Time})
 	}
 	return nil
 }
