@@ -24,53 +24,52 @@ func leastSquares(model func(x float64, p []float64) float64, x, y, se []float64
 }
 
 func marquardt(model func(x float64, p []float64) float64, x, y, se, start []float64) curveFit {
-	n, k := len(x), len(start)
-	p := append([]float64(nil), start...)
-	residuals := func(p []float64) ([]float64, float64) {
-		r, chi2 := make([]float64, n), 0.0
+	return minimise(func(p []float64) []float64 {
+		r := make([]float64, len(x))
 		for i := range r {
 			r[i] = (y[i] - model(x[i], p)) / se[i]
-			chi2 += r[i] * r[i]
 		}
-		return r, chi2
-	}
-	r, chi2 := residuals(p)
+		return r
+	}, start)
+}
+
+// minimise finds the parameters with the least sum of squared residuals near
+// the start.
+func minimise(residuals func(p []float64) []float64, start []float64) curveFit {
+	k := len(start)
+	p := append([]float64(nil), start...)
+	r := residuals(p)
+	chi2 := dot(r, r)
 	if math.IsNaN(chi2) || math.IsInf(chi2, 0) {
 		return curveFit{}
 	}
-	jacobian := func() [][]float64 {
-		j := make([][]float64, n)
-		for i := range j {
-			j[i] = make([]float64, k)
-		}
+	normal := func() (a [][]float64, g []float64) {
 		q := append([]float64(nil), p...)
+		columns := make([][]float64, k)
 		for c := range k {
 			h := 1e-6 * math.Max(math.Abs(p[c]), 1e-3)
-			for i := range j {
-				q[c] = p[c] + h
-				up := model(x[i], q)
-				q[c] = p[c] - h
-				j[i][c] = (up - model(x[i], q)) / (2 * h * se[i])
-			}
+			q[c] = p[c] + h
+			up := residuals(q)
+			q[c] = p[c] - h
+			down := residuals(q)
 			q[c] = p[c]
+			columns[c] = make([]float64, len(r))
+			for i := range r {
+				columns[c][i] = (down[i] - up[i]) / (2 * h)
+			}
 		}
-		return j
-	}
-	normal := func(j [][]float64) ([][]float64, []float64) {
-		a, g := square(k), make([]float64, k)
-		for i := range j {
-			for c := range k {
-				g[c] += j[i][c] * r[i]
-				for d := range k {
-					a[c][d] += j[i][c] * j[i][d]
-				}
+		a, g = square(k), make([]float64, k)
+		for c := range k {
+			g[c] = dot(columns[c], r)
+			for d := range k {
+				a[c][d] = dot(columns[c], columns[d])
 			}
 		}
 		return a, g
 	}
 	lambda := 1e-3
 	for range 200 {
-		a, g := normal(jacobian())
+		a, g := normal()
 		improved := false
 		for lambda < 1e12 {
 			damped := square(k)
@@ -83,14 +82,14 @@ func marquardt(model func(x float64, p []float64) float64, x, y, se, start []flo
 				lambda *= 10
 				continue
 			}
-			step := append([]float64(nil), g...)
-			solveLower(l, step)
-			solveUpper(l, step)
-			trial := make([]float64, k)
+			trial := append([]float64(nil), g...)
+			solveLower(l, trial)
+			solveUpper(l, trial)
 			for c := range trial {
-				trial[c] = p[c] + step[c]
+				trial[c] += p[c]
 			}
-			rt, ct := residuals(trial)
+			rt := residuals(trial)
+			ct := dot(rt, rt)
 			if !(ct < chi2) {
 				lambda *= 10
 				continue
@@ -105,7 +104,7 @@ func marquardt(model func(x float64, p []float64) float64, x, y, se, start []flo
 			break
 		}
 	}
-	a, _ := normal(jacobian())
+	a, _ := normal()
 	l, ok := cholesky(a)
 	if !ok {
 		return curveFit{}

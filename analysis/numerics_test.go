@@ -195,3 +195,40 @@ func TestDecreasing(t *testing.T) {
 		}
 	}
 }
+
+// Without noise a sum of exponentials is found exactly, and its tail integral
+// and sensitivity follow.
+func TestSumFit(t *testing.T) {
+	times := []float64{0, 0.1, 0.2, 0.3, 0.5, 0.8, 1.2, 1.8, 2.7, 4}
+	one := square(len(times))
+	for i := range one {
+		one[i][i] = 1e-4
+	}
+	l, _ := cholesky(one)
+	for _, terms := range [][]exponential{{{1, 0.7}}, {{.3, 1}, {.7, 6}}, {{.3, .5}, {.3, 3}, {.4, 15}}} {
+		y := make([]float64, len(times))
+		want := 0.0
+		for _, e := range terms {
+			for i, x := range times {
+				y[i] += e.c * math.Exp(-e.rate*x)
+			}
+			want += e.c / e.rate * math.Exp(-e.rate*0.3)
+		}
+		f, ok := newSumFit(l, times, y, len(terms), 0.05, 0.1, 30)
+		got, sensitivity := f.tail(0.3)
+		if !ok || math.Abs(got/want-1) > 2e-3 {
+			t.Errorf("%v: tail %g, want %g, fit %v %v", terms, got, want, f.c, f.rate)
+		}
+		// The sensitivity is the derivative: refit with one datum moved.
+		moved := append([]float64(nil), y...)
+		moved[3] += 1e-4
+		g, _ := newSumFit(l, times, moved, len(terms), 0.05, 0.1, 30)
+		after, _ := g.tail(0.3)
+		change := make([]float64, len(times))
+		change[3] = 1e-4
+		solveLower(l, change)
+		if d := dot(sensitivity, change); math.Abs(after-got-d) > 0.1*math.Abs(d)+2e-5 {
+			t.Errorf("%v: the tail changes by %g, predicted %g", terms, after-got, d)
+		}
+	}
+}

@@ -148,7 +148,15 @@ func (res *ObservableResult) slowest(in *integrated, opt Options, code, reason s
 		res.SlowestInterval = noInterval(codeNoise, "too few lags lie within the decay")
 		return
 	}
-	res.Model = modelAverage(in, &f)
+	// Blocks that exist only because tau came out small by chance do not count.
+	se := res.Integrated.Err / res.Integrated.Value
+	p := in.pool.p
+	if len(p.Starts)*p.splitFor(in.tau*math.Exp(2*se), len(p.Pairs[in.k].Sums[0])) < fewestModelUs {
+		res.Model = missing(codeFewUnits, "the average over models needs at least 16 blocks to resample")
+	} else {
+		res.Model = modelAverage(in, &f)
+	}
+	res.Shape = shape(&f)
 	res.SlowestInterval = slowestInterval(&f, opt.WeightFloor, res.Slowest)
 }
 

@@ -258,7 +258,8 @@ type Parameter struct {
 type Shape struct {
 	OK     bool
 	Reason string
-	// Prefers is exponential (one or a sum), stretched or power.
+	// Prefers is exponential (one or two are not contradicted), stretched, power,
+	// or not exponential (stretched or power).
 	Prefers string
 	Forms   []TrendModel // by decreasing weight
 }

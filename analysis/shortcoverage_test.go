@@ -20,14 +20,14 @@ func TestCoverage(t *testing.T) {
 		c.repeats, c.seed = repeats, 20261201
 		c.run()
 		t.Log(c)
-		gate := func(name string, tl *tally) {
+		gate := func(name string, tl *tally, least95 float64) {
 			if tl.missing > repeats/50 {
 				t.Errorf("%s, %s: %d of %d missing: %v", c.proc.name, name, tl.missing, repeats, tl.reasons)
 			}
 			if x := tl.cover68(); x < 57 || x > 79 {
 				t.Errorf("%s, %s: %.1f %% within one standard error", c.proc.name, name, x)
 			}
-			if x := tl.cover95(); x < 89.7 {
+			if x := tl.cover95(); x < least95 {
 				t.Errorf("%s, %s: %.1f %% within the 95 %% interval", c.proc.name, name, x)
 			}
 			// A third of a standard deviation, and four standard errors of it.
@@ -35,9 +35,10 @@ func TestCoverage(t *testing.T) {
 				t.Errorf("%s, %s: biased by %.2f standard deviations", c.proc.name, name, b)
 			}
 		}
-		gate("tau_int", &c.integrated)
-		if c.proc != &pureTS { // its variance and Dirichlet form are constants of the path
-			gate("tau_initial", &c.initial)
+		gate("tau_int", &c.integrated, 89.7)
+		gate("tau_int_model", &c.model, 85) // it may be less careful
+		if c.proc != &pureTS {              // its variance and Dirichlet form are constants of the path
+			gate("tau_initial", &c.initial, 89.7)
 		}
 		if c.boundAbove > repeats*5/100+10 {
 			t.Errorf("%s: the lower bound exceeds the truth in %d of %d data sets", c.proc.name, c.boundAbove, c.bounds)
@@ -60,7 +61,7 @@ func TestEfficiency(t *testing.T) {
 		name  string
 		tl    *tally
 		limit float64
-	}{{"tau_initial", &c.initial, 1.05}, {"tau_single", &c.single, 1.2}, {"tau_int", &c.integrated, 4.3}} {
+	}{{"tau_initial", &c.initial, 1.05}, {"tau_single", &c.single, 1.2}, {"tau_int_model", &c.model, 2.4}, {"tau_int", &c.integrated, 4.3}} {
 		_, sd := test.tl.bias()
 		if got := sd / c.ideal(); got > test.limit*1.16 || test.tl.n < 295 {
 			t.Errorf("%s: %.2f times the ideal error (%d of 300), want %.2f", test.name, got, test.tl.n, test.limit)
@@ -130,5 +131,36 @@ func TestReduced(t *testing.T) {
 	r := Infer(m.point(78, 16, 60, 0.1), Options{}).SlowMode
 	if r.Tau.OK || r.Tau.Code != codeLowerBound || !r.Bound.OK || r.Bound.Value > 1 || len(r.Dropped) != 2 || len(r.Shares) != 2 {
 		t.Errorf("tau %v, dropped %q, shares %v", r.Tau, r.Dropped, r.Shares)
+	}
+}
+
+// The form of the decay: a pure exponential, a sum, and a process whose rates
+// are spread so that C(t) falls like a power, must not be mistaken for each
+// other.
+func TestShape(t *testing.T) {
+	var many []exponential // weights of (1 + t/tau)^-2: integral of rate exp(-rate tau)
+	for rate := 0.02; rate < 20; rate *= 1.5 {
+		many = append(many, exponential{rate * rate * math.Exp(-rate*0.5), rate})
+	}
+	spread := ou("power", many...)
+	for _, test := range []struct {
+		proc *process
+		want string
+		span float64
+	}{{&pureOU, "exponential", 100}, {&spread, "power", 2000}} {
+		right, wrong := 0, 0
+		for seed := range uint64(10) {
+			s := Infer(test.proc.point(seed, 32, test.span, 0.1), Options{}).Observables[0].Shape
+			switch {
+			case s.Prefers == test.want:
+				right++
+			default:
+				wrong++
+			}
+		}
+		t.Logf("%s: %d right, %d wrong of 10", test.proc.name, right, wrong)
+		if wrong > 1 || right < 9 {
+			t.Errorf("%s: %d right, %d wrong of 10", test.proc.name, right, wrong)
+		}
 	}
 }
