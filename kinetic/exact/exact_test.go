@@ -379,3 +379,40 @@ func TestRoutesAgree(t *testing.T) {
 		}
 	}
 }
+
+// The lowest levels by block Lanczos against the full spectrum, multiplicities
+// included.
+func TestLowest(t *testing.T) {
+	specs := []kinetic.Spec{
+		kinetictest.Ising(kinetictest.Lattice(8), 0.4, kinetictest.HeatBath),
+		kinetictest.Ising(kinetictest.Lattice(2, 4), 0.4, kinetictest.HeatBath),
+		kinetictest.ToricCode(kinetictest.Lattice(2, 2), 0.5, "XZ", kinetictest.HeatBath, ""),
+		kinetictest.Ising(kinetictest.Lattice(2), 0.4, kinetictest.HeatBath),
+	}
+	for seed := range uint64(40) {
+		specs = append(specs, kinetictest.RandomSpec(seed, kinetictest.Size{MinStates: 4, MaxStates: 256, MaxCells: 8}))
+	}
+	for i, spec := range specs {
+		s := newSystem(t, spec)
+		st := explore(t, s)
+		sp, err := st.Spectrum()
+		if err != nil {
+			t.Fatal(err)
+		}
+		want := sp.Levels()[1:]
+		got, err := st.Lowest(4)
+		if err != nil {
+			t.Errorf("%d: %d states: %v", i, st.Len(), err)
+			continue
+		}
+		if len(got) != min(4, len(want)) {
+			t.Errorf("%d: %d levels of %d", i, len(got), len(want))
+			continue
+		}
+		for k, l := range got {
+			if l.Multiplicity != want[k].Multiplicity && !(l.AtLeast && l.Multiplicity == 18 && want[k].Multiplicity > 18) || math.Abs(l.Rate-want[k].Rate) > 1e-10*want[k].Rate {
+				t.Errorf("%d, %d states: level %d is %+v, want %+v", i, st.Len(), k, l, want[k])
+			}
+		}
+	}
+}

@@ -2,6 +2,8 @@ package exact
 
 import (
 	"math"
+	"runtime"
+	"sync"
 
 	"gonum.org/v1/gonum/mat"
 )
@@ -54,15 +56,52 @@ func (m *Matrix) Mul(dst, x []float64) {
 	if len(dst) != m.Len() || len(x) != m.Len() {
 		panic("exact: vector of the wrong length")
 	}
-	for i, e := range m.Exit {
-		sum := e * x[i]
-		from, to := m.Start[i], m.Start[i+1]
-		values := m.Symmetric[from:to]
-		for k, j := range m.To[from:to] {
-			sum -= values[k] * x[j]
+	parallel(m.Len(), func(first, end int) {
+		for i := first; i < end; i++ {
+			sum := m.Exit[i] * x[i]
+			from, to := m.Start[i], m.Start[i+1]
+			values := m.Symmetric[from:to]
+			for k, j := range m.To[from:to] {
+				sum -= values[k] * x[j]
+			}
+			dst[i] = sum
 		}
-		dst[i] = sum
+	})
+}
+
+// mulBlock computes dst = H x for width vectors, interleaved: component i of
+// vector c stands at i*width+c.
+func (m *Matrix) mulBlock(dst, x []float64, width int) {
+	parallel(m.Len(), func(from, to int) {
+		for i := from; i < to; i++ {
+			out := dst[i*width : (i+1)*width]
+			for c, v := range x[i*width : (i+1)*width] {
+				out[c] = m.Exit[i] * v
+			}
+			for k := m.Start[i]; k < m.Start[i+1]; k++ {
+				s := m.Symmetric[k]
+				j := int(m.To[k]) * width
+				for c, v := range x[j : j+width] {
+					out[c] -= s * v
+				}
+			}
+		}
+	})
+}
+
+// parallel calls f on parts of the range 0..n, on as many cores as there are.
+// What f computes must not depend on the division.
+func parallel(n int, f func(from, to int)) {
+	parts := min(runtime.GOMAXPROCS(0), n>>12)
+	if parts < 2 {
+		f(0, n)
+		return
 	}
+	var wait sync.WaitGroup
+	for p := range parts {
+		wait.Go(func() { f(n*p/parts, n*(p+1)/parts) })
+	}
+	wait.Wait()
 }
 
 // Apply computes dst = L f, the rate of change of the mean of f from each

@@ -67,6 +67,7 @@ func (st *States) Spectrum() (*Spectrum, error) {
 type Level struct {
 	Rate         float64
 	Multiplicity int
+	AtLeast      bool // the multiplicity is a lower bound
 }
 
 // Levels returns the distinct eigenvalues, increasing.
@@ -77,7 +78,7 @@ func (sp *Spectrum) Levels() []Level {
 			out[n].Multiplicity++
 			continue
 		}
-		out = append(out, Level{r, 1})
+		out = append(out, Level{Rate: r, Multiplicity: 1})
 	}
 	return out
 }
