@@ -178,7 +178,7 @@ func classEstimate(g *Generator, activity float64) Estimate {
 		return e
 	}
 	touches := g.meanTouches()
-	jump := 15 + 6.5*touches + 70*touches*outOfCache(e.Bytes)
+	jump := 15 + 6.5*touches + 35*touches*outOfCache(e.Bytes)
 	null := 0.0
 	for _, r := range g.Rates {
 		null += 2 * r
@@ -197,7 +197,7 @@ func tileEstimate(g *Generator, activity float64) Estimate {
 		return e
 	}
 	touches := g.meanTouches()
-	jump := 45 + 8*touches + 450*outOfCache(e.Bytes)
+	jump := 45 + 8*touches + 120*outOfCache(e.Bytes)
 	// Octaves without tiles are drawn from as if they had two.
 	null := 0.0
 	for _, r := range g.Rates {

@@ -17,6 +17,7 @@ type classes[T uint32 | uint64] struct {
 	tally
 	hot  hot
 	tags []T
+	seen T // of what was read ahead
 }
 
 // NewClasses returns the class engine for any generator, with one trajectory:
@@ -116,6 +117,23 @@ func (e *classes[T]) Advance(t float64) {
 	e.now = t
 }
 
+// lookAhead reads what the queue's jumps will change, so that their waits for
+// memory overlap. It changes nothing.
+func (e *classes[T]) lookAhead() {
+	var seats [window]uint32
+	for i := range e.queue {
+		seats[i] = e.arena[e.queue[i].at]
+	}
+	for _, a := range seats {
+		e.seen ^= e.tags[a]
+		for _, d := range e.hot.far {
+			if b := uint32(int32(a) + d); int(b) < len(e.tags) {
+				e.seen ^= e.tags[b]
+			}
+		}
+	}
+}
+
 // events executes events up to time t. It returns true if the stretch ended at
 // the event at e.next, which has been executed, and false if e.next is the
 // first event after t.
@@ -132,10 +150,18 @@ func (e *classes[T]) events(t float64) bool {
 	over := false
 	packed := int64(0) // the single word of sums, while it is in use
 	for next <= t {
+		if h.far != nil && head == window {
+			e.src = src
+			e.drawAhead()
+			src, head = e.src, 0
+			e.lookAhead()
+		}
 		tk := e.queue[head%window]
-		k := e.draw.draw(src.next())
-		i, rest := src.below(uint64(e.bound[k&255] - e.first[k&255]))
-		e.queue[head%window] = token{k, e.first[k&255] + uint32(i), rest}
+		if h.far == nil {
+			k := e.draw.draw(src.next())
+			i, rest := src.below(uint64(e.bound[k&255] - e.first[k&255]))
+			e.queue[head%window] = token{k, e.first[k&255] + uint32(i), rest}
+		}
 		head++
 		left--
 		if tk.at < end[tk.class&255] {

@@ -58,7 +58,7 @@ func TestExactMeans(t *testing.T) {
 		{"toric 3 Y", toricSpec(t, 0.8, 3, "X", "Y"), ring(0.8, 9), "independent terms with one parity constraint, elementary"},
 	} {
 		t.Run(c.name, func(t *testing.T) {
-			mean, se := meanTerm(t, c.spec, 200, 2, 40, 400)
+			mean, se := meanTerm(t, c.spec, 200, 2, 40, 600)
 			if math.Abs(mean-c.want) > 4*se || se > 0.01*c.want {
 				t.Errorf("mean term %.5f(%.5f), want %.5f: %.1f standard errors (%s)", mean, se, c.want, (mean-c.want)/se, c.source)
 			}

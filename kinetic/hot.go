@@ -15,6 +15,9 @@ type hot struct {
 	delta   []int64 // words per (move of a shape, pattern)
 	words   uint32
 	touches int // most seats that one jump changes
+	// far lists where seats lie, as address differences, that a jump changes
+	// and that are not in its own line of the cache; nil for small lattices.
+	far []int32
 }
 
 type hotPlace struct {
@@ -63,5 +66,39 @@ func newHot(g *Generator) hot {
 			})
 		}
 	}
+	h.far = farTouches(g)
 	return h
+}
+
+// farSeats is how many seats outgrow the second-level cache.
+const farSeats = 1 << 18
+
+// farTouches looks at the middle of the lattice.
+func farTouches(g *Generator) []int32 {
+	if g.Addresses() < farSeats {
+		return nil
+	}
+	far := []int32{}
+	middle := g.Lattice.Size
+	for a := range middle {
+		middle[a] /= 2
+	}
+	const line = 16
+	first := g.Lattice.Index(middle) * len(g.Seats)
+	for s := range g.Seats {
+		p := g.Places[g.PlaceOf(first+s)]
+		for m := range g.Seats[s].Moves {
+			mv := g.Moves[int(p.First)+m]
+			for _, t := range g.Touch[mv.First:mv.Last] {
+				near := t.Delta > -line && t.Delta < line
+				for _, d := range far {
+					near = near || (t.Delta-d > -line && t.Delta-d < line)
+				}
+				if !near {
+					far = append(far, t.Delta)
+				}
+			}
+		}
+	}
+	return far
 }

@@ -35,8 +35,10 @@ type listing struct {
 	nulls uint64
 }
 
-// window is how many tokens are drawn ahead.
-const window = 16
+// window is how many tokens are drawn ahead: one for each used, while a jump
+// waits for its own memory; or all at once, so that what they will read can be
+// read together, where waiting for memory is what counts.
+const window = 32
 
 // token is an attempted jump drawn ahead: a position in the arena, within the
 // bound of a class, and 64 random bits that choose among the seat's moves.
@@ -114,26 +116,46 @@ func (l *listing) setBounds() bool {
 func (l *listing) newStretch() {
 	l.left = min(max(l.seats, 4096), 100000)
 	l.setScale()
-	l.head = 0
 	if l.draw.sum == 0 {
 		return
 	}
+	l.drawAhead()
+}
+
+// drawAhead fills the queue.
+func (l *listing) drawAhead() {
+	l.head = 0
 	for i := range l.queue {
-		k := l.draw.draw(l.src.next())
-		at, rest := l.src.below(uint64(l.bound[k] - l.first[k]))
-		l.queue[i] = token{k, l.first[k] + uint32(at), rest}
+		l.queue[i] = l.draw1()
 	}
+}
+
+// draw1 draws one attempt of the present stretch.
+func (l *listing) draw1() token {
+	k := l.draw.draw(l.src.next())
+	at, rest := l.src.below(uint64(l.bound[k&255] - l.first[k&255]))
+	return token{k, l.first[k&255] + uint32(at), rest}
 }
 
 // redraw takes the token at the head of the queue and puts a new one in its
 // place.
 func (l *listing) redraw() token {
 	tk := l.queue[l.head%window]
-	k := l.draw.draw(l.src.next())
-	i, rest := l.src.below(uint64(l.bound[k&255] - l.first[k&255]))
-	l.queue[l.head%window] = token{k, l.first[k&255] + uint32(i), rest}
+	l.queue[l.head%window] = l.draw1()
 	l.head++
 	return tk
+}
+
+// take takes the next token; when the queue was used up and is full again,
+// filled is true.
+func (l *listing) take() (tk token, filled bool) {
+	if l.head == window {
+		l.drawAhead()
+		filled = true
+	}
+	tk = l.queue[l.head%window]
+	l.head++
+	return tk, filled
 }
 
 func (l *listing) setScale() {

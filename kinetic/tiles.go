@@ -30,6 +30,7 @@ type tiles[P uint8 | uint16] struct {
 	patterns []P
 	tile     []tile
 
+	seen    uint64   // of what was read ahead
 	weight  []uint64 // by class: its rate, scaled and rounded up
 	keep    []uint64 // by class: the probability that makes it exact, scaled to 2^64-1
 	byShape []shapeWeights
@@ -182,7 +183,10 @@ func (e *tiles[P]) Advance(t float64) {
 		panic("kinetic: Advance to an earlier time")
 	}
 	for e.next <= t {
-		tk := e.redraw()
+		tk, filled := e.take()
+		if filled && e.hot.far != nil {
+			e.lookAhead()
+		}
 		over := e.attempt(tk)
 		e.left--
 		if over || e.left == 0 {
@@ -194,6 +198,23 @@ func (e *tiles[P]) Advance(t float64) {
 		}
 	}
 	e.now = t
+}
+
+// lookAhead reads what the queue's jumps will change, so that their waits for
+// memory overlap. It changes nothing.
+func (e *tiles[P]) lookAhead() {
+	var seats [window]uint32
+	for i := range e.queue {
+		seats[i] = e.arena[e.queue[i].at] << tileShift
+	}
+	for _, a := range seats {
+		e.seen ^= uint64(e.patterns[a]) ^ e.tile[a>>tileShift].weight
+		for _, d := range e.hot.far {
+			if b := uint32(int32(a) + d); int(b) < len(e.patterns) {
+				e.seen ^= uint64(e.patterns[b]) ^ e.tile[b>>tileShift].weight
+			}
+		}
+	}
 }
 
 // attempt executes the jump of a token, unless it is a null event; it returns
