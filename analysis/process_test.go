@@ -12,7 +12,6 @@ type process struct {
 	name   string
 	terms  []exponential
 	sample func(rng *rand.Rand, x []float64, step float64) // fills x
-	exact  func() (initial, integrated, slowest float64)
 }
 
 // ou is a sum of independent Ornstein-Uhlenbeck processes with variances c.
@@ -194,13 +193,12 @@ func (p *process) point(seed uint64, units int, span, step float64) Point {
 
 // The processes of the coverage tables.
 var (
-	pureOU  = ou("ou", exponential{1, 1})
-	pureTS  = telegraph("two-state", 1)
-	nearMix = ou("mixA", exponential{.9, 1}, exponential{.08, 3}, exponential{.02, 10})
-	hardC   = ou("mixC", exponential{.3, 1}, exponential{.3, 3}, exponential{.4, 10})
-	hardD   = ou("mixD", exponential{.3, 1}, exponential{.7, 1.5})
-	hardE   = ou("mixE", exponential{.6, 1}, exponential{.3, 2}, exponential{.1, 5})
-	hardF   = ou("mixF", exponential{.15, 1}, exponential{.85, 4})
+	pureOU = ou("ou", exponential{1, 1})
+	pureTS = telegraph("two-state", 1)
+	hardC  = ou("mixC", exponential{.3, 1}, exponential{.3, 3}, exponential{.4, 10})
+	hardD  = ou("mixD", exponential{.3, 1}, exponential{.7, 1.5})
+	hardE  = ou("mixE", exponential{.6, 1}, exponential{.3, 2}, exponential{.1, 5})
+	hardF  = ou("mixF", exponential{.15, 1}, exponential{.85, 4})
 )
 
 func quantile(x []float64, q float64) float64 {
@@ -260,10 +258,4 @@ var (
 		{math.Sqrt(.3), math.Sqrt(.3), math.Sqrt(.4)}, {math.Sqrt(.6), -math.Sqrt(.3), math.Sqrt(.1)}}}
 	threeOfThree = mixture{"A3", []float64{1, 3, 10}, [][]float64{
 		{math.Sqrt(.3), math.Sqrt(.3), math.Sqrt(.4)}, {math.Sqrt(.6), -math.Sqrt(.3), math.Sqrt(.1)}, {math.Sqrt(.2), math.Sqrt(.5), -math.Sqrt(.3)}}}
-	twoClose = mixture{"B", []float64{1, 1.5}, [][]float64{
-		{math.Sqrt(.3), math.Sqrt(.7)}, {math.Sqrt(.7), -math.Sqrt(.3)}}}
-	closeThird = mixture{"B3", []float64{1, 1.5, 4}, [][]float64{
-		{math.Sqrt(.3), math.Sqrt(.5), math.Sqrt(.2)}, {math.Sqrt(.5), -math.Sqrt(.3), math.Sqrt(.2)}}}
-	apart = mixture{"sectors", []float64{1, 2.5, 3, 10}, [][]float64{
-		{1, .3, 0, 0}, {0, 0, 1, .5}}}
 )
