@@ -2,6 +2,7 @@ package kinetic
 
 import (
 	"fmt"
+	"slices"
 
 	"sojourn/kinetic/internal/stabilizer"
 	"sojourn/kinetic/pauli"
@@ -53,8 +54,11 @@ func GroundStates(s Spec) (Ground, error) {
 	reference := true // and it is 0
 	for _, f := range s.Families {
 		level, unique := lowestLevel(f, s.Levels)
+		if f.Couplings != nil {
+			level, unique = 1, !slices.Contains(f.Couplings, 0)
+		}
 		lowest = lowest && unique
-		reference = reference && level == 0 && unique
+		reference = reference && level == 0 && unique && f.Signs == nil
 	}
 	sites := float64(s.SiteCount())
 	if reference {
@@ -71,7 +75,9 @@ func GroundStates(s Spec) (Ground, error) {
 	r := newRelations(s)
 	for _, f := range s.Families {
 		level, _ := lowestLevel(f, s.Levels)
+		first := len(r.want)
 		r.add(f.Operator, f.Cut, level)
+		r.turn(f, first)
 	}
 	want := r.want
 	if !lowest {
@@ -106,7 +112,7 @@ func withoutZeroCouplings(s Spec) Spec {
 	all := s.Families
 	s.Families = nil
 	for _, f := range all {
-		if f.Coupling != 0 {
+		if f.Coupling != 0 || f.Couplings != nil {
 			s.Families = append(s.Families, f)
 		}
 	}
@@ -165,6 +171,29 @@ func (r *relations) add(o pauli.Operator, cut Cut, level uint8) {
 		}
 		r.system.EndRow()
 		r.want = append(r.want, level)
+	}
+}
+
+// turn makes the levels wanted of a family's rows, of which first is the first,
+// those of lowest energy where couplings differ from term to term.
+func (r *relations) turn(f FamilySpec, first int) {
+	if f.Signs == nil && f.Couplings == nil {
+		return
+	}
+	for cell := range r.spec.Lattice.Cells() {
+		if _, ok := r.spec.Term(f.Operator, f.Cut, cell); !ok {
+			continue
+		}
+		if f.Couplings != nil {
+			r.want[first] = 0
+			if f.Couplings[cell] < 0 {
+				r.want[first] = 1
+			}
+		}
+		if f.Signs != nil {
+			r.want[first] ^= f.Signs[cell]
+		}
+		first++
 	}
 }
 

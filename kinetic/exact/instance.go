@@ -2,6 +2,7 @@ package exact
 
 import (
 	"fmt"
+	"math"
 	"math/big"
 	"slices"
 
@@ -17,8 +18,9 @@ type Kind struct {
 	Name  string
 	Group string
 	// Energy is the energy of an instance by level; nil for a tracked operator.
+	// Where couplings vary from term to term it is that of the common coupling,
+	// and Instance.Energy counts.
 	Energy []float64
-	exact  []*big.Rat
 	shape  []float64 // energy over -J by level, as given
 	Order  bool      // its sum is the magnetization
 	// Line tells an operator with an extent from one that is local to a cell.
@@ -37,6 +39,9 @@ type Instance struct {
 	Kind     int // index into System.Kinds
 	Position int // cell, or transverse position
 	Factors  []Factor
+	// Energy is its energy by level; nil for a tracked operator.
+	Energy []float64
+	exact  []*big.Rat
 }
 
 // Factor is X^X Z^Z on one site of the lattice; site = cell*Sites + site of the
@@ -48,13 +53,14 @@ type Factor struct {
 // enumerate lists the kinds and their instances: energy families with a
 // coupling, local tracked operators, lines.
 func (s *System) enumerate() error {
-	add := func(k Kind, op pauli.Operator, cut kinetic.Cut) {
+	add := func(k Kind, op pauli.Operator, cut kinetic.Cut, energies func(cell int) []*big.Rat) {
 		k.First, k.extent = len(s.Instances), op.Extent
 		positions := transverse(s.Spec.Lattice, op.Extent)
 		k.Positions = len(positions)
 		for p, at := range positions {
 			if f, ok := s.fold(op, at, cut); ok {
-				s.Instances = append(s.Instances, Instance{Kind: len(s.Kinds), Position: p, Factors: f})
+				exact := energies(p)
+				s.Instances = append(s.Instances, Instance{len(s.Kinds), p, f, floats(exact), exact})
 			}
 		}
 		k.Count = len(s.Instances) - k.First
@@ -62,56 +68,92 @@ func (s *System) enumerate() error {
 	}
 	families := 0
 	for i, f := range s.Spec.Families {
-		if f.Coupling == 0 {
+		if f.Coupling == 0 && f.Couplings == nil {
 			continue
 		}
 		k := Kind{Name: f.Name, Group: f.Group, Index: families, shape: f.Shape}
 		families++
-		levels, err := levelEnergies(f, s.Spec.Levels)
+		energies, err := termEnergies(f, s.Spec)
 		if err != nil {
 			return fmt.Errorf("family %d (%s): %w", i, f.Name, err)
 		}
-		k.exact = levels
-		for _, e := range levels {
-			x, _ := e.Float64()
-			k.Energy = append(k.Energy, x)
+		levels, err := levelEnergies(f.Coupling, f.Shape, s.Spec.Levels)
+		if err != nil {
+			return fmt.Errorf("family %d (%s): %w", i, f.Name, err)
 		}
-		add(k, f.Operator, f.Cut)
+		k.Energy = floats(levels)
+		add(k, f.Operator, f.Cut, energies)
 	}
+	none := func(int) []*big.Rat { return nil }
 	for _, t := range s.Spec.Tracked {
 		if !t.Operator.Extended() {
-			add(Kind{Name: t.Name, Order: t.Order, Index: families}, t.Operator, kinetic.Drop)
+			add(Kind{Name: t.Name, Order: t.Order, Index: families}, t.Operator, kinetic.Drop, none)
 			families++
 		}
 	}
 	lines := 0
 	for _, t := range s.Spec.Tracked {
 		if t.Operator.Extended() {
-			add(Kind{Name: t.Name, Order: t.Order, Index: lines, Line: true}, t.Operator, kinetic.Drop)
+			add(Kind{Name: t.Name, Order: t.Order, Index: lines, Line: true}, t.Operator, kinetic.Drop, none)
 			lines++
 		}
 	}
 	return nil
 }
 
+// termEnergies returns a function that gives the energies by level of the term
+// at a cell. Terms of one coupling share them.
+func termEnergies(f kinetic.FamilySpec, spec kinetic.Spec) (func(cell int) []*big.Rat, error) {
+	if f.Couplings == nil {
+		levels, err := levelEnergies(f.Coupling, f.Shape, spec.Levels)
+		return func(int) []*big.Rat { return levels }, err
+	}
+	if spec.Levels != 2 || len(f.Couplings) != spec.Lattice.Cells() {
+		return nil, fmt.Errorf("%d couplings for %d cells of %d levels", len(f.Couplings), spec.Lattice.Cells(), spec.Levels)
+	}
+	by := map[float64][]*big.Rat{}
+	for _, j := range f.Couplings {
+		if math.IsNaN(j) || math.IsInf(j, 0) {
+			return nil, fmt.Errorf("the coupling %v", j)
+		}
+		levels, err := levelEnergies(j, f.Shape, spec.Levels)
+		if err != nil {
+			return nil, err
+		}
+		by[j] = levels
+	}
+	return func(cell int) []*big.Rat { return by[f.Couplings[cell]] }, nil
+}
+
 // levelEnergies returns E(s), s = 0..q-1, as exact rationals.
-func levelEnergies(f kinetic.FamilySpec, q int) ([]*big.Rat, error) {
-	j := bath.Exact(f.Coupling)
-	if f.Shape == nil {
+func levelEnergies(coupling float64, shape []float64, q int) ([]*big.Rat, error) {
+	j := bath.Exact(coupling)
+	if shape == nil {
 		if q != 2 {
 			return nil, fmt.Errorf("%d levels need a shape", q)
 		}
 		return []*big.Rat{new(big.Rat).Neg(j), j}, nil
 	}
-	if len(f.Shape) != q {
-		return nil, fmt.Errorf("a shape of %d entries for %d levels", len(f.Shape), q)
+	if len(shape) != q {
+		return nil, fmt.Errorf("a shape of %d entries for %d levels", len(shape), q)
 	}
 	out := make([]*big.Rat, q)
-	for l, x := range f.Shape {
+	for l, x := range shape {
 		out[l] = new(big.Rat).Mul(j, bath.Exact(x))
 		out[l].Neg(out[l])
 	}
 	return out, nil
+}
+
+func floats(r []*big.Rat) []float64 {
+	if r == nil {
+		return nil
+	}
+	out := make([]float64, len(r))
+	for i := range r {
+		out[i], _ = r[i].Float64()
+	}
+	return out
 }
 
 // transverse lists the positions of an operator with the given extent: the

@@ -72,7 +72,7 @@ func (s *System) Energy() Observable {
 			continue
 		}
 		for i := k.First; i < k.First+k.Count; i++ {
-			c = append(c, Part{i, k.Energy})
+			c = append(c, Part{i, s.Instances[i].Energy})
 		}
 	}
 	return Observable{Name: "energy", Components: []Component{c}, Norm: 1}

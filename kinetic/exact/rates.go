@@ -26,6 +26,9 @@ func (s *System) rateKey(m Move) string {
 	key := fmt.Sprint(m.Bath)
 	for _, c := range m.Changes[:m.Energy] {
 		key += fmt.Sprint(" ", s.Instances[c.Instance].Kind, "+", c.Add)
+		for _, e := range s.energy(c.Instance) {
+			key += "," + e.RatString()
+		}
 	}
 	return key
 }

@@ -1,6 +1,10 @@
 package exact
 
-import "fmt"
+import (
+	"fmt"
+
+	"sojourn/kinetic"
+)
 
 // Relations between commuting operators can forbid that all levels are 0: the
 // product of XX, ZZ and YY on two sites is -1. The reference state therefore
@@ -24,9 +28,41 @@ type row struct {
 	pivot int // index into x, then z
 }
 
-// findReference fills s.Reference.
+// findReference fills s.Reference: the state just described, whose levels are
+// then counted from the other side where a family turns signs.
 func (s *System) findReference() error {
 	s.Reference = make([]uint8, len(s.Instances))
+	if err := s.relate(); err != nil {
+		return err
+	}
+	for f, spec := range s.coupled() {
+		if spec.Signs == nil {
+			continue
+		}
+		if s.Spec.Levels != 2 || len(spec.Signs) != s.Spec.Lattice.Cells() {
+			return fmt.Errorf("%s has %d signs for %d cells of %d levels", spec.Name, len(spec.Signs), s.Spec.Lattice.Cells(), s.Spec.Levels)
+		}
+		k := s.Kinds[f]
+		for i := k.First; i < k.First+k.Count; i++ {
+			s.Reference[i] ^= spec.Signs[s.Instances[i].Position]
+		}
+	}
+	return nil
+}
+
+// coupled lists the families that have a coupling, in the order of their kinds.
+func (s *System) coupled() []kinetic.FamilySpec {
+	var out []kinetic.FamilySpec
+	for _, f := range s.Spec.Families {
+		if f.Coupling != 0 || f.Couplings != nil {
+			out = append(out, f)
+		}
+	}
+	return out
+}
+
+// relate gives the instances in s.Reference the levels that relations demand.
+func (s *System) relate() error {
 	if s.unmixed() {
 		return nil // products of X alone, or of Z alone, have no phases
 	}

@@ -201,7 +201,7 @@ func (s *System) findMoves() error {
 }
 
 // energy returns the energies of an instance by level, nil for a tracked one.
-func (s *System) energy(instance int) []*big.Rat { return s.Kinds[s.Instances[instance].Kind].exact }
+func (s *System) energy(instance int) []*big.Rat { return s.Instances[instance].exact }
 
 // Apply adds the changes of move m to levels, in place.
 func (s *System) Apply(m int, levels []uint8) {
@@ -214,16 +214,9 @@ func (s *System) Apply(m int, levels []uint8) {
 // EnergyOf returns the energy of a state given by its levels.
 func (s *System) EnergyOf(levels []uint8) float64 {
 	e := 0.0
-	for _, k := range s.Kinds {
-		if k.Energy == nil {
-			continue
-		}
-		counts := make([]int, s.Spec.Levels)
-		for i := k.First; i < k.First+k.Count; i++ {
-			counts[levels[i]]++
-		}
-		for l, n := range counts {
-			e += float64(n) * k.Energy[l]
+	for i, l := range levels {
+		if t := &s.Instances[i]; t.Energy != nil {
+			e += t.Energy[l]
 		}
 	}
 	return e

@@ -50,6 +50,10 @@ func TestCompiledTables(t *testing.T) {
 			compiled++
 		}
 	}
+	for seed := range uint64(60) {
+		check("random signs", RandomSigns(seed, Enumerable))
+		check("random couplings", RandomCouplings(seed, Enumerable))
+	}
 	if compiled < models*9/10 {
 		t.Errorf("only %d of %d random models compiled", compiled, models)
 	}

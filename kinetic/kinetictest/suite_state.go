@@ -223,19 +223,25 @@ func (h *harness) damage(e kinetic.Engine, saved []byte) {
 // foreign checks that the saved state of one generator is refused by others,
 // those of equal size above all.
 func foreign(t *testing.T, make Make, subjects []*subject) {
-	hotter := fresh(t, make, Ising(Lattice(6), 0.5, HeatBath))
-	colder := fresh(t, make, Ising(Lattice(6), 0.6, HeatBath))
-	saved := hotter.Save(nil)
-	if err := colder.Restore(saved); err == nil {
+	varying := slices.ContainsFunc(subjects[0].spec.Families, func(f kinetic.FamilySpec) bool { return f.Couplings != nil })
+	ising := func(beta, coupling float64, size ...int) kinetic.Engine {
+		s := Ising(Lattice(size...), beta, HeatBath)
+		for f := range s.Families {
+			s.Families[f].Coupling = coupling
+			if varying {
+				s.Families[f].Couplings = slices.Repeat([]float64{coupling}, s.Lattice.Cells())
+			}
+		}
+		return fresh(t, make, s)
+	}
+	saved := ising(0.5, 1, 6).Save(nil)
+	if err := ising(0.6, 1, 6).Restore(saved); err == nil {
 		t.Error("a state at another temperature was restored")
 	}
-	coupled := Ising(Lattice(6), 0.5, HeatBath)
-	coupled.Families[0].Coupling = 2
-	if err := fresh(t, make, coupled).Restore(saved); err == nil {
+	if err := ising(0.5, 2, 6).Restore(saved); err == nil {
 		t.Error("a state of another coupling was restored")
 	}
-	flat := fresh(t, make, Ising(Lattice(3, 2), 0.5, HeatBath))
-	if err := fresh(t, make, Ising(Lattice(2, 3), 0.5, HeatBath)).Restore(flat.Save(nil)); err == nil {
+	if err := ising(0.5, 1, 2, 3).Restore(ising(0.5, 1, 3, 2).Save(nil)); err == nil {
 		t.Error("a state of the transposed lattice was restored")
 	}
 	for i, s := range subjects[1:] {

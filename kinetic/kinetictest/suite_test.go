@@ -7,3 +7,5 @@ import (
 )
 
 func TestObvious(t *testing.T) { kinetictest.Suite(t, kinetictest.NewObvious) }
+
+func TestObviousCouplings(t *testing.T) { kinetictest.SuiteCouplings(t, kinetictest.NewObvious) }
