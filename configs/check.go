@@ -10,10 +10,6 @@ import (
 // custom is the name under which a study spells out its own Hamiltonian.
 const custom = "custom"
 
-// notYet are tables that a study of this format may have but this version does
-// not read.
-var notYet = []string{"hamiltonian.disorder"}
-
 // check compares the keys of the file and the types of their values with the
 // schema. Values that fail are marked and not read later.
 func (d *decoder) check(root *node) {
@@ -61,8 +57,6 @@ func (d *decoder) checkTable(s *Section, t *node, model string) {
 		path := join(s.Name, e.name)
 		inner := slices.IndexFunc(schema, func(s Section) bool { return s.Name == path && path != "" })
 		switch {
-		case slices.Contains(notYet, path):
-			d.fault(e.at, path, "is not supported by this version")
 		case path == "hamiltonian.model":
 			k, _ := s.find(e.name)
 			d.checkValue(k, e.value, path)
@@ -156,9 +150,9 @@ func (d *decoder) checkSection(s *Section, e *entry, model string) {
 	d.meant[s.Name] = !isTable && !s.Repeated
 	tables := e.value.kind == kindList && !slices.ContainsFunc(e.value.items, func(n *node) bool { return n.kind != kindTable })
 	switch {
-	case s.Repeated && isTable:
+	case s.Repeated && isTable && !s.Single:
 		d.wrong(e.value, s.Name, "is written [[%s]], once for each", s.Name)
-	case s.Repeated && !tables || !s.Repeated && !isTable && !tables:
+	case !isTable && !tables:
 		d.wrong(e.value, s.Name, "is the table %s, not %s", s.title(), e.value.shown())
 	case !s.Repeated && tables:
 		d.wrong(e.value, s.Name, "is written [%s], once", s.Name)
@@ -210,7 +204,7 @@ func keysIn(s *Section, model string) []string {
 		if i := strings.LastIndexByte(inner.Name, '.'); i >= 0 {
 			parent, last = inner.Name[:i], inner.Name[i+1:]
 		}
-		if parent == s.Name && inner.Name != "" && (s.Name != "hamiltonian" || model == custom) {
+		if parent == s.Name && inner.Name != "" && (s.Name != "hamiltonian" || model == custom || !slices.Contains(customKeys, last)) {
 			out = append(out, last)
 		}
 	}

@@ -15,10 +15,11 @@ type decoder struct {
 	// were taken to mean, so that nothing complains that these are missing.
 	meant    map[string]bool
 	compiled map[string]compiled // by spec
+	turned   map[string]bool     // see uneven
 }
 
 func newDecoder(src *source) *decoder {
-	return &decoder{src: src, seen: map[placeKey]bool{}, meant: map[string]bool{}, compiled: map[string]compiled{}}
+	return &decoder{src: src, seen: map[placeKey]bool{}, meant: map[string]bool{}, compiled: map[string]compiled{}, turned: map[string]bool{}}
 }
 
 // placed is a fault with its place as a byte offset.

@@ -1,8 +1,9 @@
 package configs
 
-// engines are the engines that this version has, and the one that each stands
-// for.
-var engines = map[string]string{"auto": "classes", "classes": "classes"}
+import "sojourn/kinetic"
+
+// autoEngine leaves the choice of the engine to this package.
+const autoEngine = "auto"
 
 // lawKeys are the keys of a law, in [bath] and in [[bath.operator]]. The law of
 // an operator defaults to that of [bath].
@@ -85,6 +86,17 @@ var schema = []Section{
 		{Name: "axis", Type: Word, Words: []string{"x", "y", "z", "w"}, Needs: "needed", Doc: "axis that ends at the edge"},
 		{Name: "end", Type: Word, Words: []string{"first", "last"}, Needs: "needed", Doc: "cells with the first coordinate along it, or the last"},
 	}},
+	{Name: "hamiltonian.disorder", Repeated: true, Single: true, Doc: "Couplings that vary from term to term, drawn at random; with a single table also written [hamiltonian.disorder]. Each sample makes every point of the scan once.", Keys: []Key{
+		{Name: "of", Type: Name, Default: "all terms of several sites", Needs: "several tables, or a custom model of several families", Doc: "a family or a group"},
+		{Name: "kind", Type: Word, Words: []string{gaussian, plusMinus}, Needs: "needed",
+			Doc: "gaussian: J is normally distributed, whatever the family's coupling; plus-minus: the family's coupling, or minus that"},
+		{Name: "mean", Type: Number, Needs: "with gaussian", Scan: true, Doc: "of J"},
+		{Name: "sd", Type: Number, Range: positive, Needs: "with gaussian", Scan: true, Doc: "standard deviation of J"},
+		{Name: "probability", Type: Number, Range: Range{Set: true, Min: 0, Max: 1}, Needs: "with plus-minus", Scan: true, Doc: "of -J"},
+		{Name: "samples", Type: Integer, Range: Range{Set: true, Min: 1, Max: maxPoints}, Default: "1",
+			Doc: "draws of all random couplings, numbered from 0 in the column hamiltonian_disorder_sample; the same at all other scanned values"},
+		{Name: "seed", Type: Integer, Range: seedRange, Default: "1", Scan: true, Doc: "of the random couplings"},
+	}},
 	{Name: "bath", Doc: "The thermal bath and its coupling to the sites.", Keys: append([]Key{
 		{Name: "beta", Short: "beta", Type: Number, Range: notNegative, Scan: true,
 			Needs: "needed, here or in a scan", Doc: "inverse temperature, in inverse energy units"}},
@@ -108,7 +120,7 @@ var schema = []Section{
 		{Name: "span", Short: "span", Type: Number, Range: positive, Default: "4000/G", Scan: true, Doc: "time recorded"},
 		{Name: "step", Short: "step", Type: Number, Range: positive, Default: "0.25/G", Scan: true, Doc: "time between samples"},
 		{Name: "seed", Type: Integer, Range: seedRange, Default: "1", Scan: true, Doc: "of all random numbers"},
-		{Name: "engine", Type: Word, Words: []string{"auto", "classes"}, later: []string{"composition", "lanes", "tiles"}, Default: "auto", Doc: "how trajectories are drawn"},
+		{Name: "engine", Type: Word, Words: append([]string{autoEngine}, kinetic.EngineNames()...), Default: autoEngine, Doc: "how trajectories are drawn"},
 	}},
 	{Name: "observable", Repeated: true, Doc: "A quantity to record. Without any: energy, and magnetization or else the tracked lines that the bath changes.", Keys: []Key{
 		{Name: "kind", Type: Word, Words: kinds, Needs: "needed", Doc: "what it measures"},

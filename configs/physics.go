@@ -15,12 +15,13 @@ import (
 )
 
 // Generator compiles the point's thermal generator.
-func (p *Point) Generator() (*kinetic.Generator, error) { return kinetic.Compile(p.Spec) }
+func (p *Point) Generator() (*kinetic.Generator, error) { return kinetic.Compile(p.Draw()) }
 
 // identify computes the stream digest and the key.
 func (p *Point) identify(list []requested, h *hamiltonian) {
 	stream := canonical{text: []byte("sojourn stream 1\n")}
 	stream.hamiltonian(p.Spec)
+	stream.disorder(p)
 	stream.bath(p.Spec)
 	stream.string(p.Trajectory.Start)
 	stream.int(p.Trajectory.Seed)

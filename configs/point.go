@@ -32,6 +32,9 @@ func (r *reading) point() (p Point, ok bool) {
 	if !hasModel {
 		h = nil
 	}
+	if hasModel {
+		p.Disorder, p.Sample = r.disorder(h, operators)
+	}
 	p.Trajectory = r.trajectory(h)
 	p.Covariance = r.covariance(h)
 	var list []requested
@@ -44,8 +47,12 @@ func (r *reading) point() (p Point, ok bool) {
 			Bath: operators, Beta: beta,
 		}
 	}
+	p.Trajectory.EngineName = p.engine()
 	if !r.failed && len(r.d.faults) == 0 {
 		r.compile(&p, h, list)
+	}
+	if !r.failed && p.Disorder != nil {
+		r.checkAverages(&p, list)
 	}
 	r.times(&p.Trajectory, p.MaxRate)
 	if p.Covariance != nil {
@@ -68,15 +75,18 @@ const maxPlaces = 1 << 19
 // compile checks the point by compiling it, on a lattice that is no larger than
 // needed for every kind of neighbourhood to occur, and finds the largest rate.
 func (r *reading) compile(p *Point, h *hamiltonian, list []requested) {
-	small := p.Spec
-	small.Lattice = shortened(p.Spec)
+	small := p.nominalSpec()
 	if n := small.Lattice.Cells() * small.Sites; n > maxPlaces {
 		r.section("hamiltonian").fault("model", "the operators reach too far: %d surroundings of a site would have to be told apart; at most %d are", n, maxPlaces)
 		return
 	}
-	g, err := r.d.compile(small)
+	g, err := r.d.compile(small, p.Trajectory.EngineName)
 	if err != nil {
 		r.refused(err, h, p.Spec.Lattice.Axes)
+		return
+	}
+	if g.refusal != nil && p.Trajectory.Engine != autoEngine {
+		r.section("trajectory").fault("engine", "%s cannot run this: %s; engine = \"auto\" finds one that can", p.Trajectory.Engine, oneLine(g.refusal))
 		return
 	}
 	bath := r.section("bath")
@@ -100,12 +110,13 @@ type compiled struct {
 	families []kinetic.Family
 	lines    []kinetic.Line
 	maxRate  float64
-	changes  bool // whether any move changes anything
+	changes  bool  // whether any move changes anything
+	refusal  error // why the engine cannot run it
 }
 
 // compile compiles a spec, once if several points share it.
-func (d *decoder) compile(s kinetic.Spec) (compiled, error) {
-	key := fmt.Sprint(s)
+func (d *decoder) compile(s kinetic.Spec, engine string) (compiled, error) {
+	key := engine + fmt.Sprint(s)
 	if c, ok := d.compiled[key]; ok {
 		return c, nil
 	}
@@ -113,7 +124,7 @@ func (d *decoder) compile(s kinetic.Spec) (compiled, error) {
 	if err != nil {
 		return compiled{}, err
 	}
-	c := compiled{g.Families, g.Lines, g.MaxRate(), len(g.Touch)+len(g.Hits) > 0}
+	c := compiled{g.Families, g.Lines, g.MaxRate(), len(g.Touch)+len(g.Hits) > 0, kinetic.CheckEngine(engine, g)}
 	d.compiled[key] = c
 	return c, nil
 }
@@ -169,11 +180,6 @@ func idle(b kinetic.BathOperator, h *hamiltonian) bool {
 // reach neither itself around the lattice nor both edges, parity kept.
 func shortened(s kinetic.Spec) lattice.Lattice {
 	l := s.Lattice
-	for _, f := range s.Families {
-		if f.Signs != nil || f.Couplings != nil {
-			return l // given cell by cell
-		}
-	}
 	for a, n := range l.Size {
 		reach := 0
 		for _, f := range s.Families {
@@ -234,13 +240,18 @@ func (r *reading) refused(err error, h *hamiltonian, axes int) {
 		}
 		from.fault("energies", "%s", err)
 	default:
-		const most = 300 // exact energies can have very many digits
-		text := strings.ReplaceAll(err.Error(), "\n", "; ")
-		if len(text) > most {
-			text = text[:most] + "..."
-		}
-		v.fault("model", "%s", text)
+		v.fault("model", "%s", oneLine(err))
 	}
+}
+
+// oneLine is the text of an error; exact energies can have very many digits.
+func oneLine(err error) string {
+	const most = 300
+	text := strings.ReplaceAll(err.Error(), "\n", "; ")
+	if len(text) > most {
+		text = text[:most] + "..."
+	}
+	return text
 }
 
 // notCommuting says which operators do not commute, and where.

@@ -54,12 +54,19 @@ func (v view) items(name string) []view {
 		return nil
 	}
 	e := v.table.get(name)
-	if e == nil || e.value.bad || e.value.kind != kindList {
+	if e == nil || e.value.bad {
 		return nil
 	}
 	path := join(v.section.Name, name)
+	tables := e.value.items
+	switch {
+	case e.value.kind == kindTable && sectionOf(path).Single:
+		tables = []*node{e.value}
+	case e.value.kind != kindList:
+		return nil
+	}
 	var out []view
-	for _, t := range e.value.items {
+	for _, t := range tables {
 		out = append(out, view{r: v.r, section: sectionOf(path), table: t, label: path, at: t.at})
 	}
 	return out

@@ -39,7 +39,6 @@ func (r *reading) trajectory(h *hamiltonian) Trajectory {
 	t.Start, _ = v.word("start")
 	t.Seed, _ = v.integer("seed")
 	t.Engine, _ = v.word("engine")
-	t.EngineName = engines[t.Engine]
 	if h != nil && (t.Start == "up" || t.Start == "down") {
 		if _, ok := h.order(); !ok {
 			v.fault("start", "%s needs spins, which this Hamiltonian has not: take reference, random or both", strconv.Quote(t.Start))

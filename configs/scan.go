@@ -64,7 +64,14 @@ func (c combination) differs(earlier combination) int {
 
 // unfold lists the combinations of the study in order of appearance, the first
 // key of a scan varying slowest, and the scanned parameters by dotted name.
+//
+// Samples of random couplings are the outermost scan.
 func (d *decoder) unfold(root *node) (combinations []combination, scanned []string) {
+	combinations, scanned = d.unfoldScans(root)
+	return d.overSamples(root, combinations, scanned)
+}
+
+func (d *decoder) unfoldScans(root *node) (combinations []combination, scanned []string) {
 	scan, cases := root.get("scan"), root.get("case")
 	var scans []*node
 	switch {
@@ -222,6 +229,9 @@ func (s *scanReader) resolve(name string, e *entry) (dotted string, key Key, to 
 	if len(parts) == 4 {
 		return s.resolveItem(name, parts, e)
 	}
+	if strings.HasPrefix(dotted, "hamiltonian.disorder.") && len(parts) == 3 {
+		return s.resolveDisorder(name, parts[2], e)
+	}
 	if len(parts) == 2 {
 		for i := range schema {
 			sec := &schema[i]
@@ -252,7 +262,7 @@ func (s *scanReader) target(section, key string) target {
 
 // repeatedNames tells by which key the tables of a repeated section are named
 // in a scan: "hamiltonian.family.plaquette.coupling", "bath.operator.X.rate".
-var repeatedNames = map[string]string{"hamiltonian.family": "name", "bath.operator": "on"}
+var repeatedNames = map[string]string{"hamiltonian.family": "name", "bath.operator": "on", "hamiltonian.disorder": "of"}
 
 func (s *scanReader) resolveItem(name string, parts []string, e *entry) (dotted string, key Key, to target, ok bool) {
 	section := parts[0] + "." + parts[1]
@@ -283,6 +293,26 @@ func (s *scanReader) resolveItem(name string, parts []string, e *entry) (dotted 
 		s.fault(e.at, name, "there are %d [[%s]] with %s = %q", found, section, by, parts[2])
 	}
 	return name, key, to, found == 1
+}
+
+// resolveDisorder finds a number of [hamiltonian.disorder].
+func (s *scanReader) resolveDisorder(name, last string, e *entry) (dotted string, key Key, to target, ok bool) {
+	r := &reading{d: s.d, root: s.root}
+	tables := r.section("hamiltonian").items("disorder")
+	key, ok = sectionOf("hamiltonian.disorder").find(last)
+	switch {
+	case name == sampleName:
+		s.fault(e.at, name, "is scanned as it is: samples = the number of them stands in [hamiltonian.disorder]")
+	case !ok || !key.Scan:
+		s.fault(e.at, name, "cannot be scanned: [hamiltonian.disorder] has no such number")
+	case len(tables) == 0:
+		s.fault(e.at, name, "needs [hamiltonian.disorder] with its kind")
+	case len(tables) > 1:
+		s.fault(e.at, name, "could be of %d tables: write \"hamiltonian.disorder.OF.%s\", OF being what the table is of", len(tables), last)
+	default:
+		return name, key, target{table: tables[0].table, key: last}, true
+	}
+	return "", key, to, false
 }
 
 func (s *scanReader) unknown(name string, parts []string, e *entry) {

@@ -9,6 +9,7 @@ import (
 type Section struct {
 	Name     string // "lattice", "bath.operator"; "" for the top of the file
 	Repeated bool   // written [[...]], any number of times
+	Single   bool   // if repeated: written [...] where there is only one
 	Doc      string
 	Keys     []Key
 }
@@ -119,7 +120,7 @@ func (s *Section) title() string {
 	switch {
 	case s.Name == "":
 		return "the top of the file"
-	case s.Repeated:
+	case s.Repeated && !s.Single:
 		return "[[" + s.Name + "]]"
 	}
 	return "[" + s.Name + "]"

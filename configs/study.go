@@ -35,10 +35,12 @@ type Setting struct {
 type Point struct {
 	Scan        []Setting // value of each of Study.Scanned
 	Model       string
-	Parameters  []Setting // of a built-in model, defaults filled in
-	MaxRate     float64   // the largest rate of one bath operator
-	SizeAt      Fault     // where its lattice.size is written; without a message
-	Spec        kinetic.Spec
+	Parameters  []Setting    // of a built-in model, defaults filled in, and of disorder
+	MaxRate     float64      // the largest rate of one bath operator; see nominal for gaussian couplings
+	SizeAt      Fault        // where its lattice.size is written; without a message
+	Spec        kinetic.Spec // with one coupling for all terms of a family: see Draw
+	Disorder    []Disorder   // how couplings vary from term to term; nil if they do not
+	Sample      int          // which draw of them
 	Trajectory  Trajectory
 	Observables []Observable
 	Pairs       [][2]int // pairs of Observables to record, f <= g
@@ -60,8 +62,8 @@ type Trajectory struct {
 	Span   float64
 	Step   float64
 	Seed   int64
-	Engine string // as asked: auto, classes
-	// EngineName is the engine that runs the point: "classes" for auto.
+	Engine string // as asked
+	// EngineName is the engine that runs the point: one of kinetic.EngineNames.
 	EngineName string
 }
 

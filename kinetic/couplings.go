@@ -29,6 +29,9 @@ func checkDisorder(f FamilySpec, s Spec) error {
 			return fmt.Errorf("family %q gives %d couplings for %d cells", f.Name, n, s.Lattice.Cells())
 		}
 	}
+	if f.Couplings != nil && f.Shape != nil {
+		return fmt.Errorf("family %q has couplings of many sizes, which need the energies -J and J", f.Name)
+	}
 	for c, j := range f.Couplings {
 		if math.IsNaN(j) || math.IsInf(j, 0) {
 			return fmt.Errorf("family %q: the coupling of cell %d is %v", f.Name, c, j)

@@ -3,14 +3,56 @@ package kinetic
 import "math"
 
 // MaxRate is the largest rate of one bath operator on one site: the inverse of
-// the shortest time on which anything happens.
+// the shortest time on which anything happens. Where couplings vary in size it
+// is a bound.
 func (g *Generator) MaxRate() float64 {
 	best := 0.0
-	if g.Couplings != nil {
-		return newSeatRates(g).maxMove()
+	for _, r := range g.MaxRates() {
+		best = math.Max(best, r)
 	}
-	g.eachRate(func(_ *Shape, _, _ int, r float64) { best = math.Max(best, r) })
 	return best
+}
+
+// MaxRates is the largest rate of each bath operator on one site, by index into
+// Spec.Bath; bounds where couplings vary in size.
+func (g *Generator) MaxRates() []float64 {
+	if g.Couplings != nil {
+		return newSeatRates(g).maxMoves()
+	}
+	best := make([]float64, len(g.Spec.Bath))
+	g.eachRate(func(s *Shape, m, _ int, r float64) {
+		b := g.Seats[s.Seat].Moves[m].Bath
+		best[b] = math.Max(best[b], r)
+	})
+	return best
+}
+
+// EnergyRange bounds the energies of states: the sums of the lowest and of the
+// highest energies of all terms.
+func (g *Generator) EnergyRange() (low, high float64) {
+	for f, fam := range g.Families {
+		if fam.Energy == nil {
+			continue
+		}
+		if g.Couplings == nil {
+			least, most := fam.Energy[0], fam.Energy[0]
+			for _, e := range fam.Energy {
+				least, most = math.Min(least, e), math.Max(most, e)
+			}
+			low += float64(fam.Terms) * least
+			high += float64(fam.Terms) * most
+			continue
+		}
+		sum := int64(0)
+		for c, j := range g.Couplings.J[f] {
+			if g.TermExists(f, c) {
+				sum += max(int64(j), -int64(j))
+			}
+		}
+		low -= float64(sum) * g.Couplings.Unit
+		high += float64(sum) * g.Couplings.Unit
+	}
+	return low, high
 }
 
 // eachRate calls f for every shape, move and pattern that can occur. Moves that
@@ -45,8 +87,12 @@ func (s *Shape) possible(g *Generator, p int) bool {
 
 // Frozen lists the bath operators that have jumps of rate 0, by index into
 // Spec.Bath, with the number of (surroundings, pattern) pairs frozen and
-// possible.
+// possible. Where couplings vary in size it lists none: energies are then hardly
+// ever exactly 0.
 func (g *Generator) Frozen() []FrozenJumps {
+	if g.Couplings != nil {
+		return nil
+	}
 	out := make([]FrozenJumps, len(g.Spec.Bath))
 	for b := range out {
 		out[b].Bath = b

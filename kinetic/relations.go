@@ -55,7 +55,10 @@ func GroundStates(s Spec) (Ground, error) {
 	for _, f := range s.Families {
 		level, unique := lowestLevel(f, s.Levels)
 		if f.Couplings != nil {
-			level, unique = 1, !slices.Contains(f.Couplings, 0)
+			level, unique = 0, !slices.Contains(f.Couplings, 0)
+			if slices.Min(f.Couplings) < 0 {
+				level = 1 // of some
+			}
 		}
 		lowest = lowest && unique
 		reference = reference && level == 0 && unique && f.Signs == nil

@@ -210,13 +210,14 @@ func (r *seatRates) each(f func(a int, shape uint16)) {
 	}
 }
 
-// maxMove bounds the rate of a move of any seat: that of letting go of the
-// energy of all terms. Without its cutoff every law grows with the energy.
-func (r *seatRates) maxMove() float64 {
-	best := 0.0
+// maxMoves bounds, by bath operator, the rate of a move of any seat: that of
+// letting go of the energy of all terms. Without its cutoff every law grows with
+// the energy.
+func (r *seatRates) maxMoves() []float64 {
+	out := make([]float64, len(r.g.Spec.Bath))
 	for b, op := range r.g.Spec.Bath {
 		op.Law.Cutoff = 0
-		best = math.Max(best, op.Law.Float(float64(r.widest(b))*r.unit, r.beta))
+		out[b] = op.Law.Float(float64(r.widest(b))*r.unit, r.beta)
 	}
-	return best
+	return out
 }

@@ -84,7 +84,7 @@ func (c *console) exact(o *options, args []string) error {
 func (q *prepared) exactly() (exactPointJSON, error) {
 	size := q.generator.Lattice.Lengths()
 	out := exactPointJSON{Key: q.config.Key, Model: q.config.Model, Beta: q.config.Spec.Beta, Length: size[0], Size: size}
-	system, err := exact.NewSystem(q.config.Spec)
+	system, err := exact.NewSystem(q.generator.Spec)
 	if err != nil {
 		return out, err
 	}

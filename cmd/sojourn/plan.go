@@ -35,7 +35,7 @@ func (c *console) plan(o *options, args []string) error {
 	for i, q := range points {
 		p := planned{prepared: q}
 		p.closed, p.reached = q.closedClasses()
-		if p.ground, err = kinetic.GroundStates(q.config.Spec); err != nil {
+		if p.ground, err = kinetic.GroundStates(q.generator.Spec); err != nil {
 			return badRequest("%s: %w", pointText(q.config), err)
 		}
 		if p.load, err = q.calibrate(); err != nil {
@@ -62,7 +62,7 @@ func (q *prepared) closedClasses() (all, reached *int) {
 	if q.sites() > enumerated {
 		return nil, nil
 	}
-	system, err := exact.NewSystem(q.config.Spec)
+	system, err := exact.NewSystem(q.generator.Spec)
 	if err != nil {
 		return nil, nil
 	}
@@ -81,6 +81,9 @@ func (q *prepared) closedClasses() (all, reached *int) {
 func (q *prepared) why() string {
 	t := &q.config.Trajectory
 	rates := plural(len(q.generator.Rates)-1, "distinct rate")
+	if q.generator.Couplings != nil {
+		rates = "couplings of many sizes"
+	}
 	if t.Engine != kinetic.AutoEngine {
 		return rates + "; as asked for"
 	}

@@ -43,7 +43,7 @@ func prepare(p *configs.Point, available int64) (*prepared, error) {
 	if need := sites * siteFloor; available > 0 && need > float64(available) {
 		return nil, tooLarge(p, need, available)
 	}
-	g, err := kinetic.Compile(p.Spec)
+	g, err := p.Generator()
 	if err != nil {
 		return nil, badRequest("%s: %w", pointText(p), err)
 	}
@@ -141,8 +141,12 @@ func (q *prepared) begin(unit int) (kinetic.Engine, error) {
 	return kinetic.NewEngine(q.config.Trajectory.EngineName, q.generator, q.config.Stream, unit, q.start(unit))
 }
 
-// siteRate is the largest total rate of one site.
+// siteRate is the largest total rate of one site, or where couplings vary in
+// size about that, the same for all samples.
 func (q *prepared) siteRate() float64 {
+	if q.generator.Couplings != nil {
+		return q.config.MaxRate * float64(len(q.config.Spec.Bath))
+	}
 	r := q.generator.Rates
 	return r[len(r)-1]
 }
@@ -196,16 +200,9 @@ func (q *prepared) facts() (archive.Facts, error) {
 	for i := range g.Families {
 		x := &g.Families[i]
 		f.Families = append(f.Families, archive.Family{Name: x.Name, Group: x.Group, Terms: x.Terms})
-		if len(x.Energy) > 0 {
-			low, high := x.Energy[0], x.Energy[0]
-			for _, e := range x.Energy {
-				low, high = math.Min(low, e), math.Max(high, e)
-			}
-			f.EnergyLow += float64(x.Terms) * low
-			f.EnergyHigh += float64(x.Terms) * high
-		}
 	}
-	largest := largestRates(g)
+	f.EnergyLow, f.EnergyHigh = g.EnergyRange()
+	largest := g.MaxRates()
 	for i, b := range c.Spec.Bath {
 		// A table law that does not list w = 0 has no G(0) to tell.
 		zero, err := b.Law.At(new(big.Rat), c.Spec.Beta)
@@ -220,7 +217,7 @@ func (q *prepared) facts() (archive.Facts, error) {
 	if c.Covariance != nil {
 		f.Covariance = &archive.Covariance{Of: c.Covariance.Of, Every: c.Covariance.Every, Limit: c.Covariance.Limit}
 	}
-	ground, err := kinetic.GroundStates(c.Spec)
+	ground, err := kinetic.GroundStates(g.Spec)
 	if err != nil {
 		return f, err
 	}
@@ -230,23 +227,6 @@ func (q *prepared) facts() (archive.Facts, error) {
 	f.LnStates = q.lnStates()
 	f.ClosedClasses, _ = q.closedClasses()
 	return f, nil
-}
-
-// largestRates returns the largest rate of each bath operator on one site.
-func largestRates(g *kinetic.Generator) []float64 {
-	out := make([]float64, len(g.Spec.Bath))
-	for i := range g.Shapes {
-		s := &g.Shapes[i]
-		for m := range s.Rate {
-			b := g.Seats[s.Seat].Moves[m].Bath
-			for pattern, r := range s.Rate[m] {
-				if pattern&^int(s.Present) == 0 { // only slots that exist are set
-					out[b] = math.Max(out[b], r)
-				}
-			}
-		}
-	}
-	return out
 }
 
 // enumerated is the largest number of sites for which the class of the reference
@@ -259,7 +239,7 @@ func (q *prepared) lnStates() *float64 {
 	if q.sites() > enumerated {
 		return nil
 	}
-	system, err := exact.NewSystem(q.config.Spec)
+	system, err := exact.NewSystem(q.generator.Spec)
 	if err != nil || system.Frozen() {
 		return nil
 	}
