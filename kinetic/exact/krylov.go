@@ -22,7 +22,8 @@ const maxSteps = 20000
 // their weights; the fast ones stand for the rest of the measure, whose C(t)
 // they give as exactly. Rounding brings eigenvalues up again as near copies
 // that share a weight (C. C. Paige, J. Inst. Maths Applics 18, 341 (1976)); they
-// are merged.
+// are merged. A rate is right to about 1e-15 of the fastest one: the slowest of a
+// cold system to a relative 1e-8 where it is 1e-7 of that.
 func (st *States) Relaxation(o Observable) (Relaxation, error) {
 	var modes []Mode
 	var failed error

@@ -272,7 +272,7 @@ func (k *blockLanczos) converged(count int, exhausted bool) ([]Level, error) {
 		// Approximations of one eigenvalue count with the rank of their
 		// components, so that repeated ones do not.
 		j, best := i, i
-		for j < len(values) && values[j].value-values[i].value <= degenerate*math.Abs(values[i].value)+1e-14*k.scale {
+		for j < len(values) && equalRates(values[i].value, values[j].value, k.scale) {
 			if values[j].residual < values[best].residual {
 				best = j
 			}

@@ -3,6 +3,7 @@ package exact
 import (
 	"math"
 	"runtime"
+	"slices"
 	"sync"
 
 	"gonum.org/v1/gonum/mat"
@@ -23,6 +24,13 @@ type Matrix struct {
 }
 
 func (m *Matrix) begin() { m.Start = append(m.Start, 0) }
+
+// grow makes room for a number of entries.
+func (m *Matrix) grow(entries int) {
+	m.To = slices.Grow(m.To, entries)
+	m.Rate = slices.Grow(m.Rate, entries)
+	m.Symmetric = slices.Grow(m.Symmetric, entries)
+}
 
 // add puts a jump into the current row.
 func (m *Matrix) add(to int, rate, symmetric float64) {

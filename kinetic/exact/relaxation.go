@@ -120,12 +120,13 @@ func (r *Relaxation) finish(modes []Mode, norm float64) {
 		}
 		return 0
 	})
-	total := 0.0
+	total, fastest := 0.0, 0.0
 	for _, m := range modes {
 		total += m.Weight
+		fastest = math.Max(fastest, m.Rate)
 	}
 	for _, m := range modes {
-		if n := len(r.Modes) - 1; n >= 0 && m.Rate <= r.Modes[n].Rate*(1+degenerate) {
+		if n := len(r.Modes) - 1; n >= 0 && equalRates(r.Modes[n].Rate, m.Rate, fastest) {
 			sum := r.Modes[n].Weight + m.Weight
 			r.Modes[n].Rate += (m.Rate - r.Modes[n].Rate) * m.Weight / math.Max(sum, math.SmallestNonzeroFloat64)
 			r.Modes[n].Weight = sum

@@ -11,6 +11,12 @@ import (
 // above the rounding errors of the solvers, below physical splittings.
 const degenerate = 1e-9
 
+// equalRates reports whether two rates are one, as found by a solver whose
+// rounding errors are those of the fastest.
+func equalRates(a, b, fastest float64) bool {
+	return math.Abs(a-b) <= degenerate*math.Abs(a)+1e-14*fastest
+}
+
 // Spectrum is the full eigen-decomposition of a generator.
 type Spectrum struct {
 	// Rates are the eigenvalues of -L, increasing; the first is exactly 0.
@@ -74,7 +80,7 @@ type Level struct {
 func (sp *Spectrum) Levels() []Level {
 	var out []Level
 	for _, r := range sp.Rates {
-		if n := len(out) - 1; n >= 0 && r-out[n].Rate <= degenerate*r {
+		if n := len(out) - 1; n >= 0 && equalRates(out[n].Rate, r, sp.Rates[len(sp.Rates)-1]) {
 			out[n].Multiplicity++
 			continue
 		}

@@ -212,6 +212,9 @@ func (s *System) list(limit int, total *big.Int, frozen bool) (*States, error) {
 	st.code.pack(w, s.Reference)
 	st.insert(w)
 	st.matrix.begin()
+	if !s.Frozen() && total.IsInt64() && total.Int64() <= int64(limit) {
+		st.matrix.grow(int(total.Int64()) * len(s.Moves))
+	}
 	for i := 0; i < st.Len(); i++ {
 		for k := range s.Moves {
 			move := &s.Moves[k]
