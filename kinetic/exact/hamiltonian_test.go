@@ -17,7 +17,7 @@ import (
 // together, phases of their products and all.
 func TestHamiltonian(t *testing.T) {
 	tried, frustrated := 0, 0
-	for seed := uint64(0); tried < 60; seed++ {
+	for seed := uint64(0); tried < 300; seed++ {
 		spec := kinetictest.RandomSpec(seed, kinetictest.Size{MinStates: 2, MaxStates: 1 << 12, MaxCells: 5})
 		if seed%3 == 0 {
 			spec = kinetictest.RandomSigns(seed, kinetictest.Size{MinStates: 2, MaxStates: 1 << 12, MaxCells: 5})
@@ -34,7 +34,7 @@ func TestHamiltonian(t *testing.T) {
 			continue
 		}
 		tried++
-		if slices.Contains(s.Reference, 1) {
+		if seed%3 != 0 && slices.Contains(s.Reference, 1) {
 			frustrated++
 		}
 		got, want := distinct(st.Energy), distinct(eigenvalues(t, s))
