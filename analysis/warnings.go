@@ -42,6 +42,7 @@ const (
 	codeFrozen        = "frozen"
 	codePoorFit       = "poor_fit"
 	codeExtrapolated  = "extrapolated"
+	codeSamples       = "samples_missing"
 )
 
 // WarningKinds lists every warning code that results can carry.
@@ -73,6 +74,7 @@ var WarningKinds = []WarningKind{
 	{codePoorFit, "no form fits the trend", "best chi^2 above its degrees of freedom by 4 standard deviations", false},
 	{codeExtrapolated, "a time lies beyond what was recorded clearly and was extrapolated", "", true},
 	{codeSwitching, "the observable has two wells, and its flips between them take over from C(t)", "a span below 20 tau", false},
+	{codeSamples, "an average over samples of random couplings lacks some of them", "", false},
 	{codeFrozen, "no jumps happened in a trajectory", "", false},
 }
 
