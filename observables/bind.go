@@ -3,6 +3,7 @@ package observables
 import (
 	"errors"
 	"fmt"
+	"slices"
 	"strings"
 
 	"sojourn/kinetic"
@@ -85,7 +86,28 @@ func bind(g *kinetic.Generator, r Request) (Observable, error) {
 	default:
 		err = fmt.Errorf("unknown kind %q; there are energy, magnetization, terms, local, fourier, operator", r.Kind)
 	}
+	if err == nil && g.Levels > 2 {
+		err = o.findComplex(g)
+	}
 	return o, err
+}
+
+// findComplex notes whether the observable is made of tracked operators, and
+// refuses those that cannot be recorded.
+func (o *Observable) findComplex(g *kinetic.Generator) error {
+	if o.Kind == Operator {
+		o.Complex = true
+		return complexMean(g, g.Lines[o.Line].Name)
+	}
+	for _, f := range o.Families {
+		if g.Families[f].Energy == nil {
+			o.Complex = true
+			if err := complexMean(g, g.Families[f].Name); err != nil {
+				return err
+			}
+		}
+	}
+	return nil
 }
 
 // FamiliesOf returns the families (indices into g.Families) that a name stands
@@ -157,6 +179,7 @@ func equivalent(g *kinetic.Generator, name string, families []int) error {
 		for s, e := range g.Families[f].Energy {
 			ok = ok && len(g.Families[families[0]].Energy) > s && g.Families[families[0]].Energy[s] == e
 		}
+		ok = ok && slices.Equal(valuesOf(g, f), valuesOf(g, families[0]))
 	}
 	if ok {
 		return nil

@@ -102,7 +102,9 @@ func (f *bitField) pair(k int) (n int64, s pairSums) {
 
 func (f *bitField) presence() *bitPlane { return f.plane.present }
 
-func (f *bitField) planeSums(dst []float64, axis int) {
+func (f *bitField) parts() int { return 1 }
+
+func (f *bitField) planeSums(dst []float64, axis, _ int) {
 	counts := f.counts[:len(dst)]
 	for x, n := range planeCounts(counts, f.l, f.plane.present, axis) {
 		dst[x] = float64(n)

@@ -106,7 +106,7 @@ func spatialBytes(g *kinetic.Generator, limit int) int64 {
 		}
 	}
 	n = n/2 + 256*int64(l.Axes)
-	values := int64(g.Levels/2 + 1)
+	values := int64(g.Levels)
 	each := 8*max(4, values*values) + int64(unsafe.Sizeof(CovarianceRow{})) + 48
 	return (4+values)*planeBytes(g) + planes + n*each
 }

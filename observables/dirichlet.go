@@ -17,9 +17,6 @@ import (
 // On a lattice with open edges a Local observable reads chosen terms only, and
 // so does its form: it is summed over the seats that show them, in one lane in
 // rotation that stands for all.
-//
-// The form of an Operator observable is known for two levels only: with more it
-// depends on the operator's level, which no pattern has.
 type dirichlet struct {
 	e     kinetic.Engine
 	g     *kinetic.Generator
@@ -66,12 +63,9 @@ func newDirichlet(e kinetic.Engine, g *kinetic.Generator, r *reading, pairs [][2
 	}
 	for p, pair := range pairs {
 		s := &r.layout[pair[0]]
-		switch {
-		case s.Kind == Local && !g.Lattice.Periodic():
+		if s.Kind == Local && !g.Lattice.Periodic() {
 			d.apart[p] = true
 			d.open = append(d.open, newOpenLocal(g, p, r.tracks[s.track].chosen))
-		case s.Kind == Operator && g.Levels > 2:
-			d.apart[p] = true
 		}
 	}
 	if d.open != nil || g.Couplings != nil {
@@ -96,11 +90,6 @@ func newOpenLocal(g *kinetic.Generator, pair int, chosen []chosenTerm) openLocal
 		})
 	}
 	return o
-}
-
-// known reports whether the form of a pair is recorded.
-func (d *dirichlet) known(p int) bool {
-	return d.g.Levels == 2 || d.r.layout[d.pairs[p][0]].Kind != Operator
 }
 
 // add takes in the present state of all lanes.
@@ -224,7 +213,7 @@ func (d *dirichlet) form(o *openLocal) float64 {
 			if d.rates != nil {
 				rate, _ = d.rates.Rate(int(at.address), at.shape, m, p)
 			}
-			sum += rate / 2 * step * step
+			sum += rate / 2 * squared(step)
 		}
 	}
 	return sum / float64(o.components)

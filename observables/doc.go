@@ -22,7 +22,7 @@
 //	beta          inverse temperature, 1/energy
 //	t, settle,    time, in the inverse of the bath's base rate: one attempt per
 //	span, step    site, bath operator and unit of time at G = 1
-//	s_r           eigenvalue of the term on the cell at r: +1 or -1 for two levels
+//	s_r           value of the term on the cell at r: +1 or -1 for two levels
 //	f, g          observables: totals over the lattice
 //	lag           time between the members of a pair, in steps
 //	C_fg(t)       <f(0) g(t)> - <f><g>
@@ -44,8 +44,10 @@
 // in integers. Rows are the same bit for bit whenever the engine's trajectory
 // is; neither time of day nor the pieces in which the engine is advanced enter.
 //
-// With q > 2 levels the eigenvalue of a term is exp(2 pi i s/q), and its real part
-// is what is observed.
+// With q > 2 levels a term of level s has the value -E(s)/J, and a tracked operator
+// the eigenvalue exp(2 pi i s/q): products of complex values are Re f^* g, and
+// their means stand in the records as the sum of real and imaginary part, one of
+// which vanishes.
 //
 // No statistics are done here: means, errors and fits are the reader's.
 package observables

@@ -180,18 +180,18 @@ func (f *bitAmplitude) general(t *termPlane) complex128 {
 }
 
 // levelAmplitude computes the Fourier amplitude of terms with more than two
-// levels, whose eigenvalues enter with their real part.
+// levels.
 type levelAmplitude struct {
 	levels  []uint8 // by cell
 	length  int
-	rows    []complex128 // phase of a row
-	columns []complex128 // phase within a row
-	value   [256]float64 // by level; 0 for a term that is absent
+	rows    []complex128    // phase of a row
+	columns []complex128    // phase within a row
+	value   [256]complex128 // by level; 0 for a term that is absent
 }
 
-func newLevelAmplitude(g *kinetic.Generator, family int, levels []uint8, k lattice.Offset) *levelAmplitude {
+func newLevelAmplitude(g *kinetic.Generator, family int, levels []uint8, value []complex128, k lattice.Offset) *levelAmplitude {
 	f := &levelAmplitude{levels: levels, length: g.Lattice.Size[0]}
-	copy(f.value[:], eigenvalues(g.Levels))
+	copy(f.value[:], value)
 	center := middlePhase(g, family, k)
 	for c := 0; c < g.Cells(); c += f.length {
 		f.rows = append(f.rows, center*cellPhase(g.Lattice, k, g.Lattice.Coord(c)))
@@ -207,9 +207,9 @@ func (f *levelAmplitude) of() complex128 {
 	for r, phase := range f.rows {
 		var re, im float64
 		for x, s := range f.levels[r*f.length:][:f.length] {
-			v := f.value[s]
-			re += v * real(f.columns[x])
-			im += v * imag(f.columns[x])
+			v, c := f.value[s], f.columns[x]
+			re += real(v)*real(c) - imag(v)*imag(c)
+			im += real(v)*imag(c) + imag(v)*real(c)
 		}
 		sum += phase * complex(re, im)
 	}

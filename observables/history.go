@@ -71,11 +71,11 @@ func differ(a, b []uint64) int64 {
 
 // levelHistory is the history of a track of terms with more than two levels. It
 // counts pairs of levels, so its sums are exact too until they are weighed with
-// the eigenvalues.
+// values.
 type levelHistory struct {
 	track, lanes int
 	q            int
-	eigenvalue   []float64
+	value        []complex128
 	components   int
 	history      []uint8 // place, lane, component
 	sums         []int64 // segment and lag, first level, second level
@@ -84,7 +84,7 @@ type levelHistory struct {
 func newLevelHistory(tl *timeline, r *reading, i int) *levelHistory {
 	n, q := r.tracks[i].components, r.g.Levels
 	return &levelHistory{
-		track: i, lanes: r.lanes, q: q, eigenvalue: r.eigenvalue, components: n,
+		track: i, lanes: r.lanes, q: q, value: r.tracks[i].value, components: n,
 		history: make([]uint8, tl.places()*r.lanes*n),
 		sums:    make([]int64, PairSegments*len(tl.lags)*q*q),
 	}
@@ -107,10 +107,10 @@ func (t *levelHistory) add(tl *timeline, r *reading) {
 
 func (t *levelHistory) pair(place int) (s pairSums) {
 	for i, n := range t.sums[place*t.q*t.q:][:t.q*t.q] {
-		first, again := t.eigenvalue[i/t.q], t.eigenvalue[i%t.q]
-		s.f += float64(n) * first
-		s.g += float64(n) * again
-		s.fg += float64(n) * first * again
+		first, again := t.value[i/t.q], t.value[i%t.q]
+		s.f += float64(n) * together(first)
+		s.g += float64(n) * together(again)
+		s.fg += float64(n) * overlap(first, again)
 	}
 	return s
 }

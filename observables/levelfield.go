@@ -2,21 +2,23 @@ package observables
 
 import (
 	"math/bits"
+	"slices"
 
 	"sojourn/kinetic"
 	"sojourn/kinetic/lattice"
 )
 
-// levelField counts pairs of terms with more than two levels, whose eigenvalues
-// enter with their real part, at given displacements. It keeps a plane of bits
-// for each value and counts the pairs of values.
+// levelField counts pairs of terms with more than two levels at given
+// displacements. It keeps a plane of bits for each value and counts the pairs of
+// values.
 type levelField struct {
 	family int
 	g      *kinetic.Generator
 	d      []lattice.Offset
 	groups [][]int
-	value  []float64  // of a plane
-	at     [256]uint8 // level -> plane; none for a term that is absent
+	value  []complex128 // of a plane
+	real   bool         // all values are
+	at     [256]uint8   // level -> plane; none for a term that is absent
 	planes []*bitPlane
 	here   *bitPlane
 	rows   *longRows
@@ -35,14 +37,16 @@ func newLevelField(g *kinetic.Generator, family int, d []lattice.Offset) *levelF
 	for i := range f.at {
 		f.at[i] = none
 	}
-	for s, v := range eigenvalues(g.Levels) {
-		if mirror := g.Levels - s; mirror < s {
-			f.at[s] = f.at[mirror] // the same cosine
-			continue
+	f.real = true
+	for s, v := range valuesOf(g, family) {
+		at := slices.Index(f.value, v)
+		if at < 0 {
+			at = len(f.value)
+			f.value = append(f.value, v)
+			f.planes = append(f.planes, newBitPlane(g))
+			f.real = f.real && imag(v) == 0
 		}
-		f.at[s] = uint8(len(f.value))
-		f.value = append(f.value, v)
-		f.planes = append(f.planes, newBitPlane(g))
+		f.at[s] = uint8(at)
 	}
 	f.rows = newLongRows(f.here, g.Lattice.Open[0])
 	f.totals = make([]int64, len(d)*len(f.value)*len(f.value))
@@ -99,9 +103,9 @@ func (f *levelField) pair(k int) (n int64, s pairSums) {
 		for j, b := range f.value {
 			count := f.totals[(k*values+i)*values+j]
 			n += count
-			s.f += float64(count) * a
-			s.g += float64(count) * b
-			s.fg += float64(count) * a * b
+			s.f += float64(count) * together(a)
+			s.g += float64(count) * together(b)
+			s.fg += float64(count) * overlap(a, b)
 		}
 	}
 	return n, s
@@ -109,11 +113,22 @@ func (f *levelField) pair(k int) (n int64, s pairSums) {
 
 func (f *levelField) presence() *bitPlane { return f.here }
 
-func (f *levelField) planeSums(dst []float64, axis int) {
+func (f *levelField) parts() int {
+	if f.real {
+		return 1
+	}
+	return 2
+}
+
+func (f *levelField) planeSums(dst []float64, axis, part int) {
 	clear(dst)
 	for i, p := range f.planes {
+		value := real(f.value[i])
+		if part == 1 {
+			value = imag(f.value[i])
+		}
 		for x, n := range planeCounts(f.counts[:len(dst)], f.g.Lattice, p, axis) {
-			dst[x] += float64(n) * f.value[i]
+			dst[x] += float64(n) * value
 		}
 	}
 }

@@ -57,13 +57,13 @@ func (m *moments) channel(segment, c int) powerSums {
 	return m.channels[segment*len(m.shift)+c].unshift(m.count[segment], m.shift[c])
 }
 
-// track returns the sums of powers of a track's eigenvalues in a segment, as
-// means over its components.
+// track returns the sums of powers of a track's values in a segment, as means
+// over its terms.
 func (m *moments) track(segment, i int, r *reading) powerSums {
 	counts := m.levels[(segment*m.tracks+i)*m.q:][:m.q]
 	var p powerSums
 	for k := range p {
-		p[k] = r.weigh(counts, k+1) / float64(r.tracks[i].components)
+		p[k] = r.tracks[i].weigh(counts, k+1) / float64(r.tracks[i].components)
 	}
 	return p
 }

@@ -74,9 +74,15 @@ func (p *planePairs) each(d int, visit func(x, y int)) {
 	}
 }
 
-// add takes in the field as it was last read.
+// add takes in the field as it was last read, one part after the other.
 func (p *planePairs) add(f spatialField) {
-	f.planeSums(p.sums, p.axis)
+	for part := range f.parts() {
+		f.planeSums(p.sums, p.axis, part)
+		p.addPart()
+	}
+}
+
+func (p *planePairs) addPart() {
 	var norm float64
 	for _, s := range p.sums {
 		norm += s * s

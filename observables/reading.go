@@ -6,8 +6,8 @@ import (
 
 // reading is the values of all observables in the present state of an engine.
 // Observables are read as channels (numbers) and tracks (vectors of single
-// levels): a scalar is one channel, a Fourier amplitude two, real and imaginary
-// part; Local and Operator observables are tracks. With two levels a track is a
+// levels): a scalar is one channel, a Fourier amplitude or complex sum two, real
+// and imaginary part; Local and Operator observables are tracks. With two levels a track is a
 // bit vector, else a byte vector.
 type reading struct {
 	values []float64  // lane, channel
@@ -15,11 +15,11 @@ type reading struct {
 	levels [][]uint8  // more levels: by track: lane, component
 	counts [][]int64  // by track: lane, level: how many components are at it
 
-	layout     []slot    // by observable
-	eigenvalue []float64 // by level
-	e          kinetic.Engine
-	g          *kinetic.Generator
-	words      kinetic.LaneWords // e, if its lanes are the bits of words
+	layout []slot         // by observable
+	value  [][]complex128 // by family and level
+	e      kinetic.Engine
+	g      *kinetic.Generator
+	words  kinetic.LaneWords // e, if its lanes are the bits of words
 
 	lanes    int
 	channels int
@@ -56,8 +56,11 @@ func (r *reading) components(o int) int {
 
 func newReading(e kinetic.Engine, g *kinetic.Generator, obs []Observable) *reading {
 	r := &reading{
-		e: e, g: g, lanes: e.Lanes(), eigenvalue: eigenvalues(g.Levels),
+		e: e, g: g, lanes: e.Lanes(),
 		planes: make(map[int]*termPlane), cells: make(map[int][]uint8),
+	}
+	for f := range g.Families {
+		r.value = append(r.value, valuesOf(g, f))
 	}
 	r.words, _ = e.(kinetic.LaneWords)
 	for _, o := range obs {
@@ -78,6 +81,9 @@ func newReading(e kinetic.Engine, g *kinetic.Generator, obs []Observable) *readi
 		default:
 			s.channel = r.channels
 			r.channels++
+			if o.amplitude() {
+				r.channels++
+			}
 		}
 		r.layout = append(r.layout, s)
 	}
@@ -86,15 +92,6 @@ func newReading(e kinetic.Engine, g *kinetic.Generator, obs []Observable) *readi
 		r.columns = newWordColumns(g, r)
 	}
 	return r
-}
-
-// eigenvalues returns the real part of exp(2 pi i s/q), by level s.
-func eigenvalues(q int) []float64 {
-	out := make([]float64, q)
-	for s := range out {
-		out[s] = real(turn(s, q))
-	}
-	return out
 }
 
 func (r *reading) addTrack(t track) int {
@@ -129,7 +126,7 @@ func (r *reading) needTerms(families []int) {
 func (r *reading) amplitude(f int, o Observable) amplitude {
 	r.needTerms([]int{f})
 	if r.g.Levels > 2 {
-		return newLevelAmplitude(r.g, f, r.cells[f], o.Wavevector)
+		return newLevelAmplitude(r.g, f, r.cells[f], r.value[f], o.Wavevector)
 	}
 	if r.planes[f] == nil {
 		r.planes[f] = newTermPlane(r.g, f)
@@ -187,66 +184,59 @@ func (r *reading) takeOne(s *slot, lane int, sums []int64, values []float64) {
 	case Local, Operator:
 		r.takeTrack(s.track, lane)
 	default:
-		values[s.channel] = r.total(s.Families, sums)
+		if r.g.Levels > 2 {
+			total := r.weighed(s.Families, sums)
+			values[s.channel] = real(total)
+			if s.amplitude() {
+				values[s.channel+1] = imag(total)
+			}
+			return
+		}
+		var total int64
+		for _, f := range s.Families {
+			total += sums[f]
+		}
+		values[s.channel] = float64(total)
 	}
 }
 
-// total adds up families from the sums of a lane: of eigenvalues for two levels,
-// else numbers of terms by level.
-func (r *reading) total(families []int, sums []int64) float64 {
-	if q := r.g.Levels; q > 2 {
-		total := 0.0
-		for _, f := range families {
-			for s, n := range sums[f*q : (f+1)*q] {
-				total += float64(n) * r.eigenvalue[s]
-			}
-		}
-		return total
-	}
-	var total int64
+// weighed adds up the values of families from the numbers of their terms by
+// level in a lane.
+func (r *reading) weighed(families []int, sums []int64) complex128 {
+	q := r.g.Levels
+	var re, im float64
 	for _, f := range families {
-		total += sums[f]
+		for s, n := range sums[f*q : (f+1)*q] {
+			re += float64(n) * real(r.value[f][s])
+			im += float64(n) * imag(r.value[f][s])
+		}
 	}
-	return float64(total)
+	return complex(re, im)
 }
 
 // origins returns, by channel, a value near the data: that of a scalar in lane 0,
-// and 0 for Fourier amplitudes, which vary about it.
+// and 0 for amplitudes, which vary about it.
 func (r *reading) origins() []float64 {
 	out := make([]float64, r.channels)
 	copy(out, r.values)
 	for i := range r.layout {
-		if l := &r.layout[i]; l.Kind == Fourier {
+		if l := &r.layout[i]; l.amplitude() {
 			out[l.channel], out[l.channel+1] = 0, 0
 		}
 	}
 	return out
 }
 
-// mean returns the mean over components of an observable in a lane; for a
-// Fourier amplitude the sum of real and imaginary part.
+// mean returns the mean over terms or positions of an observable in a lane; of
+// complex values the sum of real and imaginary part.
 func (r *reading) mean(o, lane int) float64 {
 	s := &r.layout[o]
 	if s.track >= 0 {
-		return r.weigh(r.counts[s.track][lane*r.g.Levels:][:r.g.Levels], 1) / float64(r.components(o))
+		return r.tracks[s.track].weigh(r.counts[s.track][lane*r.g.Levels:][:r.g.Levels], 1) / float64(r.components(o))
 	}
 	v := r.values[lane*r.channels+s.channel]
-	if s.Kind == Fourier {
+	if s.amplitude() {
 		v += r.values[lane*r.channels+s.channel+1]
 	}
 	return v
-}
-
-// weigh returns the sum of a power of the eigenvalues over numbers of
-// components by level.
-func (r *reading) weigh(counts []int64, power int) float64 {
-	sum := 0.0
-	for s, n := range counts {
-		v := float64(n)
-		for range power {
-			v *= r.eigenvalue[s]
-		}
-		sum += v
-	}
-	return sum
 }

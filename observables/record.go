@@ -328,9 +328,6 @@ func (r *recorder) dirichletRows() []DirichletRow {
 			continue
 		}
 		for p, pair := range r.pairs {
-			if !r.dirichlet.known(p) {
-				continue
-			}
 			out = append(out, DirichletRow{
 				Segment: int32(s), F: r.layout[pair[0]].Name, G: r.layout[pair[1]].Name,
 				Count: n, Sum: r.dirichlet.sums[s*len(r.pairs)+p],

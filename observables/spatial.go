@@ -31,8 +31,11 @@ type spatialField interface {
 	pair(k int) (int64, pairSums)
 	// presence tells which cells have a term.
 	presence() *bitPlane
-	// planeSums writes the sums of the terms last read, by coordinate.
-	planeSums(dst []float64, axis int)
+	// parts is 2 if terms have a real and an imaginary part, else 1.
+	parts() int
+	// planeSums writes the sums of one part of the terms last read, by
+	// coordinate.
+	planeSums(dst []float64, axis, part int)
 }
 
 // snapshot is the state of one lane.

@@ -10,23 +10,41 @@ type track struct {
 	chosen     []chosenTerm // Local
 	spots      []spot       // Local, two levels: where they are read
 	line       int          // Operator; -1 for Local
-	components int
-	words      int // two levels: of its bit vector
+	value      []complex128 // by level
+	components int          // terms or positions
+	words      int          // two levels: of its bit vector
 }
 
 func newLocalTrack(g *kinetic.Generator, chosen []chosenTerm) track {
 	t := track{line: -1, chosen: chosen, spots: make([]spot, len(chosen)), components: len(chosen)}
+	t.value = roots(g.Levels)
 	for i := range chosen {
 		t.spots[i] = chosen[i].spot
+		t.value = valuesOf(g, chosen[i].loc.family) // the same for all
 	}
 	t.words = (t.components + 63) / 64
 	return t
 }
 
 func newLineTrack(g *kinetic.Generator, line int) track {
-	t := track{line: line, components: positions(g.Lines[line])}
+	t := track{line: line, value: roots(g.Levels), components: positions(g.Lines[line])}
 	t.words = (t.components + 63) / 64
 	return t
+}
+
+// weigh returns the sum of a power of the values over numbers of terms by level,
+// real and imaginary parts taken together.
+func (t *track) weigh(counts []int64, power int) float64 {
+	sum := 0.0
+	for s, n := range counts {
+		re, im := float64(n), float64(n)
+		for range power {
+			re *= real(t.value[s])
+			im *= imag(t.value[s])
+		}
+		sum += re + im
+	}
+	return sum
 }
 
 // positions returns how many instances of a line exist.
