@@ -127,6 +127,7 @@ func TestDecayShapes(t *testing.T) {
 	}{
 		{"periodic", cosh(6), n/2 + 1, false, 0, 6, ""},
 		{"periodic, with a mean", cosh(6), n/2 + 1, false, 3, 6, ""},
+		{"periodic, long", cosh(14), n/2 + 1, false, 0, 14, ""},
 		{"open", bare(6), n, true, 0, 6, ""},
 		{"short", bare(0.7), n/2 + 1, false, 0, 0.7, ""},
 		{"flat", func(int) float64 { return 1 }, n/2 + 1, false, 0, 0, codeNoDecay},
@@ -173,6 +174,23 @@ func TestSecondMomentIdentity(t *testing.T) {
 		}
 		if got, want := s.secondMoment().Value, 1/(2*math.Sinh(1/(2*xi))); math.Abs(got/want-1) > 1e-12 {
 			t.Errorf("N = %d: %.15g, want %.15g", n, got, want)
+		}
+	}
+}
+
+// K(r) gains the variance of the grand mean between units.
+func TestPlaneMeanCorrection(t *testing.T) {
+	var plane Plane
+	means := []float64{1, 2, 4, 5}
+	for _, m := range means {
+		plane.Sums = append(plane.Sums, []Lagged{{10, 10 * m, 10 * m, 200}, {10, 10 * m, 10 * m, 150}})
+	}
+	p := Point{Size: []int{8}, Open: []bool{false}}
+	s := newPlaneSums(&p, &plane)
+	mean, variance := meanVariance(means)
+	for r, raw := range []float64{20, 15} {
+		if want := raw - mean*mean + variance/4; math.Abs(s.k[r]-want) > 1e-12 {
+			t.Errorf("K(%d) = %g, want %g", r, s.k[r], want)
 		}
 	}
 }

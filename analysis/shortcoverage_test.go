@@ -40,6 +40,9 @@ func TestCoverage(t *testing.T) {
 		if c.proc != &pureTS {              // its variance and Dirichlet form are constants of the path
 			gate("tau_initial", &c.initial, 89.7)
 		}
+		if n := c.warnings[codeChain]; n > repeats/50 {
+			t.Errorf("%s: the chain of inequalities is called violated in %d of %d data sets", c.proc.name, n, repeats)
+		}
 		if c.boundAbove > repeats*5/100+10 {
 			t.Errorf("%s: the lower bound exceeds the truth in %d of %d data sets", c.proc.name, c.boundAbove, c.bounds)
 		}
@@ -62,9 +65,12 @@ func TestEfficiency(t *testing.T) {
 		tl    *tally
 		limit float64
 	}{{"tau_initial", &c.initial, 1.05}, {"tau_single", &c.single, 1.2}, {"tau_int_model", &c.model, 2.4}, {"tau_int", &c.integrated, 4.3}} {
-		_, sd := test.tl.bias()
+		b, sd := test.tl.bias()
 		if got := sd / c.ideal(); got > test.limit*1.16 || test.tl.n < 295 {
 			t.Errorf("%s: %.2f times the ideal error (%d of 300), want %.2f", test.name, got, test.tl.n, test.limit)
+		}
+		if math.Abs(b) > 1.0/3+4/math.Sqrt(300) || test.tl.cover68() < 57 || test.tl.cover95() < 89.7 {
+			t.Errorf("%s: biased by %.2f standard deviations, covers %.0f and %.0f %%", test.name, b, test.tl.cover68(), test.tl.cover95())
 		}
 	}
 }
@@ -161,6 +167,51 @@ func TestShape(t *testing.T) {
 		t.Logf("%s: %d right, %d wrong of 10", test.proc.name, right, wrong)
 		if wrong > 1 || right < 9 {
 			t.Errorf("%s: %d right, %d wrong of 10", test.proc.name, right, wrong)
+		}
+	}
+}
+
+// A Dirichlet form that does not belong to the trajectories breaks the chain.
+func TestChainViolated(t *testing.T) {
+	p := pureOU.point(6, 16, 100, 0.1)
+	if w := Infer(p, Options{}).Observables[0].Warnings; len(w) > 0 {
+		t.Errorf("in order: %v", w)
+	}
+	for _, segments := range p.Pairs[0].Dirichlet {
+		for s := range segments {
+			segments[s].S /= 3
+		}
+	}
+	found := false
+	for _, w := range Infer(p, Options{}).Observables[0].Warnings {
+		found = found || w.Code == codeChain
+	}
+	if !found {
+		t.Error("tau_initial three times tau_int passed")
+	}
+}
+
+// A mixture declared a single exponential is found out, an exponential is not.
+func TestSingleDeclaration(t *testing.T) {
+	for _, test := range []struct {
+		proc *process
+		want bool
+	}{{&pureOU, false}, {&hardC, true}} {
+		rejected := 0
+		for seed := range uint64(40) {
+			p := test.proc.point(seed, 16, 100, 0.1)
+			p.Observables[0].Single = true
+			o := Infer(p, Options{}).Observables[0]
+			if !o.Single.OK || !o.SingleTest.OK {
+				t.Fatalf("%s: %v, %+v", test.proc.name, o.Single, o.SingleTest)
+			}
+			if o.SingleTest.Rejected {
+				rejected++
+			}
+		}
+		// At 5 %, more than 8 of 40 has probability 1e-4.
+		if test.want && rejected < 40 || !test.want && rejected > 8 {
+			t.Errorf("%s: declaration rejected in %d of 40", test.proc.name, rejected)
 		}
 	}
 }

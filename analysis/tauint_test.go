@@ -107,6 +107,95 @@ func TestJackknife(t *testing.T) {
 	}
 }
 
+// The square of a mean is too large by s^2/n, which the correction removes
+// exactly (Quenouille, section 2).
+func TestUnbiased(t *testing.T) {
+	x := []float64{3, 1, 4, 1, 5, 9, 2, 6}
+	n := float64(len(x))
+	mean, variance := meanVariance(x)
+	var without []float64
+	for _, v := range x {
+		m := (n*mean - v) / (n - 1)
+		without = append(without, m*m)
+	}
+	if got, want := unbiased(mean*mean, without), mean*mean-variance/n; math.Abs(got-want) > 1e-12 {
+		t.Errorf("%g, want %g", got, want)
+	}
+}
+
+// C(t) gains the variance of the grand mean, 2 tau C(0) (1 + 2W/T)/T with the
+// first pass's tau and window (Wolff, eq. 49).
+func TestMeanCorrection(t *testing.T) {
+	p := pureOU.point(3, 4, 12, 0.1)
+	q := newPool(&p, 1)
+	raw := q.covariance(0, all, nil)
+	times := q.pairs[0].times
+	c, _ := q.corrected(0, all, 0, nil)
+	const total = 48
+	w := automaticWindow(times, raw, 0.1, total/0.1)
+	want := 2 * w.tau * raw[0] * (1 + 2*times[w.last]/total) / total
+	for i := range c {
+		if got := c[i] - raw[i]; math.Abs(got/want-1) > 1e-9 || want < 0.01 {
+			t.Fatalf("lag %d: shifted by %g, want %g", i, got, want)
+		}
+	}
+	// A known mean needs no correction, an average over positions that of its
+	// scatter between blocks.
+	p.Observables[0].Kind = "fourier"
+	q = newPool(&p, 1)
+	zero := q.covariance(0, all, nil)
+	if c, _ := q.corrected(0, all, 0, nil); c[0] != zero[0] || q.mean(0, all) != 0 {
+		t.Errorf("fourier: %g, want %g", c[0], zero[0])
+	}
+	p.Observables[0].Kind, p.Observables[0].Scalar = "local", false
+	q = newPool(&p, 1)
+	var means []float64
+	for _, m := range q.obs[0].by {
+		means = append(means, m.S1/float64(m.N))
+	}
+	_, variance := meanVariance(means)
+	if c, _ := q.corrected(0, all, 0, nil); math.Abs(c[0]-raw[0]-variance/4) > 1e-12 {
+		t.Errorf("local: shifted by %g, want %g", c[0]-raw[0], variance/4)
+	}
+}
+
+// Blocks are stretches: neighbouring segments of one unit go together, moments
+// with the pairs of their time.
+func TestBlocks(t *testing.T) {
+	p := pureOU.point(3, 2, 40, 0.1)
+	for split, segments := range map[int]int{1: 4, 2: 2, 4: 1} {
+		q := newPool(&p, split)
+		if q.blocks != 2*split {
+			t.Fatalf("split %d: %d blocks", split, q.blocks)
+		}
+		for b := range q.blocks {
+			var m Moment
+			var pairs, dirichlet int64
+			unit, first := b/split, b%split*segments
+			for s := range segments {
+				for _, v := range p.Observables[0].Moments[unit][4*(first+s) : 4*(first+s+1)] {
+					m.add(v)
+				}
+				pairs += p.Pairs[0].Sums[unit][first+s][3].N
+				dirichlet += p.Pairs[0].Dirichlet[unit][first+s].N
+			}
+			if q.obs[0].by[b] != m || q.pairs[0].by[b][3].N != pairs || q.pairs[0].dirBy[b].N != dirichlet {
+				t.Errorf("split %d: block %d has the wrong segments", split, b)
+			}
+		}
+	}
+	for _, test := range []struct {
+		units     int
+		span, tau float64
+		want      int
+	}{{4, 100, 1, 4}, {4, 100, 2, 2}, {4, 100, 3, 1}, {16, 100, 1, 2}, {64, 1000, 1, 1}, {1, 1000, 1, 4}} {
+		p := Point{Span: test.span, Starts: make([]string, test.units)}
+		if got := p.splitFor(test.tau, 4); got != test.want {
+			t.Errorf("%+v: %d blocks per unit", test, got)
+		}
+	}
+}
+
 // Adding a constant to the observable or scaling it changes no relaxation time;
 // scaling time scales all of them.
 func TestInvariances(t *testing.T) {
