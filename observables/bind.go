@@ -86,15 +86,18 @@ func bind(g *kinetic.Generator, r Request) (Observable, error) {
 	default:
 		err = fmt.Errorf("unknown kind %q; there are energy, magnetization, terms, local, fourier, operator", r.Kind)
 	}
-	if err == nil && g.Levels > 2 {
+	if err == nil {
 		err = o.findComplex(g)
 	}
 	return o, err
 }
 
-// findComplex notes whether the observable is made of tracked operators, and
-// refuses those that cannot be recorded.
+// findComplex notes whether the observable is made of tracked operators of more
+// than two levels, and refuses those that cannot be recorded.
 func (o *Observable) findComplex(g *kinetic.Generator) error {
+	if g.Levels == 2 {
+		return nil
+	}
 	if o.Kind == Operator {
 		o.Complex = true
 		return complexMean(g, g.Lines[o.Line].Name)

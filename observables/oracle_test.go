@@ -5,6 +5,7 @@ import (
 	"errors"
 	"fmt"
 	"math"
+	"math/cmplx"
 	"testing"
 
 	"sojourn/kinetic"
@@ -124,13 +125,24 @@ type plainly struct {
 	norm       float64
 }
 
-// scaled returns weight*cos(2 pi s/q), by level s.
-func scaled(q int, weight float64) []float64 {
-	out := make([]float64, q)
-	for s := range out {
-		out[s] = weight * math.Cos(2*math.Pi*float64(s)/float64(q))
+// worth returns the real and the imaginary part of what a term of a family, or a
+// position of a line, is worth by its level, times a complex weight;
+// complexValued tells whether it is complex at weight 1.
+func worth(g *kinetic.Generator, row int, weight complex128) (re, im []float64, complexValued bool) {
+	for s := range g.Levels {
+		v := complex(math.Cos(2*math.Pi*float64(s)/float64(g.Levels)), math.Sin(2*math.Pi*float64(s)/float64(g.Levels)))
+		switch {
+		case g.Levels == 2:
+			v = complex(1-2*float64(s), 0)
+		case row < len(g.Families) && g.Families[row].Energy != nil:
+			v = complex(-g.Families[row].Energy[s]/g.Spec.Families[row].Coupling, 0)
+		default:
+			complexValued = true
+		}
+		re = append(re, real(weight*v))
+		im = append(im, imag(weight*v))
 	}
-	return out
+	return re, im, complexValued
 }
 
 func plain(g *kinetic.Generator, o Observable, levels [][]uint8) plainly {
@@ -144,7 +156,15 @@ func plain(g *kinetic.Generator, o Observable, levels [][]uint8) plainly {
 			}
 		}
 	}
-	single := func(row, at int) { p.components = append(p.components, []part{{row, at, scaled(g.Levels, 1)}}) }
+	singles := 0.0
+	single := func(row, at int) {
+		singles++
+		re, im, two := worth(g, row, 1)
+		p.components = append(p.components, []part{{row, at, re}})
+		if two {
+			p.components = append(p.components, []part{{row, at, im}})
+		}
+	}
 	switch o.Kind {
 	case Energy:
 		p.components = [][]part{nil}
@@ -164,11 +184,18 @@ func plain(g *kinetic.Generator, o Observable, levels [][]uint8) plainly {
 	case Magnetization, Terms:
 		p.components = [][]part{nil}
 		each(o.Families, func(row, at int) {
-			p.components[0] = append(p.components[0], part{row, at, scaled(g.Levels, 1)})
+			re, im, two := worth(g, row, 1)
+			p.components[0] = append(p.components[0], part{row, at, re})
+			if two {
+				if len(p.components) == 1 {
+					p.components = append(p.components, nil)
+				}
+				p.components[1] = append(p.components[1], part{row, at, im})
+			}
 		})
 	case Operator:
 		each([]int{len(g.Families) + o.Line}, single)
-		p.norm = float64(len(p.components))
+		p.norm = singles
 	case Local:
 		for _, f := range o.Families {
 			lo, hi := span(g, levels[f])
@@ -181,7 +208,7 @@ func plain(g *kinetic.Generator, o Observable, levels [][]uint8) plainly {
 				single(row, at)
 			})
 		}
-		p.norm = float64(len(p.components))
+		p.norm = singles
 	case Fourier:
 		p.components = make([][]part, 2)
 		for _, f := range o.Families {
@@ -195,8 +222,9 @@ func plain(g *kinetic.Generator, o Observable, levels [][]uint8) plainly {
 					}
 					phase += 2 * math.Pi * float64(o.Wavevector[a]) / float64(g.Lattice.Size[a]) * from
 				}
-				p.components[0] = append(p.components[0], part{row, at, scaled(g.Levels, math.Cos(phase))})
-				p.components[1] = append(p.components[1], part{row, at, scaled(g.Levels, math.Sin(phase))})
+				re, im, _ := worth(g, row, cmplx.Rect(1, phase))
+				p.components[0] = append(p.components[0], part{row, at, re})
+				p.components[1] = append(p.components[1], part{row, at, im})
 			})
 		}
 	default:

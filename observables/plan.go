@@ -47,7 +47,12 @@ func (p Plan) Check(g *kinetic.Generator) error {
 		faults = append(faults, fmt.Errorf("step %v is too short for settle + span = %v: times could not be told apart", p.Step, p.Settle+p.Span))
 	}
 	if p.Covariance != "" {
-		if _, err := FamiliesOf(g, p.Covariance); err != nil {
+		families, err := FamiliesOf(g, p.Covariance)
+		if err == nil {
+			o := Observable{Kind: Local, Families: families}
+			err = o.findComplex(g)
+		}
+		if err != nil {
 			faults = append(faults, fmt.Errorf("covariance: %w", err))
 		}
 		if !(p.Every > 0) || math.IsInf(p.Every, 0) {

@@ -4,7 +4,6 @@ import (
 	"context"
 	"fmt"
 	"math"
-	"slices"
 	"testing"
 
 	"sojourn/kinetic"
@@ -190,9 +189,7 @@ func TestDirichletAgainstJumps(t *testing.T) {
 			lanes := 2
 			u := record(t, newBundle(t, g, lanes, 2), g, obs, plan)
 			e := newBundle(t, g, lanes, 2)
-			pairs := slices.DeleteFunc(allPairs(obs), func(p [2]int) bool {
-				return g.Levels > 2 && obs[p[0]].Kind == Operator
-			})
+			pairs := allPairs(obs)
 			want := make([]float64, PairSegments*len(pairs))
 			for k := range int(plan.Samples()) {
 				e.Advance(plan.Settle + float64(k)*plan.Step)

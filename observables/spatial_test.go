@@ -33,14 +33,15 @@ func TestCovarianceAgainstDirectSums(t *testing.T) {
 						snapshots = append(snapshots, levelsOf(g, e, k/2%lanes)[f])
 					}
 				}
-				checkCovariance(t, g, u.Covariance, g.Families[f].Name, snapshots, plan.Limit)
+				checkCovariance(t, g, u.Covariance, f, snapshots, plan.Limit)
 			})
 		}
 	}
 }
 
-func checkCovariance(t *testing.T, g *kinetic.Generator, rows []CovarianceRow, name string, snapshots [][]uint8, limit int) {
+func checkCovariance(t *testing.T, g *kinetic.Generator, rows []CovarianceRow, family int, snapshots [][]uint8, limit int) {
 	t.Helper()
+	name := g.Families[family].Name
 	seen := make(map[string]bool)
 	for _, r := range rows {
 		var want CovarianceRow
@@ -50,11 +51,11 @@ func checkCovariance(t *testing.T, g *kinetic.Generator, rows []CovarianceRow, n
 				d[a] = int(x)
 			}
 			for _, s := range snapshots {
-				addPoints(&want, g, s, d)
+				addPoints(&want, g, family, s, d)
 			}
 		} else {
 			for _, s := range snapshots {
-				addPlanes(&want, g, s, int(r.Axis), int(r.Displacement[0]))
+				addPlanes(&want, g, family, s, int(r.Axis), int(r.Displacement[0]))
 			}
 		}
 		key := fmt.Sprint(r.Axis, r.Displacement)
@@ -71,14 +72,14 @@ func checkCovariance(t *testing.T, g *kinetic.Generator, rows []CovarianceRow, n
 	// all distances of planes.
 	l := g.Lattice
 	for d := range within(l, limit) {
-		if !seen[key(l, d)] && !seen[key(l, d.Neg())] && !folded(l, d, seen) && possible(g, snapshots[0], d) {
+		if !seen[key(l, d)] && !seen[key(l, d.Neg())] && !folded(l, d, seen) && possible(g, family, snapshots[0], d) {
 			t.Errorf("no row for displacement %v", d)
 		}
 	}
 	for a := range l.Axes {
 		for r := range min(longest(l, a), chainLimit) + 1 {
 			var want CovarianceRow
-			addPlanes(&want, g, snapshots[0], a, r)
+			addPlanes(&want, g, family, snapshots[0], a, r)
 			if want.Pairs > 0 && !seen[fmt.Sprint(a, []int32{int32(r)})] {
 				t.Errorf("no row for planes at distance %d along axis %d", r, a)
 			}
@@ -133,29 +134,51 @@ func within(l lattice.Lattice, limit int) map[lattice.Offset]bool {
 
 func abs(x int) int { return max(x, -x) }
 
-func possible(g *kinetic.Generator, levels []uint8, d lattice.Offset) bool {
+func possible(g *kinetic.Generator, family int, levels []uint8, d lattice.Offset) bool {
 	var r CovarianceRow
-	addPoints(&r, g, levels, d)
+	addPoints(&r, g, family, levels, d)
 	return r.Pairs > 0
 }
 
-func addPoints(r *CovarianceRow, gen *kinetic.Generator, levels []uint8, d lattice.Offset) {
-	l, value := gen.Lattice, scaled(gen.Levels, 1)
+// parts are the real and the imaginary part of the values of a family by level,
+// the latter only where there is one.
+func parts(g *kinetic.Generator, family int) [][]float64 {
+	re, im, two := worth(g, family, 1)
+	if !two {
+		return [][]float64{re}
+	}
+	return [][]float64{re, im}
+}
+
+func addPoints(r *CovarianceRow, gen *kinetic.Generator, family int, levels []uint8, d lattice.Offset) {
+	l, values := gen.Lattice, parts(gen, family)
 	for c, s := range levels {
 		to, ok := l.Wrap(l.Coord(c), d)
 		if !ok || s == kinetic.Absent || levels[l.Index(to)] == kinetic.Absent {
 			continue
 		}
-		f, g := value[s], value[levels[l.Index(to)]]
 		r.Pairs++
-		r.SumF += f
-		r.SumG += g
-		r.SumFG += f * g
+		for _, value := range values {
+			f, g := value[s], value[levels[l.Index(to)]]
+			r.SumF += f
+			r.SumG += g
+			r.SumFG += f * g
+		}
 	}
 }
 
-func addPlanes(r *CovarianceRow, gen *kinetic.Generator, levels []uint8, axis, d int) {
-	l, value := gen.Lattice, scaled(gen.Levels, 1)
+func addPlanes(r *CovarianceRow, gen *kinetic.Generator, family int, levels []uint8, axis, d int) {
+	for i, value := range parts(gen, family) {
+		pairs := r.Pairs
+		addPlanePart(r, gen, value, levels, axis, d)
+		if i > 0 {
+			r.Pairs = pairs
+		}
+	}
+}
+
+func addPlanePart(r *CovarianceRow, gen *kinetic.Generator, value []float64, levels []uint8, axis, d int) {
+	l := gen.Lattice
 	sums := make([]float64, l.Size[axis])
 	exist := make([]bool, l.Size[axis])
 	for c, s := range levels {
@@ -194,7 +217,7 @@ func TestLongAxes(t *testing.T) {
 		plan := Plan{Span: 1, Step: 1, Covariance: "spin", Every: 1, Limit: 1}
 		u := record(t, newBundle(t, g, 1, 4), g, nil, plan)
 		e := newBundle(t, g, 1, 4)
-		checkCovariance(t, g, u.Covariance, "spin", [][]uint8{levelsOf(g, e, 0)[l.Axes]}, 1)
+		checkCovariance(t, g, u.Covariance, l.Axes, [][]uint8{levelsOf(g, e, 0)[l.Axes]}, 1)
 	}
 }
 

@@ -43,9 +43,6 @@ func overlap(a, b complex128) float64 { return real(a)*real(b) + imag(a)*imag(b)
 // the same energy at s and q - s, and vanishes where the same power of X on all
 // sites of a kind changes the operator and no term.
 func complexMean(g *kinetic.Generator, name string) error {
-	if g.Levels == 2 {
-		return nil
-	}
 	skew := ""
 	for f := range g.Families {
 		for s, e := range g.Families[f].Energy {
