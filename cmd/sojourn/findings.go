@@ -10,6 +10,7 @@ type findings struct {
 	complete   bool
 	missing    int // units that the study asks for and nobody has run
 	points     []finding
+	samples    []sampled // of random couplings, taken together; nil without several
 	comparison analysis.Comparison
 }
 

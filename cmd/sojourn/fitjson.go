@@ -14,6 +14,7 @@ type fitJSON struct {
 	Title    string         `json:"title,omitempty"`
 	Complete bool           `json:"complete"`
 	Points   []fitPointJSON `json:"points"`
+	Samples  []samplesJSON  `json:"samples,omitempty"`
 	Trends   []trendJSON    `json:"trends"`
 	Warnings []warningJSON  `json:"warnings"`
 }
@@ -190,6 +191,9 @@ func jsonOfFindings(f *findings) fitJSON {
 		Trends: []trendJSON{}, Warnings: jsonOfWarnings(f.comparison.Warnings)}
 	for i := range f.points {
 		out.Points[i] = jsonOfPoint(&f.points[i])
+	}
+	for k := range f.samples {
+		out.Samples = append(out.Samples, jsonOfSamples(&f.samples[k], f))
 	}
 	for i := range f.comparison.Trends {
 		out.Trends = append(out.Trends, jsonOfTrend(&f.comparison.Trends[i], f))

@@ -229,6 +229,8 @@ var fitTables = []fitTable{
 			}
 		},
 	},
+	sampleTables[0],
+	sampleTables[1],
 	{
 		name: "trends", study: true, doc: "one parameter of one form fitted to a quantity over the scan",
 		columns: []table.Column{

@@ -56,6 +56,9 @@ func infer(d *archive.Dir, partial bool) (*findings, error) {
 	for i := range f.points {
 		f.points[i].result = results[i]
 	}
+	if f.samples = overSamples(f.points); f.samples != nil {
+		f.comparison.Trends = trendsOverSamples(f)
+	}
 	return f, nil
 }
 

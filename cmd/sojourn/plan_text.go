@@ -33,7 +33,7 @@ func planText(s *configs.Study, list []planned, workers int) string {
 		var others []string
 		for _, v := range p.config.Scan {
 			if furtherPhysics(v.Name) {
-				others = append(others, v.Name+" "+v.Value)
+				others = append(others, setting{v.Name, v.Value}.String())
 			}
 		}
 		t.add(fmt.Sprint(i), shortest(p.config.Spec.Beta), sizeText(p.generator.Lattice.Lengths()), strings.Join(others, ", "),

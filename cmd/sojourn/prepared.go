@@ -106,7 +106,7 @@ func pointText(p *configs.Point) string {
 	s := fmt.Sprintf("%s %s at beta %s", p.Model, sizeText(p.Spec.Lattice.Lengths()), shortest(p.Spec.Beta))
 	for _, x := range p.Scan {
 		if furtherPhysics(x.Name) {
-			s += ", " + x.Name + " " + x.Value
+			s += ", " + setting{x.Name, x.Value}.String()
 		}
 	}
 	return s

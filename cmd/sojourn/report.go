@@ -32,9 +32,13 @@ func writeReport(w io.Writer, f *findings) error {
 	}
 	said := findRepeated(f)
 	for i := range f.points {
+		if f.samples != nil {
+			break
+		}
 		b.WriteByte('\n')
 		writePoint(&b, &f.points[i], said)
 	}
+	writeSamples(&b, f)
 	writeTrends(&b, f)
 	writeOverview(&b, f)
 	writeWarnings(&b, f, said)
@@ -46,7 +50,7 @@ func writeReport(w io.Writer, f *findings) error {
 func writePoint(b *strings.Builder, p *finding, said *repeated) {
 	head := fmt.Sprintf("%s %s, beta %s", p.model, sizeText(p.size), shortest(p.beta))
 	for _, s := range p.scan {
-		head += ", " + s.name + " " + s.value
+		head += ", " + s.String()
 	}
 	tail := fmt.Sprintf("point %d", p.point)
 	fmt.Fprintf(b, "%s%s%s\n", head, strings.Repeat(" ", max(2, pageWidth-len(head)-len(tail))), tail)

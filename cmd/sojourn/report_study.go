@@ -56,7 +56,9 @@ func writeTrend(b *strings.Builder, t *analysis.Trend, f *findings) {
 			fixed = []string{"beta " + shortest(p.beta)}
 		}
 		for _, s := range p.scan {
-			fixed = append(fixed, s.name+" "+s.value)
+			if s.name != sampleName || f.samples == nil {
+				fixed = append(fixed, s.String())
+			}
 		}
 		head += " at " + strings.Join(fixed, ", ")
 	}
@@ -98,7 +100,7 @@ func writeOverview(b *strings.Builder, f *findings) {
 		r := &p.result
 		var others []string
 		for _, s := range p.scan {
-			others = append(others, s.name+" "+s.value)
+			others = append(others, s.String())
 		}
 		name, tau := "", ""
 		slowest := -1

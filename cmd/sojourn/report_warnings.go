@@ -122,6 +122,9 @@ func writeCaution(b *strings.Builder, f *findings) {
 	if hasDecay(f) {
 		say("A short xi is necessary, not sufficient, for fast mixing: do not read it as evidence that the lattice relaxes fast.")
 	}
+	if f.samples != nil {
+		say("Errors of averages over samples of random couplings come from how samples differ. The typical time is exp of the mean of ln tau, spread the standard deviation of ln tau beyond the errors of single samples; each sample stands in fits/ and in the JSON.")
+	}
 	if n := warned(f); n > 0 {
 		say(fmt.Sprintf("Lines marked ! say which numbers are not to be trusted, and why: %s.", plural(n, "point")))
 	}
