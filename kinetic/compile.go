@@ -18,7 +18,7 @@ const MaxBits = 16
 type TooManyRates struct{ Rates int }
 
 func (e *TooManyRates) Error() string {
-	return fmt.Sprintf("the jumps have %d distinct rates; at most 255 are supported", e.Rates)
+	return fmt.Sprintf("the jumps have %d distinct rates; at most 255 are supported: fewer levels, couplings or bath operators make fewer", e.Rates)
 }
 
 // TooManyTerms says that a site touches more terms than a pattern holds.
@@ -47,6 +47,8 @@ type compiler struct {
 	tables   map[string]uint32
 	hits     map[hitKey]int // in hitList
 	hitList  []Hit
+
+	family, from, to []int // scratch of compileMove
 }
 
 // Compile turns a Spec into tables. Families without coupling are dropped. It

@@ -14,17 +14,28 @@ import (
 // that its shortest decimal denotes, so that equal energies give equal rates in
 // whatever order they are summed.
 type energies struct {
-	beta   float64
-	laws   []bath.Law
-	level  [][]*big.Rat // family, level; nil for tracked families
-	known  map[string]*big.Rat
-	rates  []map[string]float64 // law, energy
-	met    map[string]*big.Rat  // every energy asked for, by its text
-	counts []int8
+	beta  float64
+	laws  []bath.Law
+	level [][]*big.Rat // family, level; nil for tracked families
+	rates []map[string]float64
+	met   map[string]*big.Rat // every energy asked for, by its text
+
+	// counts says how many terms of a family leave a level less how many come to
+	// it, mod 256; known holds what was found for counts.
+	counts []byte
+	known  map[string]*jumpEnergy
+}
+
+// jumpEnergy is an energy and the rate at it under each law, -1 if not yet asked
+// for.
+type jumpEnergy struct {
+	energy *big.Rat
+	text   string
+	rate   []float64
 }
 
 func newEnergies(spec Spec, families []family) *energies {
-	e := &energies{beta: spec.Beta, known: map[string]*big.Rat{}, met: map[string]*big.Rat{}}
+	e := &energies{beta: spec.Beta, known: map[string]*jumpEnergy{}, met: map[string]*big.Rat{}}
 	for _, b := range spec.Bath {
 		e.laws = append(e.laws, b.Law)
 		e.rates = append(e.rates, map[string]float64{})
@@ -32,7 +43,7 @@ func newEnergies(spec Spec, families []family) *energies {
 	for _, f := range families {
 		e.level = append(e.level, f.energy)
 	}
-	e.counts = make([]int8, len(families)*spec.Levels)
+	e.counts = make([]byte, len(families)*spec.Levels)
 	return e
 }
 
@@ -47,41 +58,48 @@ func (e *energies) rate(law int, family []int, before, after []int) (float64, er
 			e.counts[f*q+after[b]]--
 		}
 	}
-	key := make([]byte, len(e.counts))
-	for i, n := range e.counts {
-		key[i] = byte(n)
-	}
-	w, ok := e.known[string(key)]
+	j, ok := e.known[string(e.counts)]
 	if !ok {
-		w = new(big.Rat)
-		for f, levels := range e.level {
-			for s, energy := range levels {
-				if n := e.counts[f*q+s]; n != 0 {
-					w.Add(w, new(big.Rat).Mul(big.NewRat(int64(n), 1), energy))
-				}
+		j = e.add()
+	}
+	if j.rate[law] >= 0 {
+		return j.rate[law], nil
+	}
+	r, ok := e.rates[law][j.text]
+	if !ok {
+		var err error
+		if r, err = e.laws[law].At(j.energy, e.beta); err != nil {
+			return 0, err
+		}
+		if math.IsNaN(r) || math.IsInf(r, 0) || r < 0 {
+			return 0, fmt.Errorf("the rate at energy %s is %v", j.text, r)
+		}
+		e.rates[law][j.text] = r
+	}
+	j.rate[law] = r
+	return r, nil
+}
+
+// add computes the energy of the counts.
+func (e *energies) add() *jumpEnergy {
+	q := len(e.counts) / max(1, len(e.level))
+	w := new(big.Rat)
+	for f, levels := range e.level {
+		for s, energy := range levels {
+			if n := int8(e.counts[f*q+s]); n != 0 {
+				w.Add(w, new(big.Rat).Mul(big.NewRat(int64(n), 1), energy))
 			}
 		}
-		text := w.RatString()
-		if same, ok := e.met[text]; ok {
-			w = same
-		} else {
-			e.met[text] = w
-		}
-		e.known[string(key)] = w
 	}
-	text := w.RatString()
-	if r, ok := e.rates[law][text]; ok {
-		return r, nil
+	j := &jumpEnergy{energy: w, text: w.RatString(), rate: make([]float64, len(e.laws))}
+	for law := range j.rate {
+		j.rate[law] = -1
 	}
-	r, err := e.laws[law].At(w, e.beta)
-	if err != nil {
-		return 0, err
+	if _, ok := e.met[j.text]; !ok {
+		e.met[j.text] = w
 	}
-	if math.IsNaN(r) || math.IsInf(r, 0) || r < 0 {
-		return 0, fmt.Errorf("the rate at energy %s is %v", text, r)
-	}
-	e.rates[law][text] = r
-	return r, nil
+	e.known[string(e.counts)] = j
+	return j
 }
 
 // of lists the energies at which a law was asked for a rate, increasing.

@@ -46,9 +46,9 @@ func (k *compiler) shapeOf(c lattice.Offset, seat int) (int, error) {
 		s.Rate[m] = make([]float64, patterns)
 	}
 	s.Delta = make([]int8, moves*patterns*len(g.Families)*g.SumWidth())
+	before := make([]int, len(g.Seats[seat].Slots))
 	for p := range patterns {
-		before, ok := k.levels(p, seat, n)
-		if !ok {
+		if !k.levels(before, p, n) {
 			continue
 		}
 		for m := range moves {
@@ -83,28 +83,27 @@ func shapeKey(seat int, n *neighbourhood, lines [][][]uint8) string {
 	return string(key)
 }
 
-// levels unpacks a pattern; ok is false if a slot holds no level, or one that
-// does not exist is not 0.
-func (k *compiler) levels(p, seat int, n *neighbourhood) (levels []int, ok bool) {
+// levels unpacks a pattern into dst, by slot; it returns false if a slot holds no
+// level, or one that does not exist is not 0.
+func (k *compiler) levels(dst []int, p int, n *neighbourhood) bool {
 	w := k.g.SlotBits
-	levels = make([]int, len(k.g.Seats[seat].Slots))
-	if p>>(w*len(levels)) != 0 {
-		return nil, false
+	if p>>(w*len(dst)) != 0 {
+		return false
 	}
-	for b := range levels {
-		levels[b] = p >> (w * b) & (1<<w - 1)
-		if levels[b] >= k.g.Levels || (!n.exists[b] && levels[b] != 0) {
-			return nil, false
+	for b := range dst {
+		dst[b] = p >> (w * b) & (1<<w - 1)
+		if dst[b] >= k.g.Levels || (!n.exists[b] && dst[b] != 0) {
+			return false
 		}
 	}
-	return levels, true
+	return true
 }
 
 // compileMove fills in the rate of move m at pattern p, and what it does to the
 // sums.
 func (k *compiler) compileMove(s *Shape, n *neighbourhood, m, p int, before []int) error {
 	g := k.g
-	var family, from, to []int
+	family, from, to := k.family[:0], k.from[:0], k.to[:0]
 	delta := s.Delta[(m<<g.Bits|p)*len(g.Families)*g.SumWidth():]
 	for b, slot := range g.Seats[s.Seat].Slots {
 		d := n.change[m][b]
@@ -122,6 +121,7 @@ func (k *compiler) compileMove(s *Shape, n *neighbourhood, m, p int, before []in
 			delta[slot.Family*g.Levels+after]++
 		}
 	}
+	k.family, k.from, k.to = family, from, to
 	if !s.acts[m] {
 		return nil // a jump that changes nothing is no jump
 	}
