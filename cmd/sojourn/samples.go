@@ -109,14 +109,12 @@ func writeSamples(b *strings.Builder, f *findings) {
 		if len(s.scan) > 0 {
 			head += ", " + settingsText(s.scan)
 		}
-		numbers := make([]int, len(s.points))
 		jumps, trajectories := 0.0, 0
-		for i, n := range s.points {
-			numbers[i] = f.points[n].point
+		for _, n := range s.points {
 			jumps += f.points[n].jumps
 			trajectories += f.points[n].trajectories
 		}
-		tail := ranges(numbers)
+		tail := fmt.Sprintf("points %d to %d", p.point, f.points[s.points[len(s.points)-1]].point)
 		fmt.Fprintf(b, "\n%s%s%s\n", head, strings.Repeat(" ", max(2, pageWidth-len(head)-len(tail))), tail)
 		line := fmt.Sprintf("%s of random couplings, %s of %s from start %s, %s jumps", plural(s.summary.Samples, "sample"),
 			plural(trajectories, "trajectory"), shortest(p.span), p.start, count(jumps))
