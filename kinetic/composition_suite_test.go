@@ -23,6 +23,9 @@ func TestCompositionSuite(t *testing.T) {
 			}
 			spec.Families = append([]kinetic.FamilySpec(nil), spec.Families...)
 			for f := range spec.Families {
+				if spec.Families[f].Shape != nil {
+					return kinetic.NewClasses(g, seed, unit, start)
+				}
 				j := make([]float64, g.Cells())
 				for c := range j {
 					j[c] = spec.Families[f].Coupling

@@ -57,6 +57,9 @@ func (k *compiler) collectCouplings() error {
 	c := &Couplings{J: make([][]int32, len(k.families))}
 	values := make([][]float64, len(k.spec.Families))
 	for f, spec := range k.spec.Families {
+		if spec.Shape != nil {
+			return fmt.Errorf("family %q has energies other than -J and J, which cannot stand beside couplings of many sizes", spec.Name)
+		}
 		values[f] = spec.Couplings
 		if values[f] == nil {
 			values[f] = make([]float64, k.g.Cells())

@@ -260,7 +260,7 @@ func (p *lanePlan) addMove(pl *Place, seat, m int, terms [][]int32) error {
 		for _, b := range group {
 			order = append(order, b)
 			t := laneTerm{wordList: p.list(terms[b])}
-			if g.Families[g.Seats[seat].Slots[b].Family].Energy[0] > 0 {
+			if e := g.Families[g.Seats[seat].Slots[b].Family].Energy; e[0] > e[1] {
 				t.sign = math.MaxUint64
 			}
 			p.terms = append(p.terms, t)
@@ -298,7 +298,7 @@ func (p *lanePlan) addMove(pl *Place, seat, m int, terms [][]int32) error {
 }
 
 // energyGroups sorts the energy terms among slots of a seat into groups of equal
-// coupling up to sign, and counts them.
+// difference of energies up to sign, and counts them.
 func (g *Generator) energyGroups(seat int, slots []int) (groups [][]int, n int) {
 	var sizes []float64
 	for _, b := range slots {
@@ -307,7 +307,7 @@ func (g *Generator) energyGroups(seat int, slots []int) (groups [][]int, n int) 
 			continue
 		}
 		n++
-		size := math.Abs(energy[0])
+		size := math.Abs(energy[0] - energy[1])
 		at := -1
 		for i, s := range sizes {
 			if s == size {

@@ -167,7 +167,7 @@ func (e *lanes) Energy(lane int) float64 {
 	sum := 0.0
 	for f, fam := range g.Families {
 		if fam.Energy != nil {
-			sum += fam.Energy[0] * float64(sums[f])
+			sum += fam.energyOf(sums[f])
 		}
 	}
 	return sum

@@ -126,6 +126,7 @@ func listed(t *testing.T) []*subject {
 	for seed := range n {
 		out = append(out, newSubject(t, fmt.Sprint("random-", seed), RandomSpec(uint64(seed), Enumerable), true))
 	}
+	out = append(out, newSubject(t, "potts-2-ring-5", Potts(2, Lattice(5), 0.7, HeatBath), true))
 	out = append(out, newSubject(t, "planar-2x2", PlanarCode(2, 2, 0.6, "XZ", HeatBath), true))
 	for seed := range n / 5 {
 		out = append(out, newSubject(t, fmt.Sprint("edges-", seed), RandomEdges(uint64(seed), Enumerable), true))
