@@ -15,11 +15,12 @@ type decoder struct {
 	// were taken to mean, so that nothing complains that these are missing.
 	meant    map[string]bool
 	compiled map[string]compiled // by spec
+	chosen   map[string]string   // by spec and use: the engine
 	turned   map[string]bool     // see uneven
 }
 
 func newDecoder(src *source) *decoder {
-	return &decoder{src: src, seen: map[placeKey]bool{}, meant: map[string]bool{}, compiled: map[string]compiled{}, turned: map[string]bool{}}
+	return &decoder{src: src, seen: map[placeKey]bool{}, meant: map[string]bool{}, compiled: map[string]compiled{}, chosen: map[string]string{}, turned: map[string]bool{}}
 }
 
 // placed is a fault with its place as a byte offset.

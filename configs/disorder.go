@@ -132,8 +132,8 @@ func (c *canonical) disorder(p *Point) {
 	c.sorted(blocks)
 }
 
-// engine is the engine that runs the point: the one that was asked for, or for
-// auto the one for couplings of its kind.
+// engine is the engine that was asked for, or for auto one that can run couplings
+// of the point's kind.
 func (p *Point) engine() string {
 	switch {
 	case p.Trajectory.Engine != autoEngine:

@@ -3,6 +3,7 @@ package configs
 import (
 	"errors"
 	"fmt"
+	"math"
 	"slices"
 	"strconv"
 	"strings"
@@ -61,6 +62,9 @@ func (r *reading) point() (p Point, ok bool) {
 	if r.failed || len(r.d.faults) > 0 {
 		return p, false
 	}
+	if p.Trajectory.Engine == autoEngine && !p.varies() {
+		p.Trajectory.EngineName = r.choose(&p, list)
+	}
 	for _, o := range list {
 		p.Observables = append(p.Observables, o.Observable)
 	}
@@ -103,6 +107,30 @@ func (r *reading) compile(p *Point, h *hamiltonian, list []requested) {
 	if p.MaxRate = g.maxRate; p.MaxRate == 0 {
 		bath.fault("law", "all rates are 0 here: nothing would ever happen")
 	}
+}
+
+// choose returns the engine that serves the point best. Random signs do not enter:
+// they change neither the cost of a jump nor, much, how many there are.
+func (r *reading) choose(p *Point, list []requested) string {
+	if p.Spec.Lattice.Cells() > math.MaxInt32/p.Spec.Sites {
+		return kinetic.ClassEngine // which says that it cannot run so many sites
+	}
+	use := kinetic.Use{Step: p.Trajectory.Step}
+	for _, o := range list {
+		use.OneByOne = use.OneByOne || o.Kind == "local" || o.Kind == "operator"
+	}
+	key := "choose " + fmt.Sprint(use, p.Spec)
+	if engine, ok := r.d.chosen[key]; ok {
+		return engine
+	}
+	engine := kinetic.ClassEngine
+	if g, err := kinetic.Compile(p.Spec); err == nil {
+		if name, _, err := kinetic.Choose(g, autoEngine, use); err == nil {
+			engine = name
+		}
+	}
+	r.d.chosen[key] = engine
+	return engine
 }
 
 // compiled is what the check of a point takes from a generator.

@@ -46,7 +46,7 @@ covariance.every = 10.41`
 	if g := 1 / (1 + math.Exp(-3.2)); math.Abs(p.MaxRate/g-1) > 1e-12 {
 		t.Errorf("largest rate %v, want %v", p.MaxRate, g)
 	}
-	if got := fmt.Sprint(p.Trajectory, p.Pairs); got != "{16 random 104.1 4163 0.2602 1 auto classes} [[0 0] [0 1] [1 1]]" {
+	if got := fmt.Sprint(p.Trajectory, p.Pairs); got != "{16 random 104.1 4163 0.2602 1 auto lanes} [[0 0] [0 1] [1 1]]" {
 		t.Errorf("trajectory and pairs: %s", got)
 	}
 }
