@@ -25,38 +25,24 @@ const maxSteps = 20000
 // are merged. A rate is right to about 1e-15 of the fastest one: the slowest of a
 // cold system to a relative 1e-8 where it is 1e-7 of that.
 func (st *States) Relaxation(o Observable) (Relaxation, error) {
-	var modes []Mode
-	var failed error
-	r := st.statics(o, func(x []float64) {
-		if failed != nil {
-			return
-		}
-		m, err := st.measure(x)
-		if err != nil {
-			failed = fmt.Errorf("%s: %w", o.Name, err)
-		}
-		modes = append(modes, m...)
-	})
-	if failed != nil {
-		return r, failed
-	}
-	r.finish(modes, o.Norm)
-	return r, nil
+	return st.chain().relaxation(o, st.Values)
 }
 
+func (st *States) chain() *chain { return &chain{matrix: st.matrix, weight: st.Weight} }
+
 // measure returns the spectral measure of a vector orthogonal to sqrt(pi).
-func (st *States) measure(x []float64) ([]Mode, error) {
-	n := st.Len()
+func (c *chain) measure(x []float64) ([]Mode, error) {
+	n := c.len()
 	norm := blas64.Nrm2(vector(x))
 	v, w := append([]float64(nil), x...), make([]float64, n)
 	before := make([]float64, n)
 	blas64.Scal(1/norm, vector(v))
-	root := st.root()
-	scale := st.matrix.norm()
+	root := c.root()
+	scale := c.matrix.norm()
 	var diagonal, off []float64
 	var last [4]float64
 	for check := 16; ; {
-		st.matrix.Mul(w, v)
+		c.matrix.Mul(w, v)
 		if k := len(off); k > 0 {
 			blas64.Axpy(-off[k-1], vector(before), vector(w))
 		}
@@ -64,7 +50,9 @@ func (st *States) measure(x []float64) ([]Mode, error) {
 		diagonal = append(diagonal, a)
 		blas64.Axpy(-a, vector(v), vector(w))
 		// Rounding must not bring back the stationary state.
-		blas64.Axpy(-blas64.Dot(vector(root), vector(w)), vector(root), vector(w))
+		if root != nil {
+			blas64.Axpy(-blas64.Dot(vector(root), vector(w)), vector(root), vector(w))
+		}
 		b := blas64.Nrm2(vector(w))
 		exhausted := b <= 1e-13*scale || len(diagonal) == n
 		if exhausted || len(diagonal) == check {
@@ -112,15 +100,6 @@ func summary(diagonal, off []float64, variance float64) (modes []Mode, watched [
 	r.Variance = variance
 	r.finish(append([]Mode(nil), modes...), 1)
 	return modes, [4]float64{r.TauInt, r.TauSlowest(0.2), r.TauSlowest(0.01), r.TauSlowest(0)}, nil
-}
-
-// root returns sqrt(pi), the stationary state of H.
-func (st *States) root() []float64 {
-	r := make([]float64, st.Len())
-	for i, w := range st.Weight {
-		r[i] = math.Sqrt(w)
-	}
-	return r
 }
 
 func vector(x []float64) blas64.Vector { return blas64.Vector{N: len(x), Data: x, Inc: 1} }

@@ -18,24 +18,34 @@ import (
 // component in every eigenspace; an eigenvalue is found as often as its
 // multiplicity, at most as often as the block is wide, and the multiplicity is
 // the rank of the components. If that is the full width, which is 6, a block of
-// 18 is tried; beyond, the multiplicity is a lower bound. All eigenvalues up to the one after the last returned must have
-// converged, so that none is missed but for random vectors that are orthogonal
-// to an eigenspace to twelve digits.
-func (st *States) Lowest(count int) ([]Level, error) {
-	if st.Len() == 1 {
+// 18 is tried; beyond, the multiplicity is a lower bound. All eigenvalues up to
+// the one after the last returned must have converged, so that none is missed
+// but for random vectors that are orthogonal to an eigenspace to many digits.
+func (st *States) Lowest(count int) ([]Level, error) { return st.chain().lowest(count) }
+
+func (c *chain) lowest(count int) ([]Level, error) {
+	if c.dimension() == 0 {
 		return nil, nil
 	}
 	const narrow, wide = 6, 18
-	levels, full, err := st.lowest(count, min(narrow, st.Len()-1))
+	levels, full, err := c.attempt(count, min(narrow, c.dimension()))
 	if err == nil && full {
-		levels, _, err = st.lowest(count, min(wide, st.Len()-1))
+		levels, _, err = c.attempt(count, min(wide, c.dimension()))
 	}
 	return levels, err
 }
 
-// lowest runs one width; full tells that a multiplicity may exceed it.
-func (st *States) lowest(count, width int) (levels []Level, full bool, err error) {
-	k := newBlockLanczos(st, width)
+// dimension is that of the functions orthogonal to the constants.
+func (c *chain) dimension() int {
+	if c.odd {
+		return c.len()
+	}
+	return c.len() - 1
+}
+
+// attempt runs one width; full tells that a multiplicity may exceed it.
+func (c *chain) attempt(count, width int) (levels []Level, full bool, err error) {
+	k := newBlockLanczos(c, width)
 	for check := 12; ; check += max(4, check/5) {
 		exhausted := false
 		for k.steps < check && !exhausted {
@@ -49,7 +59,7 @@ func (st *States) lowest(count, width int) (levels []Level, full bool, err error
 			found = found[:min(count, len(found))]
 			for i := range found {
 				l := &found[i]
-				l.AtLeast = l.Multiplicity >= width && width < st.Len()-1
+				l.AtLeast = l.Multiplicity >= width && width < c.dimension()
 				full = full || l.AtLeast
 			}
 			return found, full, nil
@@ -69,7 +79,7 @@ const vanishing = 1e-9
 // is a band matrix. Vectors of a block are interleaved: component i of vector c
 // stands at i*width+c.
 type blockLanczos struct {
-	st    *States
+	c     *chain
 	root  []float64
 	width int // of the first block
 	scale float64
@@ -87,10 +97,10 @@ type blockLanczos struct {
 // what rounding brings back would crowd it.
 const keepPast = 1 << 13
 
-func newBlockLanczos(st *States, width int) *blockLanczos {
-	n := st.Len()
+func newBlockLanczos(c *chain, width int) *blockLanczos {
+	n := c.len()
 	k := &blockLanczos{
-		st: st, root: st.root(), width: width, columns: width, scale: st.matrix.norm(),
+		c: c, root: c.root(), width: width, columns: width, scale: c.matrix.norm(),
 		now: make([]float64, n*width), before: make([]float64, n*width), next: make([]float64, n*width),
 	}
 	r := rand.New(rand.NewPCG(0x6c6f77657374, uint64(n)))
@@ -124,7 +134,7 @@ func (k *blockLanczos) removeRoot(v []float64) {
 // coefficients: old = new r. Columns below vanishing are left out, the others
 // move up.
 func (k *blockLanczos) orthonormalise(v []float64) *mat.Dense {
-	n, w := k.st.Len(), k.width
+	n, w := k.c.len(), k.width
 	r := mat.NewDense(k.columns, k.columns, nil)
 	kept := 0
 	for c := range k.columns {
@@ -165,7 +175,7 @@ func (k *blockLanczos) orthonormalise(v []float64) *mat.Dense {
 
 // step adds a block; it returns false if the Krylov space is exhausted.
 func (k *blockLanczos) step() bool {
-	k.st.matrix.mulBlock(k.next, k.now, k.width)
+	k.c.matrix.mulBlock(k.next, k.now, k.width)
 	if k.steps > 0 {
 		k.subtract(k.before, k.below[k.steps-1], true)
 	}
@@ -199,7 +209,7 @@ func (k *blockLanczos) step() bool {
 }
 
 func (k *blockLanczos) keep() {
-	if k.st.Len() <= keepPast {
+	if k.c.len() <= keepPast {
 		k.past = append(k.past, slices.Clone(k.now))
 	}
 }
@@ -208,7 +218,7 @@ func (k *blockLanczos) keep() {
 func (k *blockLanczos) overlap(v, u []float64) *mat.Dense {
 	w := k.width
 	sum := make([]float64, w*w)
-	for i := range k.st.Len() {
+	for i := range k.c.len() {
 		row := u[i*w : (i+1)*w]
 		for a, x := range v[i*w : (i+1)*w] {
 			for b, y := range row {
@@ -233,7 +243,7 @@ func (k *blockLanczos) subtract(v []float64, m *mat.Dense, transpose bool) {
 			}
 		}
 	}
-	for i := range k.st.Len() {
+	for i := range k.c.len() {
 		out := k.next[i*w : (i+1)*w]
 		for a, x := range v[i*w : (i+1)*w] {
 			if x == 0 {
@@ -265,7 +275,7 @@ func (k *blockLanczos) converged(count int, exhausted bool) ([]Level, error) {
 	if err != nil {
 		return nil, err
 	}
-	least := 1e-6 / float64(k.st.Len())
+	least := 1e-6 / float64(k.c.len())
 	values = slices.DeleteFunc(values, func(v ritz) bool { return v.weight() < least })
 	var out []Level
 	for i := 0; i < len(values) && len(out) < count; {

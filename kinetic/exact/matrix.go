@@ -146,7 +146,7 @@ func (m *Matrix) norm() float64 {
 	bound := 0.0
 	for i, e := range m.Exit {
 		for _, v := range m.Symmetric[m.Start[i]:m.Start[i+1]] {
-			e += v
+			e += math.Abs(v)
 		}
 		bound = math.Max(bound, e)
 	}

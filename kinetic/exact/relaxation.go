@@ -1,6 +1,7 @@
 package exact
 
 import (
+	"fmt"
 	"math"
 	"slices"
 )
@@ -65,29 +66,69 @@ func (r Relaxation) TauSlowest(floor float64) float64 {
 	return 0
 }
 
+// chain is a reversible chain: its generator and stationary weights. Functions
+// on a sector of it (see Sector) may change sign under a symmetry.
+type chain struct {
+	matrix *Matrix
+	weight []float64
+	sign   []int8 // by entry of the matrix, with which the function there counts; nil for 1
+	odd    bool   // all functions change sign under a symmetry: no constants among them
+	// leak is the rate out of each state to where every function is 0; nil for
+	// none.
+	leak []float64
+}
+
+func (c *chain) len() int { return len(c.weight) }
+
+// root returns sqrt(pi), the stationary state of H; nil if it lies outside.
+func (c *chain) root() []float64 {
+	if c.odd {
+		return nil
+	}
+	r := make([]float64, c.len())
+	for i, w := range c.weight {
+		r[i] = math.Sqrt(w)
+	}
+	return r
+}
+
+// relaxation decomposes an observable whose components values fills in.
+func (c *chain) relaxation(o Observable, values func(component Component, dst []float64)) (Relaxation, error) {
+	var modes []Mode
+	var failed error
+	r := c.statics(o, values, func(x []float64) {
+		if failed != nil {
+			return
+		}
+		m, err := c.measure(x)
+		if err != nil {
+			failed = fmt.Errorf("%s: %w", o.Name, err)
+		}
+		modes = append(modes, m...)
+	})
+	if failed != nil {
+		return r, failed
+	}
+	r.finish(modes, o.Norm)
+	return r, nil
+}
+
 // statics fills the mean, variance and Dirichlet form of an observable, and
 // calls each with every centred component, scaled by sqrt(pi).
-func (st *States) statics(o Observable, each func(x []float64)) Relaxation {
+func (c *chain) statics(o Observable, values func(component Component, dst []float64), each func(x []float64)) Relaxation {
 	r := Relaxation{Name: o.Name}
-	f := make([]float64, st.Len())
-	for _, c := range o.Components {
-		st.Values(c, f)
+	f := make([]float64, c.len())
+	for _, component := range o.Components {
+		values(component, f)
 		mean := 0.0
 		for i, v := range f {
-			mean += st.Weight[i] * v
+			mean += c.weight[i] * v
+		}
+		if c.odd {
+			mean = 0
 		}
 		r.Mean += mean
-		var variance, form float64
-		m := st.matrix
-		for i, v := range f {
-			variance += st.Weight[i] * (v - mean) * (v - mean)
-			sum := 0.0
-			for k := m.Start[i]; k < m.Start[i+1]; k++ {
-				d := f[m.To[k]] - v
-				sum += m.Rate[k] * d * d
-			}
-			form += st.Weight[i] * sum / 2
-		}
+		variance, form := c.forms(f, mean)
 		scale := 0.0
 		for _, v := range f {
 			scale = math.Max(scale, math.Abs(v))
@@ -99,7 +140,7 @@ func (st *States) statics(o Observable, each func(x []float64)) Relaxation {
 		r.Variance += variance / o.Norm
 		r.Dirichlet += form / o.Norm
 		for i := range f {
-			f[i] = math.Sqrt(st.Weight[i]) * (f[i] - mean)
+			f[i] = math.Sqrt(c.weight[i]) * (f[i] - mean)
 		}
 		each(f)
 	}
@@ -107,6 +148,27 @@ func (st *States) statics(o Observable, each func(x []float64)) Relaxation {
 		r.Mean /= o.Norm
 	}
 	return r
+}
+
+// forms returns the variance and the Dirichlet form of a function.
+func (c *chain) forms(f []float64, mean float64) (variance, form float64) {
+	m := c.matrix
+	for i, v := range f {
+		variance += c.weight[i] * (v - mean) * (v - mean)
+		sum := 0.0
+		for k := m.Start[i]; k < m.Start[i+1]; k++ {
+			there := f[m.To[k]]
+			if c.sign != nil {
+				there *= float64(c.sign[k])
+			}
+			sum += m.Rate[k] * (there - v) * (there - v)
+		}
+		form += c.weight[i] * sum / 2
+		if c.leak != nil { // there and back
+			form += c.weight[i] * c.leak[i] * v * v
+		}
+	}
+	return variance, form
 }
 
 // finish sorts and merges modes and integrates.

@@ -100,7 +100,7 @@ func (sp *Spectrum) Gap() float64 {
 // Relaxation decomposes an observable into modes.
 func (sp *Spectrum) Relaxation(o Observable) Relaxation {
 	var modes []Mode
-	r := sp.states.statics(o, func(x []float64) {
+	r := sp.states.chain().statics(o, sp.states.Values, func(x []float64) {
 		for k := 1; k < len(sp.Rates); k++ {
 			c := 0.0
 			for i, v := range x {
