@@ -2,6 +2,7 @@ package kinetic
 
 import (
 	"fmt"
+	"math"
 	"slices"
 
 	"sojourn/kinetic/internal/stabilizer"
@@ -95,7 +96,10 @@ func GroundStates(s Spec) (Ground, error) {
 		return g, fmt.Errorf("terms do not commute")
 	}
 	g.Known = true
-	g.Encoded = sites - sol.Rank
+	// For composite q a rank is a sum of logarithms: whole but for rounding.
+	if g.Encoded = sites - sol.Rank; math.Abs(g.Encoded-math.Round(g.Encoded)) < 1e-9 {
+		g.Encoded = math.Round(g.Encoded)
+	}
 	g.Satisfied = lowest && sol.Consistent
 	g.Reference = g.Satisfied && reference
 	return g, nil

@@ -16,6 +16,7 @@ type modelJSON struct {
 	MinAxes    int             `json:"min_axes"`
 	MaxAxes    int             `json:"max_axes"`
 	Classical  bool            `json:"classical"`
+	Open       bool            `json:"open,omitempty"` // every axis must be
 	Parameters []parameterJSON `json:"parameters"`
 	Operators  []operatorsJSON `json:"operators"`
 }
@@ -25,6 +26,9 @@ type parameterJSON struct {
 	Default *float64 `json:"default,omitempty"`
 	Follows string   `json:"follows,omitempty"` // the parameter whose value is the default
 	MinAxes int      `json:"min_axes,omitempty"`
+	Whole   bool     `json:"whole,omitempty"` // a whole number, from min to max
+	Min     int      `json:"min,omitempty"`
+	Max     int      `json:"max,omitempty"`
 	Doc     string   `json:"doc"`
 }
 
@@ -53,9 +57,9 @@ func (c *console) models(o *options, args []string) error {
 			Models []modelJSON `json:"models"`
 		}{make([]modelJSON, len(list))}
 		for i, m := range list {
-			out.Models[i] = modelJSON{m.Name, m.Summary, m.Formula, m.Ground, m.Paper, m.MinAxes, m.MaxAxes, m.Classical, []parameterJSON{}, []operatorsJSON{}}
+			out.Models[i] = modelJSON{m.Name, m.Summary, m.Formula, m.Ground, m.Paper, m.MinAxes, m.MaxAxes, m.Classical, m.Open, []parameterJSON{}, []operatorsJSON{}}
 			for _, p := range m.Parameters {
-				json := parameterJSON{Name: p.Name, Follows: p.Follows, MinAxes: p.Axes, Doc: p.Doc}
+				json := parameterJSON{Name: p.Name, Follows: p.Follows, MinAxes: p.Axes, Whole: p.Whole, Min: p.Min, Max: p.Max, Doc: p.Doc}
 				if p.Follows == "" {
 					json.Default = &p.Default
 				}
@@ -90,6 +94,9 @@ func describeModel(b *strings.Builder, m models.Model) {
 	if m.MaxAxes > m.MinAxes {
 		axes = fmt.Sprintf("%d to %d", m.MinAxes, m.MaxAxes)
 	}
+	if m.Open {
+		axes += ", all open"
+	}
 	field := func(name, text string) {
 		for i, line := range wrap(text, 82, "") {
 			if i > 0 {
@@ -109,7 +116,11 @@ func describeModel(b *strings.Builder, m models.Model) {
 		if p.Follows != "" {
 			value = p.Follows
 		}
-		field(name, fmt.Sprintf("%s = %s  %s", p.Name, value, p.Doc))
+		doc := p.Doc
+		if p.Whole {
+			doc += fmt.Sprintf(", %d to %d", p.Min, p.Max)
+		}
+		field(name, fmt.Sprintf("%s = %s  %s", p.Name, value, doc))
 	}
 	for n := m.MinAxes; n <= m.MaxAxes; n++ {
 		families, tracked := m.Names(n)

@@ -128,18 +128,28 @@ func (p *planned) saysTerms() (string, string) {
 }
 
 func (p *planned) saysGround() (string, string) {
-	g := &p.ground
+	g, q := &p.ground, p.generator.Levels
+	encoded := shortest(g.Encoded) + " encoded qubit"
+	if q > 2 {
+		encoded = shortest(g.Encoded) + " encoded qudit"
+	}
+	if g.Encoded != 1 {
+		encoded += "s"
+	}
+	if q > 2 {
+		encoded += fmt.Sprintf(" of %d levels", q)
+	}
 	switch {
 	case !g.Known:
 		return "ground", "states not counted: " + g.Reason
 	case g.Classical && g.Satisfied:
-		return "ground", fmt.Sprintf("log2 of the number of ground states: %s", shortest(g.Encoded))
+		return "ground", fmt.Sprintf("log%d of the number of ground states: %s", q, shortest(g.Encoded))
 	case g.Classical:
-		return "ground", fmt.Sprintf("terms compete, so ground states were not counted; log2 of the states per set of term values: %s", shortest(g.Encoded))
+		return "ground", fmt.Sprintf("terms compete, so ground states were not counted; log%d of the states per set of term values: %s", q, shortest(g.Encoded))
 	case !g.Satisfied:
-		return "ground", fmt.Sprintf("terms compete; each set of term values encodes %s qubits", shortest(g.Encoded))
+		return "ground", fmt.Sprintf("terms compete; in each set of term values %s", encoded)
 	}
-	return "ground", fmt.Sprintf("%s encoded qubits", shortest(g.Encoded))
+	return "ground", encoded
 }
 
 func (p *planned) saysReference() (string, string) {

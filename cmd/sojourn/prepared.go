@@ -151,7 +151,7 @@ func (q *prepared) siteRate() float64 {
 	return r[len(r)-1]
 }
 
-func (q *prepared) sites() int { return q.generator.Cells() * q.config.Spec.Sites }
+func (q *prepared) sites() int { return q.config.Spec.SiteCount() }
 
 func (q *prepared) cost() sharing.Cost {
 	t := &q.config.Trajectory
