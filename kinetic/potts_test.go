@@ -4,6 +4,8 @@ import (
 	"math"
 	"testing"
 
+	"gonum.org/v1/gonum/mat"
+
 	"sojourn/kinetic/lattice"
 	"sojourn/kinetic/pauli"
 )
@@ -87,5 +89,61 @@ func TestPottsCriticalEnergy(t *testing.T) {
 	want := -(1 + 1/math.Sqrt(3))
 	if got := mean / (l * l); math.Abs(got-want) > 0.04*math.Abs(want)+4*se/(l*l) {
 		t.Errorf("energy per site %.4f(%.4f), want about %.4f", got, se/(l*l), want)
+	}
+}
+
+// torusEnergy returns the mean energy of spins with bonds -shape[s - s'] on a
+// torus by its transfer matrix between rows (textbook): Z = tr T^length.
+func torusEnergy(shape []float64, width, length int, beta float64) float64 {
+	q, rows := len(shape), 1
+	for range width {
+		rows *= q
+	}
+	spin := func(row, x int) int {
+		for range x {
+			row /= q
+		}
+		return row % q
+	}
+	lnZ := func(b float64) float64 {
+		t := mat.NewDense(rows, rows, nil)
+		for i := range rows {
+			for j := range rows {
+				bonds := 0.0
+				for x := range width {
+					bonds += shape[(spin(i, x)-spin(i, (x+1)%width)+q)%q] + shape[(spin(i, x)-spin(j, x)+q)%q]
+				}
+				t.Set(i, j, math.Exp(b*bonds))
+			}
+		}
+		var power mat.Dense
+		power.Pow(t, length)
+		return math.Log(mat.Trace(&power))
+	}
+	const h = 1e-4
+	return -(lnZ(beta+h) - lnZ(beta-h)) / (2 * h)
+}
+
+// Tori that enumeration of states does not reach, against their transfer
+// matrices: Potts moves to any colour, clock moves to the next.
+func TestTorusOfLevels(t *testing.T) {
+	for _, c := range []struct {
+		q             int
+		clock         bool
+		width, length int
+		beta          float64
+	}{{3, false, 4, 5, 1.0}, {8, false, 2, 4, 1.3}, {5, true, 3, 4, 0.9}, {6, true, 2, 5, 0.7}} {
+		s := pottsSpec(t, c.q, c.beta, c.width, c.length)
+		if c.clock {
+			for i := range s.Families {
+				s.Families[i].Shape = ClockShape(c.q)
+			}
+			s.Bath = heatBath("X")[0].Powers(nil, c.q)
+		}
+		want := torusEnergy(s.Families[0].Shape, c.width, c.length, c.beta)
+		mean, se := meanEnergy(t, s, StartRandom, 100, 1, 40, 1500)
+		if math.Abs(mean-want) > 4*se || se > 0.01*math.Abs(want) {
+			t.Errorf("q = %d, %d x %d, clock %v: energy %.4f(%.4f), want %.4f", c.q, c.width, c.length, c.clock, mean, se, want)
+		}
 	}
 }
