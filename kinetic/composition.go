@@ -23,7 +23,8 @@ type composition struct {
 	rate   *seatRates
 	tags   []uint64 // by seat: its position in the arena, its octave and its pattern
 	octave octaves
-	heat   int64 // the energy, in units of Couplings.Unit
+	heat   int64  // the energy, in units of Couplings.Unit
+	seen   uint64 // of what was read ahead
 }
 
 // A tag holds the position from bit tagAt, the octave from bit tagOctave and the
@@ -179,7 +180,16 @@ func (e *composition) Advance(t float64) {
 		panic("kinetic: Advance to an earlier time")
 	}
 	for e.next <= t {
-		over := e.attempt(e.redraw())
+		var tk token
+		if e.hot.far == nil {
+			tk = e.redraw()
+		} else {
+			var filled bool
+			if tk, filled = e.take(); filled {
+				e.lookAhead()
+			}
+		}
+		over := e.attempt(tk)
 		e.left--
 		at := e.next
 		if over || e.left == 0 {
@@ -188,6 +198,23 @@ func (e *composition) Advance(t float64) {
 		e.next = at + e.src.exponential()*e.scale
 	}
 	e.now = t
+}
+
+// lookAhead reads what the queue's jumps will read, so that their waits for
+// memory overlap. It changes nothing.
+func (e *composition) lookAhead() {
+	var seats [window]uint32
+	for i := range e.queue {
+		seats[i] = e.arena[e.queue[i].at]
+	}
+	for _, a := range seats {
+		e.seen ^= e.tags[a] ^ uint64(e.rate.j[int(a)*e.rate.slots])
+		for _, d := range e.hot.far {
+			if b := uint32(int32(a) + d); int(b) < len(e.tags) {
+				e.seen ^= e.tags[b] ^ uint64(e.rate.j[int(b)*e.rate.slots])
+			}
+		}
+	}
 }
 
 // attempt executes the jump of a token, unless it is a null event; it returns
