@@ -90,3 +90,11 @@ func withError(value, err float64) string {
 	}
 	return fmt.Sprintf("%.*f(%.0f)", -place, value, err/unit)
 }
+
+// String gives the value with its error, or the reason.
+func (e Estimate) String() string {
+	if !e.OK {
+		return "missing: " + e.Reason
+	}
+	return fmt.Sprintf("%.5g +- %.2g [%.5g, %.5g]", e.Value, e.Err, e.Low, e.High)
+}

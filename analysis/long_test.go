@@ -143,7 +143,7 @@ func (tb *table) report(t *testing.T) {
 	}
 	t.Logf("bound above the truth in %.2f %% of %d, interval covers %.2f %% of %d, %d of %d cells outside",
 		100*float64(tb.above)/float64(tb.bounds), tb.bounds, 100*float64(tb.cover)/float64(max(1, tb.intervals)), tb.intervals, tb.outside, tb.cells)
-	if tb.outside*50 > 2*tb.cells {
+	if tb.outside > max(1, tb.cells*2/100) { // 2 %, of which one cell is more in a small table
 		t.Errorf("%d of %d cells outside", tb.outside, tb.cells)
 	}
 	for _, f := range tb.failures {
@@ -170,13 +170,13 @@ var (
 
 func TestLongCoveragePure(t *testing.T) { coverageTable(t, longSpans, longUnits, &pureOU, &pureTS) }
 
-func TestLongCoverageMixtures(t *testing.T) {
-	coverageTable(t, longSpans, longUnits, &nearMix, &hardC, &hardD, &hardB)
+func TestLongCoverageMixtures1(t *testing.T) {
+	coverageTable(t, longSpans, longUnits, &nearMix, &hardC)
 }
 
-func TestLongCoverageMixtures2(t *testing.T) {
-	coverageTable(t, longSpans, longUnits, &hardE, &hardF)
-}
+func TestLongCoverageMixtures2(t *testing.T) { coverageTable(t, longSpans, longUnits, &hardD, &hardB) }
+
+func TestLongCoverageMixtures3(t *testing.T) { coverageTable(t, longSpans, longUnits, &hardE, &hardF) }
 
 func TestLongCoverageHeldOut(t *testing.T) {
 	coverageTable(t, longSpans, longUnits, &heldOut1, &heldOut2, &heldOut3)

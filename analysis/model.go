@@ -20,66 +20,73 @@ const (
 // Its error is smaller than that of the windowed sum by up to a half, but a slow
 // part of small weight can bias it: it never stands alone.
 func modelAverage(in *integrated, f *fitted) Estimate {
-	u := len(f.without)
 	n := len(f.y)
-	var logs, costs []float64
-	var without [][]float64 // model, block
-	add := func(k, s int) {
-		l, ok := cholesky(minor(f.cov, s, n))
-		if !ok {
-			return
-		}
-		fit, ok := newSumFit(l, f.times[s:], f.y[s:], k, modelLeastC*f.y[0], modelLowRate/f.tau, 3/f.step)
-		if !ok {
-			return
-		}
-		tail, sensitivity := fit.tail(f.times[s])
-		if sensitivity == nil {
-			return
-		}
-		sum := func(c []float64, tail float64) float64 {
-			head := integral(in.times, c, f.at[s])
-			return math.Log((head + tail) / c[0])
-		}
-		value := sum(in.c, tail)
-		row := make([]float64, u)
-		change := make([]float64, n-s)
-		for b := range row {
-			for i := range change {
-				change[i] = f.without[b][s+i] - f.y[s+i]
-			}
-			solveLower(l, change)
-			row[b] = sum(in.without[b], tail+dot(sensitivity, change))
-			if math.IsNaN(row[b]) {
-				return
-			}
-		}
-		if math.IsNaN(value) {
-			return
-		}
-		logs = append(logs, value)
-		costs = append(costs, fit.chi2+modelPrice*float64(k))
-		without = append(without, row)
-	}
+	m := modelFits{in: in, f: f}
 	for s := range n {
 		if n-s >= 3 {
-			add(1, s)
+			m.add(1, s)
 		}
 		if n-s >= 5 && f.times[s] <= f.tau {
-			add(2, s)
+			m.add(2, s)
 		}
 		if s == 0 && n >= 8 {
-			add(3, s)
+			m.add(3, s)
 		}
 	}
-	if len(logs) == 0 {
+	if len(m.logs) == 0 {
 		return missing(codeNoise, "no sum of exponentials fits")
 	}
-	ln, se := weighted(logs, costs, without)
+	ln, se := weighted(m.logs, m.costs, m.without)
 	if se > noisyLog {
 		return missing(codeNoise, "its error would exceed the value")
 	}
-	return logarithmic(ln, se, u)
+	return logarithmic(ln, se, len(f.without))
+}
+
+// modelFits gathers ln tau_int by model.
+type modelFits struct {
+	in          *integrated
+	f           *fitted
+	logs, costs []float64
+	without     [][]float64 // model, block
+}
+
+// add fits k exponentials from lag s on. A fit that fails is left out.
+func (m *modelFits) add(k, s int) {
+	in, f := m.in, m.f
+	l, ok := cholesky(minor(f.cov, s, len(f.y)))
+	if !ok {
+		return
+	}
+	fit, ok := newSumFit(l, f.times[s:], f.y[s:], k, modelLeastC*f.y[0], modelLowRate/f.tau, 3/f.step)
+	if !ok {
+		return
+	}
+	tail, sensitivity := fit.tail(f.times[s])
+	if sensitivity == nil {
+		return
+	}
+	logTau := func(c []float64, tail float64) float64 {
+		return math.Log((integral(in.times, c, f.at[s]) + tail) / c[0])
+	}
+	value := logTau(in.c, tail)
+	row := make([]float64, len(f.without))
+	change := make([]float64, len(f.y)-s)
+	for b, y := range f.without {
+		for i := range change {
+			change[i] = y[s+i] - f.y[s+i]
+		}
+		solveLower(l, change)
+		if row[b] = logTau(in.without[b], tail+dot(sensitivity, change)); math.IsNaN(row[b]) {
+			return
+		}
+	}
+	if math.IsNaN(value) {
+		return
+	}
+	m.logs = append(m.logs, value)
+	m.costs = append(m.costs, fit.chi2+modelPrice*float64(k))
+	m.without = append(m.without, row)
 }
 
 // weighted averages values with weights exp(-cost/2); its error combines the

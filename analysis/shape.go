@@ -60,6 +60,25 @@ var decayForms = []decayForm{
 	},
 }
 
+// fit finds the best parameters in coordinates whitened by l.
+func (form *decayForm) fit(f *fitted, l [][]float64) curveFit {
+	residuals := func(p []float64) []float64 {
+		r := make([]float64, len(f.y))
+		for i, t := range f.times {
+			r[i] = f.y[i] - f.y[0]*form.at(t, p)
+		}
+		solveLower(l, r)
+		return r
+	}
+	best := curveFit{chi2: math.Inf(1)}
+	for _, start := range form.starts(f.tau) {
+		if c := minimise(residuals, start); c.ok && c.chi2 < best.chi2 && (form.valid == nil || form.valid(c.p)) {
+			best = c
+		}
+	}
+	return best
+}
+
 // shape compares forms of the decay on the lags of fits, by the information
 // criterion exp[-(chi^2 + 2 parameters)/2].
 func shape(f *fitted) Shape {
@@ -67,32 +86,18 @@ func shape(f *fitted) Shape {
 	if !ok {
 		return Shape{Reason: "the autocorrelation's errors are degenerate"}
 	}
-	n := len(f.y)
 	s := Shape{}
 	var aic []float64
 	for _, form := range decayForms {
-		k := len(form.parameters)
-		if k >= n {
+		if len(form.parameters) >= len(f.y) {
 			continue
 		}
-		residuals := func(p []float64) []float64 {
-			r := make([]float64, n)
-			for i, t := range f.times {
-				r[i] = f.y[i] - f.y[0]*form.at(t, p)
-			}
-			solveLower(l, r)
-			return r
-		}
-		best := curveFit{chi2: math.Inf(1)}
-		for _, start := range form.starts(f.tau) {
-			if c := minimise(residuals, start); c.ok && c.chi2 < best.chi2 && (form.valid == nil || form.valid(c.p)) {
-				best = c
-			}
-		}
+		best := form.fit(f, l)
 		if !best.ok {
 			continue
 		}
-		m := TrendModel{Name: form.name, Formula: form.formula, Chi2: best.chi2, Dof: n - k}
+		k := len(form.parameters)
+		m := TrendModel{Name: form.name, Formula: form.formula, Chi2: best.chi2, Dof: len(f.y) - k}
 		for i, name := range form.parameters {
 			m.Parameters = append(m.Parameters, Parameter{name, best.p[i], best.err[i]})
 		}

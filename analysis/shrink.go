@@ -17,21 +17,7 @@ func shrunkCovariance(without [][]float64, model [][]float64) (cov [][]float64, 
 		return nil, false
 	}
 	u, n := len(without), len(model)
-	// Rows x_b whose mean outer product is S.
-	x := make([][]float64, u)
-	mean := make([]float64, n)
-	for _, row := range without {
-		for i := range n {
-			mean[i] += row[i] / float64(u)
-		}
-	}
-	for b, row := range without {
-		x[b] = make([]float64, n)
-		for i := range n {
-			x[b][i] = math.Sqrt(float64(u-1)) * (row[i] - mean[i])
-		}
-		solveLower(l, x[b])
-	}
+	x := whitenedScatter(without, l)
 	s := square(n)
 	for _, row := range x {
 		for i := range n {
@@ -40,14 +26,48 @@ func shrunkCovariance(without [][]float64, model [][]float64) (cov [][]float64, 
 			}
 		}
 	}
-	trace := 0.0
+	m := 0.0
 	for i := range n {
-		trace += s[i][i]
+		m += s[i][i] / float64(n)
 	}
-	m := trace / float64(n)
 	if !(m > 0) {
 		return nil, false
 	}
+	rho := intensity(x, s, m)
+	for i := range n {
+		for j := range n {
+			s[i][j] *= 1 - rho
+		}
+		s[i][i] += rho * m
+	}
+	return sandwich(l, s), true
+}
+
+// whitenedScatter returns rows x_b = sqrt(U-1) L^-1 (y_b - mean), whose mean
+// outer product is the delete-one covariance matrix in whitened coordinates.
+func whitenedScatter(without, l [][]float64) [][]float64 {
+	u, n := len(without), len(l)
+	mean := make([]float64, n)
+	for _, row := range without {
+		for i := range n {
+			mean[i] += row[i] / float64(u)
+		}
+	}
+	x := make([][]float64, u)
+	for b, row := range without {
+		x[b] = make([]float64, n)
+		for i := range n {
+			x[b][i] = math.Sqrt(float64(u-1)) * (row[i] - mean[i])
+		}
+		solveLower(l, x[b])
+	}
+	return x
+}
+
+// intensity is Ledoit and Wolf's b^2/d^2: how much of the distance of S, the mean
+// outer product of the rows of x, from m I is noise.
+func intensity(x, s [][]float64, m float64) float64 {
+	n := len(s)
 	spread, noise := 0.0, 0.0
 	for i := range n {
 		for j := range n {
@@ -66,35 +86,37 @@ func shrunkCovariance(without [][]float64, model [][]float64) (cov [][]float64, 
 			}
 		}
 	}
-	noise /= float64(u) * float64(u)
-	rho := 1.0
-	if spread > 0 {
-		rho = math.Min(1, noise/spread)
+	noise /= float64(len(x)) * float64(len(x))
+	if spread == 0 {
+		return 1
 	}
+	return math.Min(1, noise/spread)
+}
+
+// sandwich is L S L' for a lower triangular L.
+func sandwich(l, s [][]float64) [][]float64 {
+	n := len(s)
+	cov, half := square(n), square(n)
 	for i := range n {
 		for j := range n {
-			s[i][j] *= 1 - rho
-		}
-		s[i][i] += rho * m
-	}
-	// Back to the original coordinates: L S L'.
-	cov = square(n)
-	tmp := square(n)
-	for i := range n {
-		for j := range n {
-			for k := range i + 1 {
-				tmp[i][j] += l[i][k] * s[k][j]
-			}
+			half[i][j] = dot(l[i][:i+1], column(s, j)[:i+1])
 		}
 	}
 	for i := range n {
 		for j := range n {
-			for k := range j + 1 {
-				cov[i][j] += tmp[i][k] * l[j][k]
-			}
+			cov[i][j] = dot(half[i][:j+1], l[j][:j+1])
 		}
 	}
-	return cov, true
+	return cov
+}
+
+// column copies a column of a matrix.
+func column(a [][]float64, j int) []float64 {
+	c := make([]float64, len(a))
+	for i := range a {
+		c[i] = a[i][j]
+	}
+	return c
 }
 
 // exponential is one term c exp(-rate t).

@@ -65,23 +65,28 @@ func sizeForms(d int) []trendForm {
 		},
 	}
 	for m := 1; m <= d; m++ {
-		e := float64(m)
-		name, formula := "exponential", "a exp(L/l)"
-		if m > 1 {
-			name, formula = fmt.Sprintf("exponential of L^%d", m), fmt.Sprintf("a exp((L/l)^%d)", m)
-		}
-		forms = append(forms, trendForm{
-			name: name, formula: formula, parameters: []string{"ln a", fmt.Sprintf("l^-%d", m)},
-			ln: func(x float64, p []float64) float64 { return p[0] + p[1]*math.Pow(x, e) },
-			starts: func(x, y []float64) [][]float64 {
-				n := len(x)
-				b := (y[n-1] - y[0]) / (math.Pow(x[n-1], e) - math.Pow(x[0], e))
-				return [][]float64{{y[0] - b*math.Pow(x[0], e), b}}
-			},
-			valid: func(p []float64) bool { return p[1] > 0 },
-		})
+		forms = append(forms, exponentialForm(m))
 	}
 	return forms
+}
+
+// exponentialForm is a exp((L/l)^m).
+func exponentialForm(m int) trendForm {
+	e := float64(m)
+	name, formula := "exponential", "a exp(L/l)"
+	if m > 1 {
+		name, formula = fmt.Sprintf("exponential of L^%d", m), fmt.Sprintf("a exp((L/l)^%d)", m)
+	}
+	return trendForm{
+		name: name, formula: formula, parameters: []string{"ln a", fmt.Sprintf("l^-%d", m)},
+		ln: func(x float64, p []float64) float64 { return p[0] + p[1]*math.Pow(x, e) },
+		starts: func(x, y []float64) [][]float64 {
+			n := len(x)
+			b := (y[n-1] - y[0]) / (math.Pow(x[n-1], e) - math.Pow(x[0], e))
+			return [][]float64{{y[0] - b*math.Pow(x[0], e), b}}
+		},
+		valid: func(p []float64) bool { return p[1] > 0 },
+	}
 }
 
 var constantForm = trendForm{
