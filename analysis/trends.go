@@ -259,7 +259,10 @@ func sizeRegime(t *Trend) string {
 		return fmt.Sprintf("flat %s within errors (a power of L would have exponent %s): consistent with a gap that stays open, as far as this observable sees; it does not show rapid mixing",
 			span, withError(z.Value, z.Err))
 	}
+	growth := kinds["power"] + kinds["exponential"] + kinds["logarithm"] + kinds["saturation"]
 	switch {
+	case growth > decisive && t.Points[len(t.Points)-1].Y < t.Points[0].Y:
+		return "depends on the size but does not grow " + span + ": consistent with a gap that stays open, as far as this observable sees"
 	case kinds["power"] > decisive:
 		return "grows like a power of L " + span
 	case kinds["exponential"] > decisive:

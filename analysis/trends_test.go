@@ -82,6 +82,12 @@ func TestTrendInLength(t *testing.T) {
 	if !strings.Contains(x.Regime, "do not decide") {
 		t.Errorf("noisy: %q", x.Regime)
 	}
+	// A time that falls towards that of a large lattice, like that of the energy
+	// on short rings, does not grow.
+	x = trendOf(t, Compare(study(lengths, []float64{0.4}, func(l, _ float64) float64 { return 1 + 20/(l*l) }, 0.01, 5)), "length")
+	if !strings.Contains(x.Regime, "does not grow") {
+		t.Errorf("falling: %q", x.Regime)
+	}
 	// Something that no form describes is said.
 	x = trendOf(t, Compare(study(lengths, []float64{0.4}, func(l, _ float64) float64 { return 5 + 3*math.Sin(l) }, 0.005, 4)), "length")
 	if len(x.Warnings) != 1 || x.Warnings[0].Code != codePoorFit {
