@@ -18,7 +18,7 @@ func inferObservable(p *Point, o int, opt Options, pools func(int) *pool) (integ
 	}
 	res.Window = in.times[in.win.last]
 	res.Initial = tauInitial(&in)
-	if !obs.Scalar && obs.Kind != "fourier" && anyOpen(p) {
+	if !obs.Scalar && obs.Kind != "fourier" && obs.Kind != "magnetization" && obs.Kind != "terms" && anyOpen(p) {
 		res.Warnings = append(res.Warnings, warn(codeInhomogeneous,
 			"%s averages positions, which are not equivalent on open axes: C(t) includes the differences of their means", obs.Name))
 	}

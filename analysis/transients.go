@@ -27,8 +27,8 @@ func approaches(p *Point, results []ObservableResult, opt Options) []Approach {
 		for _, start := range startGroups(p) {
 			out = append(out, newTransient(p, t, start, results[t.Observable].Mean).approach(opt))
 		}
-		if p.Observables[t.Observable].Kind != "magnetization" {
-			continue
+		if o := &p.Observables[t.Observable]; o.Kind != "magnetization" || !o.Scalar {
+			continue // a complex sum has no order that jumps could preserve
 		}
 		up, down := newTransient(p, t, "up", Estimate{}), newTransient(p, t, "down", Estimate{})
 		if len(up.without) > 0 && len(down.without) > 0 {
