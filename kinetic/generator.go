@@ -1,6 +1,10 @@
 package kinetic
 
-import "sojourn/kinetic/lattice"
+import (
+	"sync"
+
+	"sojourn/kinetic/lattice"
+)
 
 // Generator is a compiled thermal generator: the tables that every engine runs
 // from. It is immutable and shared by all goroutines.
@@ -51,6 +55,9 @@ type Generator struct {
 	// state; nil means 0 everywhere. ReferenceLines does so per line.
 	Reference      [][]uint8
 	ReferenceLines [][]uint8
+
+	printed sync.Once // guards print; see fingerprint
+	print   [32]byte
 }
 
 // Family is a compiled set of terms, one per cell.

@@ -179,8 +179,14 @@ func (e *composition) Restore(src []byte) error {
 	return nil
 }
 
-// fingerprint identifies the tables that a saved state belongs to.
+// fingerprint identifies the tables that a saved state belongs to. It is taken
+// once: every Save needs it.
 func (g *Generator) fingerprint() [32]byte {
+	g.printed.Do(func() { g.print = g.digest() })
+	return g.print
+}
+
+func (g *Generator) digest() [32]byte {
 	h := sha256.New()
 	le := binary.LittleEndian
 	buf := le.AppendUint64(nil, uint64(g.Addresses()))
