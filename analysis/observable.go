@@ -28,11 +28,7 @@ func inferObservable(p *Point, o int, opt Options, pools func(int) *pool) (integ
 	}
 	res.slowest(&in, opt, "", "")
 	if obs.Single {
-		res.Single, res.SingleTest = single(&in)
-		if res.SingleTest.Rejected {
-			res.Warnings = append(res.Warnings, warn(codeSingle,
-				"declared a single exponential, but its decay slows down: t = %.1f, p = %.2g; do not use tau_single", res.SingleTest.Statistic, res.SingleTest.P))
-		}
+		res.declared(&in)
 	}
 	res.FormulaErr = in.formulaError(p)
 	res.Warnings = append(res.Warnings, in.warnings(p, tau)...)

@@ -53,10 +53,11 @@ type ObservableResult struct {
 	// error, but it rests on the model. JSON tau_int_model, tau_int_model_err.
 	Model Estimate
 	// Single is the relaxation time of an observable declared a single
-	// exponential. JSON tau_single, tau_single_err. SingleTest is the test of
-	// the declaration; its P is small when the data contradict it.
-	Single     Estimate
-	SingleTest Test
+	// exponential. JSON tau_single, tau_single_err. SingleTest compares it with
+	// tau_initial, SingleLate with the decay at later times; their P is small
+	// when the data contradict the declaration.
+	Single                 Estimate
+	SingleTest, SingleLate Test
 
 	// Slowest is where the decay levels off within the data (an average over
 	// plateaus of the effective time). It estimates from below and has no

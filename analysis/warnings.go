@@ -28,6 +28,7 @@ const (
 	codeStartsUnknown = "starts_not_compared"
 	codeInhomogeneous = "inhomogeneous"
 	codeSingle        = "not_single"
+	codeSingleLate    = "single_at_late_times"
 	codePlateau       = "plateau_not_reached"
 	codeBarelySeen    = "slow_mode_barely_seen"
 	codeCloseRates    = "close_rates"
@@ -61,6 +62,7 @@ var WarningKinds = []WarningKind{
 	{codeStartsUnknown, "trajectories from different starts could not be compared", "fewer than 2 units of one start", false},
 	{codeInhomogeneous, "an average over positions was taken where positions are not equivalent", "open axes", false},
 	{codeSingle, "declared a single exponential, but the data contradict it", "5 %", false},
+	{codeSingleLate, "declared a single exponential: a part decays faster at first, but not later within errors", "5 %", true},
 	{codePlateau, "no plateau: the slow mode's time still grows at the last usable lag", "fewer than 3 valid points, or a rise above 2 standard errors", false},
 	{codeBarelySeen, "the observables hardly overlap with the slow mode", "largest share below 0.2", false},
 	{codeCloseRates, "two slow rates lie close together and may not be resolved: the time is a lower bound", "within a factor of 2", false},
