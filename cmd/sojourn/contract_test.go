@@ -121,10 +121,20 @@ var contractKeys = map[string][]string{
 		"points[].observables[].warnings", "points[].energy_per_site", "points[].energy_per_site_err",
 		"points[].slow_mode.tau?", "points[].slow_mode.tau_err?", "points[].slow_mode.tau_bound?", "points[].slow_mode.confidence?",
 		"points[].slow_mode.shares?", "points[].decay[].of", "points[].decay[].axis", "points[].decay[].xi",
-		"points[].decay[].xi_err", "points[].decay[].xi_second_moment?", "points[].decay[].xi_second_moment_err?", "trends"},
+		"points[].decay[].xi_err", "points[].decay[].xi_second_moment?", "points[].decay[].xi_second_moment_err?", "trends",
+		"points[].exact.states", "points[].exact.gap", "points[].exact.tau_gap", "points[].exact.tau_bound_holds?", "points[].exact.reason?",
+		"points[].observables[].exact.mean", "points[].observables[].exact.variance", "points[].observables[].exact.tau_initial",
+		"points[].observables[].exact.tau_int", "points[].observables[].exact.tau_slowest", "points[].observables[].exact.mean_deviation",
+		"points[].observables[].exact.variance_deviation", "points[].observables[].exact.tau_initial_deviation",
+		"points[].observables[].exact.tau_int_deviation", "points[].observables[].exact.tau_slowest_bound_holds?"},
 	"exact": {"points[].point", "points[].key", "points[].beta", "points[].length", "points[].size", "points[].states",
-		"points[].closed_classes", "points[].gap", "points[].eigenvalues", "points[].observables[].name", "points[].observables[].mean",
-		"points[].observables[].variance", "points[].observables[].tau_initial", "points[].observables[].tau_int", "points[].observables[].tau_slowest"},
+		"points[].closed_classes", "points[].gap", "points[].tau_gap", "points[].levels[].rate", "points[].levels[].multiplicity",
+		"points[].eigenvalues", "points[].lags", "points[].warnings",
+		"points[].observables[].name", "points[].observables[].mean", "points[].observables[].variance", "points[].observables[].dirichlet",
+		"points[].observables[].tau_initial", "points[].observables[].tau_int", "points[].observables[].tau_slowest",
+		"points[].observables[].tau_slowest_1", "points[].observables[].tau_slowest_20", "points[].observables[].shares",
+		"points[].observables[].covariance_in_time", "points[].covariance[].of", "points[].covariance[].axes", "points[].covariance[].planes",
+		"points[].classes?", "points[].tau_gap_bound?"},
 	"models":  {"models[].name", "models[].parameters", "models[].paper"},
 	"version": {"version", "go"},
 }
@@ -155,7 +165,7 @@ func TestJSONKeys(t *testing.T) {
 	if err := os.WriteFile(filepath.Join(dir, "study.toml"), []byte(contractStudy), 0o666); err != nil {
 		t.Fatal(err)
 	}
-	arguments := map[string][]string{"plan": {"study.toml"}, "run": {"study.toml", "--quiet"}, "fit": {"study"}, "exact": {"study.toml"}}
+	arguments := map[string][]string{"plan": {"study.toml"}, "run": {"study.toml", "--quiet"}, "fit": {"study", "--against-exact"}, "exact": {"study.toml"}}
 	for i := range verbs { // run comes before fit
 		name := verbs[i].name
 		status, stdout, stderr := sojourn(append([]string{name, "--json"}, arguments[name]...)...)

@@ -1,52 +1,38 @@
 package main
 
 import (
+	"context"
 	"errors"
 	"fmt"
 	"io"
-	"math"
-	"strings"
+	"math/big"
+	"os"
+	"runtime/debug"
 
+	"sojourn/cmd/sojourn/internal/sharing"
 	"sojourn/configs"
 	"sojourn/kinetic/exact"
 	"sojourn/observables"
 )
 
-type exactJSON struct {
-	Points []exactPointJSON `json:"points"`
-}
-
-type exactPointJSON struct {
-	Point       int                   `json:"point"`
-	Key         string                `json:"key"`
-	Model       string                `json:"model"`
-	Beta        float64               `json:"beta"`
-	Length      int                   `json:"length"`
-	Size        []int                 `json:"size"`
-	States      int                   `json:"states"`
-	Closed      *int                  `json:"closed_classes,omitempty"`
-	Gap         float64               `json:"gap"`
-	Eigenvalues []float64             `json:"eigenvalues"` // lowest first, as often as they occur
-	Observables []exactObservableJSON `json:"observables"`
-}
-
-type exactObservableJSON struct {
-	Name       string  `json:"name"`
-	Mean       float64 `json:"mean"`
-	Variance   float64 `json:"variance"`
-	TauInitial float64 `json:"tau_initial"`
-	TauInt     float64 `json:"tau_int"`
-	TauSlowest float64 `json:"tau_slowest"`    // of any weight
-	Tau1       float64 `json:"tau_slowest_1"`  // carrying 1 % of the variance with all slower ones
-	Tau20      float64 `json:"tau_slowest_20"` // carrying 20 %
-}
-
-// diagonalised is the largest number of states whose full spectrum is computed:
-// a few seconds.
-const diagonalised = 1 << 10
-
-// shownEigenvalues is how many of the lowest eigenvalues are reported.
-const shownEigenvalues = 16
+// Limits of the verb exact.
+const (
+	// listed is the largest number of states, or of orbits of them, that are
+	// listed: some minutes and 2 GB.
+	listed = 1 << 20
+	// diagonalised is the largest number of states whose full spectrum is
+	// computed: a second.
+	diagonalised = 1 << 9
+	// told is the number of states from which progress is told.
+	told = 1 << 14
+	// solved bounds the terms of an average over positions that are solved one
+	// by one, times the states.
+	solved = 1 << 23
+	// shownLevels is how many of the lowest distinct eigenvalues are reported.
+	shownLevels = 4
+	// shownClasses is how many closed classes are reported one by one.
+	shownClasses = 16
+)
 
 // exact computes without sampling what run and fit estimate.
 func (c *console) exact(o *options, args []string) error {
@@ -59,19 +45,33 @@ func (c *console) exact(o *options, args []string) error {
 	if err != nil {
 		return err
 	}
-	out := exactJSON{}
 	var faults []error
+	routes := make([]*route, len(points))
 	for i, q := range points {
-		p, err := q.exactly()
-		if err != nil {
+		if routes[i], err = q.route(listed); err != nil {
 			faults = append(faults, fmt.Errorf("%s: %w", pointText(q.config), err))
-			continue
 		}
-		p.Point = i
-		out.Points = append(out.Points, p)
 	}
 	if len(faults) > 0 {
 		return &failure{exitBadRequest, errors.Join(faults...)}
+	}
+	out := exactJSON{Points: make([]exactPointJSON, len(points))}
+	err = untilSignal(func(ctx context.Context) error {
+		for i, q := range points {
+			say := func(format string, a ...any) {
+				if !o.quiet && routes[i].long() && ctx.Err() == nil {
+					fmt.Fprintf(c.stderr, "point %d of %d, %s: %s\n", i+1, len(points), pointText(q.config), fmt.Sprintf(format, a...))
+				}
+			}
+			if out.Points[i], err = q.solve(routes[i], say); err != nil {
+				return fmt.Errorf("%s: %w", pointText(q.config), err)
+			}
+			out.Points[i].Point = i
+		}
+		return nil
+	})
+	if err != nil {
+		return err
 	}
 	if o.json {
 		return c.writeJSON(out)
@@ -80,37 +80,93 @@ func (c *console) exact(o *options, args []string) error {
 	return err
 }
 
-// exactly diagonalises the generator of a point.
-func (q *prepared) exactly() (exactPointJSON, error) {
-	size := q.generator.Lattice.Lengths()
-	out := exactPointJSON{Key: q.config.Key, Model: q.config.Model, Beta: q.config.Spec.Beta, Length: size[0], Size: size}
+// untilSignal does work that keeps nothing until a signal comes; the work is
+// then left to end with the process.
+func untilSignal(work func(ctx context.Context) error) error {
+	ctx, stop := sharing.Interrupt(context.Background(), os.Exit)
+	defer stop()
+	done := make(chan error, 1)
+	go func() {
+		defer func() {
+			if p := recover(); p != nil {
+				done <- fmt.Errorf("a defect of sojourn itself, please report it: %v\n%s", p, debug.Stack())
+			}
+		}()
+		done <- work(ctx)
+	}()
+	select {
+	case err := <-done:
+		return err
+	case <-ctx.Done():
+		var stopped *sharing.Interrupted
+		if errors.As(context.Cause(ctx), &stopped) {
+			return &failure{exitInterrupted, fmt.Errorf("stopped by a signal (%v); nothing was kept", stopped.Signal)}
+		}
+		return context.Cause(ctx)
+	}
+}
+
+// route is how the exact values of a point are reached.
+type route struct {
+	system *exact.System
+	total  *big.Int // states that the moves connect
+	limit  int
+	sector bool // by symmetry, observable by observable
+}
+
+func (r *route) long() bool { return r.total.Cmp(big.NewInt(told)) > 0 }
+
+// route finds the way to the exact values of a point, or says why there is none
+// within limit states. It does nothing that takes long.
+func (q *prepared) route(limit int) (*route, error) {
+	if q.sites() > enumerated {
+		return nil, fmt.Errorf("%s are too many to enumerate their states; exact values need at most %d of them: use a smaller lattice", plural(q.sites(), "site"), limit)
+	}
 	system, err := exact.NewSystem(q.generator.Spec)
 	if err != nil {
-		return out, err
+		return nil, err
 	}
-	states, err := system.Explore(diagonalised)
-	if err != nil {
-		return out, err
+	r := &route{system: system, total: system.OrbitSize(), limit: limit}
+	if r.total.Cmp(big.NewInt(int64(limit))) <= 0 {
+		return r, nil
 	}
-	spectrum, err := states.Spectrum()
-	if err != nil {
-		return out, err
+	if system.Frozen() {
+		// Frozen jumps may leave few states.
+		_, err := system.Explore(limit)
+		if err == nil {
+			return r, nil
+		}
+		return nil, tooMany(err)
 	}
-	out.States, out.Gap = states.Len(), spectrum.Gap()
-	out.Closed, _ = q.closedClasses()
-	out.Eigenvalues = spectrum.Rates[:min(len(spectrum.Rates), shownEigenvalues)]
+	r.sector = true
 	for _, o := range q.observables {
 		x, err := exactObservable(system, o)
 		if err != nil {
-			return out, err
+			return nil, err
 		}
-		r := spectrum.Relaxation(x)
-		out.Observables = append(out.Observables, exactObservableJSON{
-			Name: o.Name, Mean: r.Mean, Variance: r.Variance, TauInitial: r.TauInitial(), TauInt: r.TauInt,
-			TauSlowest: r.TauSlowest(0), Tau1: r.TauSlowest(0.01), Tau20: r.TauSlowest(0.2),
-		})
+		if n, err := system.SectorSize(x); err == nil && n.Cmp(big.NewInt(int64(limit))) <= 0 {
+			return r, nil
+		}
 	}
-	return out, nil
+	return nil, tooMany(&exact.TooManyStatesError{Limit: limit, Total: r.total})
+}
+
+// tooMany says what would do instead.
+func tooMany(err error) error {
+	var many *exact.TooManyStatesError
+	if !errors.As(err, &many) {
+		return err
+	}
+	return fmt.Errorf("%w; use a smaller lattice, or `sojourn run` to sample", err)
+}
+
+// exactly computes the exact values of a point.
+func (q *prepared) exactly() (exactPointJSON, error) {
+	r, err := q.route(listed)
+	if err != nil {
+		return exactPointJSON{}, err
+	}
+	return q.solve(r, func(string, ...any) {})
 }
 
 // exactObservable is a recorded observable as a function of enumerated states.
@@ -130,51 +186,4 @@ func exactObservable(s *exact.System, o observables.Observable) (exact.Observabl
 		return s.Line(o.Line)
 	}
 	return exact.Observable{}, fmt.Errorf("no exact values for observables of kind %s", o.Kind)
-}
-
-func exactText(s *configs.Study, points []*prepared, x *exactJSON) string {
-	var b strings.Builder
-	b.WriteString(s.Name)
-	if s.Title != "" {
-		b.WriteString(": " + s.Title)
-	}
-	b.WriteString("\nexact values, in the class of the reference state\n")
-	for i := range x.Points {
-		p := &x.Points[i]
-		head := pointText(points[i].config)
-		tail := fmt.Sprintf("point %d", i)
-		fmt.Fprintf(&b, "\n%s%s%s\n", head, strings.Repeat(" ", max(2, pageWidth-len(head)-len(tail))), tail)
-		line := plural(p.States, "state")
-		if p.Gap > 0 {
-			line += fmt.Sprintf(", gap %s, 1/gap %s", plain(p.Gap), plain(1/p.Gap))
-		}
-		if p.Closed != nil && *p.Closed > 1 {
-			line += fmt.Sprintf(", one of %d closed classes", *p.Closed)
-		}
-		fmt.Fprintf(&b, "  %s\n", line)
-		t := newSheet("observable", "mean", "variance", "tau_initial", "tau_int", "tau_slowest", "of 1 %", "of 20 %")
-		for _, o := range p.Observables {
-			t.add(o.Name, plain(rounded(o.Mean, o.Variance)), plain(o.Variance), timeText(o.TauInitial), timeText(o.TauInt), timeText(o.TauSlowest), timeText(o.Tau1), timeText(o.Tau20))
-		}
-		t.write(&b, "  ")
-	}
-	b.WriteString("\ntau_slowest is the slowest mode of any weight in the observable; beside it, the time beyond which slower\n" +
-		"modes together carry less than that share of its variance. 1/gap is that of the commuting observables.\n")
-	return b.String()
-}
-
-// rounded is a mean, or 0 where it differs from it by rounding errors only.
-func rounded(mean, variance float64) float64 {
-	if math.Abs(mean) < 1e-12*math.Sqrt(variance) {
-		return 0
-	}
-	return mean
-}
-
-// timeText prints a relaxation time, which an observable without variance lacks.
-func timeText(x float64) string {
-	if x == 0 {
-		return "-"
-	}
-	return plain(x)
 }

@@ -31,6 +31,7 @@ type finding struct {
 	jumps        float64
 	seconds      float64 // in trajectories, summed over workers; 0 if unknown
 	result       analysis.Result
+	against      *against // exact values; nil unless asked for
 }
 
 // setting is a parameter and its value, as printed.

@@ -22,6 +22,11 @@ func (c *console) fit(o *options, args []string) error {
 		return err
 	}
 	c.keepFits(d, f)
+	if o.againstExact {
+		if err := c.compareExactly(d, f); err != nil {
+			return err
+		}
+	}
 	if o.json {
 		return c.writeJSON(jsonOfFindings(f))
 	}

@@ -35,6 +35,7 @@ type fitPointJSON struct {
 	EnergyPerSite *float64          `json:"energy_per_site,omitempty"`
 	EnergyErr     *float64          `json:"energy_per_site_err,omitempty"`
 	SlowMode      slowModeJSON      `json:"slow_mode"`
+	Exact         *againstPointJSON `json:"exact,omitempty"`
 	Decay         []decayJSON       `json:"decay"`
 	Approach      []approachJSON    `json:"approach,omitempty"`
 	Mixing        *mixingJSON       `json:"mixing,omitempty"`
@@ -75,6 +76,7 @@ type observableJSON struct {
 	WeightFloor     *float64      `json:"weight_floor,omitempty"`
 	Window          *float64      `json:"window,omitempty"`
 	Shape           string        `json:"shape,omitempty"`
+	Exact           *againstJSON  `json:"exact,omitempty"`
 	Warnings        []warningJSON `json:"warnings"`
 }
 
@@ -215,9 +217,14 @@ func jsonOfPoint(p *finding) fitPointJSON {
 			out.Scan[s.name] = s.value
 		}
 	}
+	out.Exact = jsonOfAgainstPoint(p)
 	out.EnergyPerSite, out.EnergyErr = valueAndError(r.EnergyPerSite)
 	for i := range r.Observables {
-		out.Observables = append(out.Observables, jsonOfObservable(&r.Observables[i]))
+		j := jsonOfObservable(&r.Observables[i])
+		if x := p.against.observable(r.Observables[i].Name); x != nil {
+			j.Exact = jsonOfAgainst(&r.Observables[i], x)
+		}
+		out.Observables = append(out.Observables, j)
 	}
 	for i := range r.Decay {
 		d := &r.Decay[i]

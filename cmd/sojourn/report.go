@@ -39,6 +39,7 @@ func writeReport(w io.Writer, f *findings) error {
 		writePoint(&b, &f.points[i], said)
 	}
 	writeSamples(&b, f)
+	writeAgainst(&b, f)
 	writeTrends(&b, f)
 	writeOverview(&b, f)
 	writeWarnings(&b, f, said)

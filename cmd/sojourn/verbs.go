@@ -36,6 +36,7 @@ type options struct {
 	task, tasks, workers int
 	quiet, audit         bool
 	partial              bool
+	againstExact         bool
 	json                 bool
 	changed              func(name string) bool
 }
@@ -61,6 +62,8 @@ var flags = []option{
 		func(o *options) any { return &o.audit }},
 	{"partial", "", "", "use the parts that are there although others are missing",
 		func(o *options) any { return &o.partial }},
+	{"against-exact", "", "", "beside each estimate the exact value, and the deviation in standard errors, of points with at most 2^14 states",
+		func(o *options) any { return &o.againstExact }},
 	{"quiet", "", "", "no progress",
 		func(o *options) any { return &o.quiet }},
 	{"json", "", "", "one JSON object on standard output instead of tables",
@@ -101,20 +104,25 @@ the same rows, bit for bit, however many processes and workers share it.`,
 			do: (*console).run,
 		},
 		{
-			name: "fit", arguments: []argument{{name: "DIR"}}, flags: []string{"partial", "json"},
+			name: "fit", arguments: []argument{{name: "DIR"}}, flags: []string{"partial", "against-exact", "json"},
 			summary: "relaxation times, slow mode, spatial decay, trends over the scan",
 			about: `Fits what stands in a results directory; needs nothing but the directory. The fits are
 written to DIR/fits as Parquet tables, and printed. Where the directory cannot be written they
 are printed all the same, with a warning.`,
-			examples: []example{{"sojourn fit cold-buffer", "the same print as at the end of the run"}},
-			do:       (*console).fit,
+			examples: []example{
+				{"sojourn fit cold-buffer", "the same print as at the end of the run"},
+				{"sojourn fit small --against-exact", "with exact values beside it, of a 3 x 3 lattice, say"},
+			},
+			do: (*console).fit,
 		},
 		{
-			name: "exact", arguments: []argument{study}, flags: []string{"json"},
+			name: "exact", arguments: []argument{study}, flags: []string{"quiet", "json"},
 			summary: "the same quantities without sampling, where the lattice is small",
-			about: `Enumerates the states that the jumps reach from the reference state, diagonalises the
-generator on them, and prints the gap and what run and fit estimate of each observable: a check
-on both. Lattices with more than 1024 such states are refused.`,
+			about: `Enumerates the states that the jumps reach from the reference state and prints, without
+sampling, the lowest eigenvalues of the generator on them and what run and fit estimate of each
+observable: a check on both. Up to 2^20 states are listed, in some minutes. Beyond, translations
+and spin flips may reduce them to 2^20 orbits (5 x 5 Ising spins): each observable is then exact,
+but the gap is only bounded. Larger lattices are refused before anything is computed.`,
 			examples: []example{{"sojourn exact small.toml", "gap and relaxation times of a 3 x 3 lattice, say"}},
 			do:       (*console).exact,
 		},
