@@ -36,6 +36,8 @@ type exactPointJSON struct {
 	Observables []exactObservableJSON `json:"observables"`
 	Covariance  []exactCovarianceJSON `json:"covariance,omitempty"`
 	Warnings    []warningJSON         `json:"warnings"`
+
+	rounding float64 // error of the rates
 }
 
 type exactClassJSON struct {

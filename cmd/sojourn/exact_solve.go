@@ -4,11 +4,15 @@ import (
 	"fmt"
 	"math"
 	"math/big"
+	"slices"
 
 	"sojourn/kinetic/exact"
 	"sojourn/kinetic/lattice"
 	"sojourn/observables"
 )
+
+// roundOff is the error of a computed rate against the largest exit rate.
+const roundOff = 1e-14
 
 // solve computes the exact values of a point; say tells of progress.
 func (q *prepared) solve(r *route, say func(format string, a ...any)) (exactPointJSON, error) {
@@ -30,9 +34,13 @@ func (q *prepared) solve(r *route, say func(format string, a ...any)) (exactPoin
 		return out, tooMany(err)
 	}
 	out.States = uint64(states.Len())
+	out.rounding = roundOff * slices.Max(states.Matrix().Exit)
 	relax, err := out.spectrum(states, say)
 	if err != nil {
 		return out, err
+	}
+	if out.Gap > 0 && out.rounding > 1e-4*out.Gap {
+		out.warn("rounding", "rates carry rounding errors of about %s, which is %s of the gap: slow times are no better than that", plain(out.rounding), shareText(out.rounding/out.Gap))
 	}
 	for _, o := range q.observables {
 		x, err := exactObservable(r.system, o)
@@ -108,7 +116,7 @@ func (p *exactPointJSON) add(name string, r exact.Relaxation) {
 	for _, l := range p.Levels {
 		share := 0.0
 		for _, m := range r.Modes {
-			if math.Abs(m.Rate-l.Rate) <= 1e-7*l.Rate && r.Variance > 0 {
+			if math.Abs(m.Rate-l.Rate) <= 1e-7*l.Rate+p.rounding && r.Variance > 0 {
 				share += m.Weight / r.Variance
 			}
 		}

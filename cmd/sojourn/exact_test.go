@@ -198,3 +198,16 @@ func TestExactBySectors(t *testing.T) {
 		t.Errorf("%d observables, warnings %v", len(x.Observables), x.Warnings)
 	}
 }
+
+// In the cold the gap lies many digits below the fastest rate: the slowest mode
+// is still the magnetization's, and the print says how far to trust it.
+func TestExactCold(t *testing.T) {
+	p := exactValues(t, strings.Replace(fmt.Sprintf(exactTorus, 3, 4), "0.44068679350977147", "1.6", 1)).Points[0]
+	m := p.Observables[1]
+	if m.Name != "magnetization" || len(m.Shares) == 0 || math.Abs(m.Shares[0]-1) > 1e-3 || math.Abs(m.TauInt*p.Gap-1) > 1e-2 {
+		t.Errorf("gap %v, %+v", p.Gap, m)
+	}
+	if len(p.Warnings) != 1 || p.Warnings[0].Code != "rounding" {
+		t.Errorf("warnings %v", p.Warnings)
+	}
+}
