@@ -69,3 +69,24 @@ func planeCurve(p *Point, of string, plane *Plane) SpatialCurve {
 	}
 	return c
 }
+
+// pointCurve is the covariance of single terms by displacement, for pictures:
+// it has a power prefactor and is not fitted.
+func pointCurve(spatial *Spatial) SpatialCurve {
+	var s planeSums
+	c := SpatialCurve{Of: spatial.Of, Axis: -1}
+	for i := range spatial.Points {
+		d := &spatial.Points[i]
+		c.Displacements = append(c.Displacements, d.D)
+		for u, v := range d.Sums {
+			if i == 0 {
+				s.units = append(s.units, nil)
+			}
+			s.units[u] = append(s.units[u], v)
+		}
+	}
+	s.pool()
+	c.K, c.Err = s.k, s.errors()
+	c.Displacements = c.Displacements[:len(c.K)]
+	return c
+}

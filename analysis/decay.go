@@ -28,8 +28,14 @@ type planeSums struct {
 // with the grand mean m and its variance between units.
 func newPlaneSums(p *Point, plane *Plane) planeSums {
 	s := planeSums{units: plane.Sums, length: p.Size[plane.Axis], open: p.Open[plane.Axis]}
+	s.pool()
+	return s
+}
+
+// pool sums over units and forms the covariance with and without each.
+func (s *planeSums) pool() {
 	if len(s.units) == 0 {
-		return s
+		return
 	}
 	s.total = make([]Lagged, len(s.units[0]))
 	for _, unit := range s.units {
@@ -41,7 +47,6 @@ func newPlaneSums(p *Point, plane *Plane) planeSums {
 	for u := range s.units {
 		s.without = append(s.without, s.covariance(u))
 	}
-	return s
 }
 
 func (s *planeSums) covariance(out int) []float64 {

@@ -194,3 +194,22 @@ func TestPlaneMeanCorrection(t *testing.T) {
 		}
 	}
 }
+
+// The picture of single terms: covariance and error at each displacement.
+func TestPointCurve(t *testing.T) {
+	spatial := Spatial{Of: "spin"}
+	for d, k := range []float64{1, 0.5, 0.2} {
+		point := Displacement{D: []int{d, 0}}
+		for u := range 4 {
+			point.Sums = append(point.Sums, Lagged{100, 300, 300, 100 * (9 + k*(1+0.1*float64(u)))})
+		}
+		spatial.Points = append(spatial.Points, point)
+	}
+	c := pointCurve(&spatial)
+	for i, k := range []float64{1, 0.5, 0.2} {
+		// Values k (1, 1.1, 1.2, 1.3): mean 1.15 k, standard error 0.0645 k.
+		if math.Abs(c.K[i]-1.15*k) > 1e-9 || math.Abs(c.Err[i]/k-0.1*math.Sqrt(5.0/3/4)) > 1e-9 || c.Displacements[i][0] != i {
+			t.Errorf("displacement %v: %g(%g)", c.Displacements[i], c.K[i], c.Err[i])
+		}
+	}
+}

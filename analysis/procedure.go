@@ -46,6 +46,9 @@ func Infer(p Point, opt Options) Result {
 			r.Decay = append(r.Decay, decay(&p, p.Spatial[i].Of, plane))
 			r.Spatial = append(r.Spatial, planeCurve(&p, p.Spatial[i].Of, plane))
 		}
+		if len(p.Spatial[i].Points) > 0 {
+			r.Spatial = append(r.Spatial, pointCurve(&p.Spatial[i]))
+		}
 	}
 	r.Approach = approaches(&p, r.Observables, opt)
 	r.Mixing = mixing(&p, &r)
