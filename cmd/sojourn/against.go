@@ -111,7 +111,10 @@ type comparedValue struct {
 func comparedValues(o *analysis.ObservableResult, x *exactObservableJSON) []comparedValue {
 	list := []comparedValue{{"mean", o.Mean, x.Mean}, {"variance", o.Variance, x.Variance}}
 	if x.Variance > 0 {
-		list = append(list, comparedValue{"tau_initial", o.Initial, x.TauInitial}, comparedValue{"tau_int", o.Integrated, x.TauInt})
+		list = append(list, comparedValue{"tau_initial", o.Initial, x.TauInitial})
+	}
+	if x.TauInt > 0 {
+		list = append(list, comparedValue{"tau_int", o.Integrated, x.TauInt})
 	}
 	return list
 }

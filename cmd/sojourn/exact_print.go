@@ -56,12 +56,12 @@ type exactObservableJSON struct {
 	Mean       float64   `json:"mean"`
 	Variance   float64   `json:"variance"`
 	Dirichlet  float64   `json:"dirichlet"`
-	TauInitial float64   `json:"tau_initial"`
-	TauInt     float64   `json:"tau_int"`
-	TauSlowest float64   `json:"tau_slowest"`      // of any weight
-	Tau1       float64   `json:"tau_slowest_1"`    // carrying 1 % of the variance with all slower ones
-	Tau20      float64   `json:"tau_slowest_20"`   // carrying 20 %
-	Shares     []float64 `json:"shares,omitempty"` // of the variance, in each of levels
+	TauInitial float64   `json:"tau_initial,omitempty"`
+	TauInt     float64   `json:"tau_int,omitempty"`
+	TauSlowest float64   `json:"tau_slowest,omitempty"`    // of any weight
+	Tau1       float64   `json:"tau_slowest_1,omitempty"`  // carrying 1 % of the variance with all slower ones
+	Tau20      float64   `json:"tau_slowest_20,omitempty"` // carrying 20 %
+	Shares     []float64 `json:"shares,omitempty"`         // of the variance, in each of levels
 	Covariance []float64 `json:"covariance_in_time"`
 }
 

@@ -89,6 +89,10 @@ func (p *exactPointJSON) spectrum(states *exact.States, say func(format string, 
 // levels fills in distinct eigenvalues above 0, and the gap.
 func (p *exactPointJSON) levels(levels []exact.Level) {
 	p.Levels, p.Eigenvalues = []exactLevelJSON{}, []float64{0}
+	if len(levels) > 0 && levels[0].Rate < 10*p.rounding {
+		p.warn("rounding", "the lowest eigenvalues are lost in rounding: the gap is below %s", plain(10*p.rounding))
+		return
+	}
 	for _, l := range levels {
 		p.Levels = append(p.Levels, exactLevelJSON{l.Rate, l.Multiplicity, l.AtLeast})
 		for range l.Multiplicity {
@@ -109,6 +113,10 @@ func (p *exactPointJSON) add(name string, r exact.Relaxation) {
 	j := exactObservableJSON{
 		Name: name, Mean: rounded(r.Mean, r.Variance), Variance: r.Variance, Dirichlet: r.Dirichlet, TauInitial: r.TauInitial(), TauInt: r.TauInt,
 		TauSlowest: r.TauSlowest(0), Tau1: r.TauSlowest(0.01), Tau20: r.TauSlowest(0.2),
+	}
+	if j.TauSlowest*10*p.rounding > 1 {
+		j.TauInt, j.TauSlowest, j.Tau1, j.Tau20 = 0, 0, 0, 0
+		p.warn("rounding", "%s: a relaxation time beyond %s is lost in rounding", name, plain(0.1/p.rounding))
 	}
 	for _, t := range p.Lags {
 		j.Covariance = append(j.Covariance, r.Covariance(t))

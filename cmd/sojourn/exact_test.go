@@ -210,4 +210,9 @@ func TestExactCold(t *testing.T) {
 	if len(p.Warnings) != 1 || p.Warnings[0].Code != "rounding" {
 		t.Errorf("warnings %v", p.Warnings)
 	}
+	p = exactValues(t, strings.Replace(fmt.Sprintf(exactTorus, 3, 4), "0.44068679350977147", "3.0", 1)).Points[0]
+	m = p.Observables[1]
+	if p.Gap != 0 || len(p.Levels) != 0 || m.TauInt != 0 || m.TauInitial < 1e6 || len(p.Warnings) != 2 {
+		t.Errorf("a gap lost in rounding: %v, %v, %+v, %v", p.Gap, p.Levels, m, p.Warnings)
+	}
 }
