@@ -90,17 +90,20 @@ func readScript(t *testing.T, path string) *script {
 var (
 	// holds times, and so wraps as it likes
 	advice   = regexp.MustCompile(`(?m)^  to do       .*\n(              .*\n)*`)
+	timeHead = regexp.MustCompile(` +time {2,}`)
 	padding  = regexp.MustCompile(` +<(time|speed)>`)
 	aTime    = regexp.MustCompile(`\b\d+(\.\d+)?(e-?\d+)? (s|min|h|days)\b`)
 	memories = regexp.MustCompile(`there are \d+(\.\d+)? [KMGTPE]iB`)
 	aSpeed   = regexp.MustCompile(`\b\d+(\.\d+)?(e\d+)?/s\b`)
 )
 
+
 func scrub(text, dir string) string {
 	text = strings.ReplaceAll(text, dir, "<dir>")
 	text = memories.ReplaceAllString(text, "there are <memory>")
 	text = advice.ReplaceAllString(text, "  to do       <advice>\n")
 	text = aSpeed.ReplaceAllString(aTime.ReplaceAllString(text, "<time>"), "<speed>")
+	text = timeHead.ReplaceAllString(text, " time  ")
 	return padding.ReplaceAllString(text, " <$1>") // columns of times have no fixed width
 }
 
