@@ -97,7 +97,6 @@ var (
 	aSpeed   = regexp.MustCompile(`\b\d+(\.\d+)?(e\d+)?/s\b`)
 )
 
-
 func scrub(text, dir string) string {
 	text = strings.ReplaceAll(text, dir, "<dir>")
 	text = memories.ReplaceAllString(text, "there are <memory>")
