@@ -62,6 +62,25 @@ func (p *Point) Draw() kinetic.Spec {
 	return s
 }
 
+// DrawnBytes estimates the memory that the random couplings of the point take as
+// long as it is compiled.
+func (p *Point) DrawnBytes() float64 {
+	const sign, coupling = 2, 12
+	cells := 1.0
+	for _, n := range p.Spec.Lattice.Lengths() {
+		cells *= float64(n)
+	}
+	sum := 0.0
+	for _, d := range p.Disorder {
+		each := sign
+		if d.Kind == gaussian {
+			each = coupling
+		}
+		sum += float64(each*len(d.Families)) * cells
+	}
+	return sum
+}
+
 // operatorKeys identifies the families of a spec by their operators, and those
 // with the same operator by their order.
 func operatorKeys(s kinetic.Spec) [][]byte {

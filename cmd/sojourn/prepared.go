@@ -40,7 +40,7 @@ func prepare(p *configs.Point, available int64) (*prepared, error) {
 		sites *= float64(n)
 	}
 	sites *= float64(max(p.Spec.Sites, 1))
-	if need := sites * siteFloor; available > 0 && need > float64(available) {
+	if need := sites*siteFloor + p.DrawnBytes(); available > 0 && need > float64(available) {
 		return nil, tooLarge(p, need, available)
 	}
 	g, err := p.Generator()
@@ -76,6 +76,14 @@ func prepare(p *configs.Point, available int64) (*prepared, error) {
 
 // prepareAll compiles every point of a study and reports all that fail.
 func prepareAll(s *configs.Study, available int64) ([]*prepared, error) {
+	drawn := 0.0
+	for i := range s.Points {
+		drawn += s.Points[i].DrawnBytes()
+	}
+	if available > 0 && drawn > float64(available) {
+		return nil, badRequest("%s: the random couplings of %s would need %s of memory together, and there are %s; use fewer samples, a smaller lattice, or several studies",
+			s.Name, plural(len(s.Points), "point"), bytesOf(int64(math.Min(drawn, math.MaxInt64/2))), bytesOf(available))
+	}
 	points := make([]*prepared, len(s.Points))
 	faults := make([]error, len(s.Points))
 	inTurns(len(points), runtime.GOMAXPROCS(0), func(i int) {

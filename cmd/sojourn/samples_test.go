@@ -177,3 +177,18 @@ engine = "` + engine + `"
 		t.Errorf("mean over samples %v", *s.Mean)
 	}
 }
+
+// Random couplings of all points are held at once: where they do not fit the
+// memory they are not even drawn.
+func TestCouplingsThatDoNotFit(t *testing.T) {
+	study, err := configs.Decode("chain", "", []byte(randomChain))
+	if err != nil {
+		t.Fatal(err)
+	}
+	if _, err := prepareAll(study, 500); err == nil || !strings.Contains(err.Error(), "the random couplings of 6 points would need 576 B") {
+		t.Errorf("with 500 bytes: %v", err)
+	}
+	if _, err := prepareAll(study, 1<<30); err != nil {
+		t.Errorf("with 1 GiB: %v", err)
+	}
+}
