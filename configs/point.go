@@ -243,10 +243,7 @@ func (r *reading) refused(err error, h *hamiltonian, axes int) {
 	v := r.section("hamiltonian")
 	var commute *kinetic.NotCommuting
 	var missing *bath.MissingEnergyError
-	var terms *kinetic.TooManyTerms
 	switch {
-	case errors.As(err, &terms) && h.Levels > 2:
-		v.fault("levels", "%s", err)
 	case errors.As(err, &commute):
 		key := "family"
 		if commute.Tracked {

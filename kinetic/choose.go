@@ -210,11 +210,17 @@ func tileEstimate(g *Generator, activity float64) Estimate {
 // compositionEstimate is the only one for couplings that vary.
 func compositionEstimate(g *Generator, activity float64) Estimate {
 	e := Estimate{Engine: CompositionEngine, Lanes: 1, Effect: 1}
-	if g.Couplings == nil {
+	if g.Couplings == nil && g.Wide == nil {
 		e.Err = errors.New("the composition engine is for couplings that vary in size")
 		return e
 	}
 	touches := g.meanTouches()
+	if g.Wide != nil {
+		e.Bytes = wideBytes(g)
+		moves := float64(len(g.Moves)) / float64(max(1, len(g.Places)))
+		e.PerTime = (40 + touches*(20+15*moves)) * activity * float64(g.Addresses())
+		return e
+	}
 	e.Bytes = int64(g.Addresses()) * int64(21+4*g.Bits)
 	e.PerTime = (40 + 20*touches + 70*touches*outOfCache(e.Bytes)) * activity * float64(g.Addresses())
 	return e
@@ -224,6 +230,9 @@ func compositionEstimate(g *Generator, activity float64) Estimate {
 func (g *Generator) oneByOne() error {
 	if g.Couplings != nil {
 		return errVaryingCouplings
+	}
+	if g.Wide != nil {
+		return errWidePatterns
 	}
 	if g.Addresses() > math.MaxInt32 {
 		return fmt.Errorf("the lattice has %d sites; at most %d are possible", g.Addresses(), math.MaxInt32)

@@ -27,6 +27,9 @@ func NewClasses(g *Generator, seed [32]byte, unit int, start Start) (Engine, err
 	if g.Couplings != nil {
 		return nil, errVaryingCouplings
 	}
+	if g.Wide != nil {
+		return nil, errWidePatterns
+	}
 	if g.Addresses() > math.MaxInt32 {
 		return nil, fmt.Errorf("the lattice has %d sites; the class engine runs at most %d", g.Addresses(), math.MaxInt32)
 	}

@@ -1,8 +1,8 @@
 package kinetic
 
 import (
+	"errors"
 	"fmt"
-	"math/big"
 	"math/bits"
 	"sort"
 
@@ -10,8 +10,12 @@ import (
 	"sojourn/kinetic/lattice"
 )
 
-// MaxBits is the widest pattern, in bits, that the tables hold.
-const MaxBits = 16
+// MaxBits is the widest pattern, in bits, that the tables hold, MaxSlots the most
+// terms that any pattern shows.
+const (
+	MaxBits  = 16
+	MaxSlots = 16
+)
 
 // TooManyRates says that a generator has more distinct rates than there are
 // classes.
@@ -23,16 +27,12 @@ func (e *TooManyRates) Error() string {
 
 // TooManyTerms says that a site touches more terms than a pattern holds.
 type TooManyTerms struct {
-	Site, Terms, Bits int
+	Site, Terms int
 }
 
 func (e *TooManyTerms) Error() string {
-	most := "too many for 2 levels"
-	if e.Terms <= MaxBits {
-		most = fmt.Sprintf("with %d terms, up to %d levels", e.Terms, 1<<(MaxBits/e.Terms))
-	}
-	return fmt.Sprintf("the bath operators on site %d of the cell change %d terms and tracked operators, whose levels take %d bits; at most %d are supported: %s",
-		e.Site, e.Terms, e.Bits, MaxBits, most)
+	return fmt.Sprintf("the bath operators on site %d of the cell change %d terms and tracked operators; at most %d are supported",
+		e.Site, e.Terms, MaxSlots)
 }
 
 type compiler struct {
@@ -49,14 +49,32 @@ type compiler struct {
 	hitList  []Hit
 
 	family, from, to []int // scratch of compileMove
+
+	wide       bool                // without tables by pattern
+	wideEnergy [][]int64           // by family and level
+	wideMet    []map[int64]float64 // by bath operator: rates at the energies met
 }
 
 // Compile turns a Spec into tables. Families without coupling are dropped. It
 // fails if two terms, or a term and a tracked operator, do not commute as
 // folded and cut (*NotCommuting), if the bath breaks detailed balance, or if
-// the tables cannot hold the model (*TooManyTerms, *TooManyRates).
+// the tables cannot hold the model (*TooManyTerms, *TooManyRates). With more than
+// two levels models beyond the tables are computed (Generator.Wide).
 func Compile(spec Spec) (*Generator, error) {
+	g, err := compile(spec, false)
+	var rates *TooManyRates
+	if spec.Levels > 2 && (errors.Is(err, errWide) || errors.As(err, &rates)) {
+		return compile(spec, true)
+	}
+	return g, err
+}
+
+// errWide says that patterns are too wide for tables.
+var errWide = errors.New("patterns are too wide for tables")
+
+func compile(spec Spec, wide bool) (*Generator, error) {
 	k := &compiler{
+		wide:   wide,
 		spec:   spec,
 		seen:   map[seatAt]*neighbourhood{},
 		shapes: map[string]int{},
@@ -94,129 +112,6 @@ func Compile(spec Spec) (*Generator, error) {
 		}
 	}
 	return k.g, nil
-}
-
-// collect lists energy families, local tracked families and lines.
-func (k *compiler) collect() error {
-	for _, f := range k.spec.Families {
-		if f.Operator.Extended() {
-			return fmt.Errorf("family %q runs along an axis; only tracked operators can", f.Name)
-		}
-		energy, err := levelEnergies(f, k.spec.Levels)
-		if err != nil {
-			return err
-		}
-		if err := checkDisorder(f, k.spec); err != nil {
-			return err
-		}
-		if err := f.Cut.check(k.spec.Lattice.Axes); err != nil {
-			return fmt.Errorf("family %q: %w", f.Name, err)
-		}
-		k.add(family{
-			name: f.Name, group: f.Group, factors: f.Operator.Factors(), keep: f.Cut.rules(),
-			absent: k.spec.Absent, energy: energy,
-		})
-	}
-	for _, t := range k.spec.Tracked {
-		if t.Operator.Extended() {
-			k.addLine(t)
-			continue
-		}
-		k.add(family{name: t.Name, factors: t.Operator.Factors(), absent: k.spec.Absent, order: t.Order})
-	}
-	return nil
-}
-
-func (k *compiler) add(f family) {
-	k.families = append(k.families, f)
-	k.g.Families = append(k.g.Families, Family{
-		Name: f.name, Group: f.group, Energy: floats(f.energy), Order: f.order,
-		Terms: f.count(k.g.Lattice), terms: f,
-	})
-}
-
-func floats(r []*big.Rat) []float64 {
-	if r == nil {
-		return nil
-	}
-	out := make([]float64, len(r))
-	for i := range r {
-		out[i], _ = r[i].Float64()
-	}
-	return out
-}
-
-// findSeats lists, for every site of the cell, its moves and the slots that
-// they change on an unbounded lattice.
-func (k *compiler) findSeats() error {
-	g := k.g
-	for site := range k.spec.Sites {
-		seat := Seat{Site: site}
-		for b, op := range k.spec.Bath {
-			if actsOn(op, site) {
-				seat.Moves = append(seat.Moves, MoveSpec{Bath: b, X: op.X, Z: op.Z})
-			}
-		}
-		for f := range k.families {
-			for _, offset := range k.slotOffsets(f, seat) {
-				g.Families[f].Slots = append(g.Families[f].Slots, SlotRef{site, len(seat.Slots), offset.Neg()})
-				seat.Slots = append(seat.Slots, Slot{f, offset})
-			}
-		}
-		if b := len(seat.Slots) * g.SlotBits; b > MaxBits {
-			return &TooManyTerms{site, len(seat.Slots), b}
-		}
-		for m := range seat.Moves {
-			seat.Moves[m].Change = k.freeChange(seat, seat.Moves[m])
-		}
-		g.Bits = max(g.Bits, 1, len(seat.Slots)*g.SlotBits)
-		g.Seats = append(g.Seats, seat)
-	}
-	return nil
-}
-
-func actsOn(op BathOperator, site int) bool {
-	if op.Sites == nil {
-		return true
-	}
-	for _, s := range op.Sites {
-		if s == site {
-			return true
-		}
-	}
-	return false
-}
-
-// slotOffsets returns where the terms of family f lie that a move of the seat
-// changes.
-func (k *compiler) slotOffsets(f int, seat Seat) []lattice.Offset {
-	var out []lattice.Offset
-	for _, factor := range k.families[f].factors {
-		if factor.Site != seat.Site {
-			continue
-		}
-		for _, m := range seat.Moves {
-			if turn(m.X, m.Z, factor.X, factor.Z, k.g.Levels) != 0 {
-				out = append(out, factor.Exp.Neg())
-				break
-			}
-		}
-	}
-	sort.Slice(out, func(i, j int) bool { return out[i].Less(out[j]) })
-	return out
-}
-
-// freeChange is what a move adds to the seat's slots on an unbounded lattice.
-func (k *compiler) freeChange(seat Seat, m MoveSpec) []int {
-	change := make([]int, len(seat.Slots))
-	for b, s := range seat.Slots {
-		for _, factor := range k.families[s.Family].factors {
-			if factor.Site == seat.Site && factor.Exp == s.Offset.Neg() {
-				change[b] = turn(m.X, m.Z, factor.X, factor.Z, k.g.Levels)
-			}
-		}
-	}
-	return change
 }
 
 func (k *compiler) reference() error {
@@ -294,6 +189,11 @@ func (k *compiler) reach() (reach [lattice.MaxAxes]int) {
 func (k *compiler) compileShapes() error {
 	g := k.g
 	k.energies = newEnergies(k.spec, k.families)
+	if k.wide {
+		if err := k.beginWide(); err != nil {
+			return err
+		}
+	}
 	k.atlas = newAtlas(g.Lattice, k.reach())
 	places := len(g.Seats)
 	for _, z := range k.atlas.axis {
@@ -369,8 +269,10 @@ func (k *compiler) compileTouches(c lattice.Offset, seat, m int) error {
 			if err != nil {
 				return err
 			}
-			t, err := k.table(shape, changes[a])
-			if err != nil {
+			var t uint32
+			if k.wide {
+				t = k.wideTable(shape, changes[a])
+			} else if t, err = k.table(shape, changes[a]); err != nil {
 				return err
 			}
 			g.Touch = append(g.Touch, Touch{int32(a - home), t})
@@ -422,6 +324,9 @@ func (k *compiler) changesEnergy(seat int, change []int) bool {
 }
 
 func (k *compiler) checkKMS() error {
+	if k.wide {
+		return nil // done with the rates
+	}
 	if k.g.Couplings != nil {
 		for _, op := range k.spec.Bath {
 			if op.Law.Kind == bath.Table {

@@ -74,11 +74,14 @@ func (o *octaves) tops() []float64 {
 }
 
 // NewComposition returns the composition engine, for couplings that vary from
-// term to term (q = 2). It needs about 13 bytes per seat and 4 for each of its
-// terms.
+// term to term (q = 2) and for what tables do not hold (q > 2, Generator.Wide). It
+// needs about 13 bytes per seat and 4 for each of its terms.
 func NewComposition(g *Generator, seed [32]byte, unit int, start Start) (Engine, error) {
 	if err := checkComposition(g); err != nil {
 		return nil, err
+	}
+	if g.Wide != nil {
+		return newWideEngine(g, seed, unit, start)
 	}
 	src := newSource(seed, unit, "start "+string(start))
 	s, err := newState(g, start, &src)
@@ -114,6 +117,9 @@ func NewComposition(g *Generator, seed [32]byte, unit int, start Start) (Engine,
 
 // CompositionBytes estimates the memory of one composition engine.
 func CompositionBytes(g *Generator) int64 {
+	if g.Wide != nil {
+		return wideBytes(g)
+	}
 	n := int64(g.Addresses())
 	return n*(8+4*int64(g.energySlots())) + 4*int64(arenaSize(g.Addresses(), octaveCount+1)) + g.tableBytes()
 }

@@ -17,6 +17,8 @@ type Couplings struct {
 
 var errVaryingCouplings = errors.New("couplings that vary in size run on the composition engine; use engine = \"composition\" or \"auto\"")
 
+var errWidePatterns = errors.New("what a site sees has too many bits or rates for tables; use engine = \"composition\" or \"auto\"")
+
 func checkDisorder(f FamilySpec, s Spec) error {
 	if f.Signs == nil && f.Couplings == nil {
 		return nil

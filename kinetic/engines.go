@@ -71,6 +71,9 @@ func checkClasses(g *Generator) error {
 	if g.Couplings != nil {
 		return errVaryingCouplings
 	}
+	if g.Wide != nil {
+		return errWidePatterns
+	}
 	return checkSize(g)
 }
 
@@ -82,7 +85,7 @@ func checkTiles(g *Generator) error {
 }
 
 func checkComposition(g *Generator) error {
-	if g.Couplings == nil {
+	if g.Couplings == nil && g.Wide == nil {
 		return fmt.Errorf("the composition engine is for couplings that vary in size; use engine = \"classes\"")
 	}
 	return checkSize(g)

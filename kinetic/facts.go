@@ -1,6 +1,9 @@
 package kinetic
 
-import "math"
+import (
+	"math"
+	"slices"
+)
 
 // MaxRate is the largest rate of one bath operator on one site: the inverse of
 // the shortest time on which anything happens. Where couplings vary in size it
@@ -18,6 +21,9 @@ func (g *Generator) MaxRate() float64 {
 func (g *Generator) MaxRates() []float64 {
 	if g.Couplings != nil {
 		return newSeatRates(g).maxMoves()
+	}
+	if g.Wide != nil {
+		return slices.Clone(g.Wide.most)
 	}
 	best := make([]float64, len(g.Spec.Bath))
 	g.eachRate(func(s *Shape, m, _ int, r float64) {
@@ -97,6 +103,9 @@ func (g *Generator) Frozen() []FrozenJumps {
 	for b := range out {
 		out[b].Bath = b
 	}
+	if g.Wide != nil {
+		copy(out, g.Wide.frozen)
+	}
 	g.eachRate(func(s *Shape, m, _ int, r float64) {
 		f := &out[g.Seats[s.Seat].Moves[m].Bath]
 		f.Possible++
@@ -123,7 +132,15 @@ type FrozenJumps struct {
 func (g *Generator) tableBytes() int64 {
 	n := 4*len(g.Tables) + 8*len(g.Touch) + 20*len(g.Moves) + 2*len(g.Col) + 4*len(g.Row)
 	for i := range g.Shapes {
-		n += len(g.Shapes[i].Delta) + (17*len(g.Shapes[i].Rate)+1)<<g.Bits
+		if g.Wide == nil {
+			n += len(g.Shapes[i].Delta) + (17*len(g.Shapes[i].Rate)+1)<<g.Bits
+		}
+	}
+	if g.Wide != nil {
+		n += 12*len(g.Wide.adds) + 2*len(g.Wide.slots)
+		for _, l := range g.Wide.rates {
+			n += 16 * len(l.keys)
+		}
 	}
 	for _, l := range g.Lines {
 		n += l.Positions + 4*len(g.Row) + 4*len(g.Col)

@@ -44,6 +44,11 @@ type Generator struct {
 	// Rates is the total rate of a seat by class, increasing; class 0 has rate 0.
 	Rates []float64
 
+	// Wide is not nil if there are no tables by pattern: patterns have more than
+	// 16 bits, or there are more rates than classes (q > 2). The shapes then have
+	// no rates, and Rates is 0 and a bound.
+	Wide *Wide
+
 	// Couplings is not nil if couplings vary in size from term to term; rates
 	// then depend on the place, and the shapes and classes give none.
 	Couplings *Couplings
@@ -167,7 +172,7 @@ type Move struct {
 // Touch is one seat that a move changes.
 type Touch struct {
 	Delta int32  // address difference
-	Table uint32 // first entry of its transition table in Generator.Tables
+	Table uint32 // first entry of its transition table in Generator.Tables, or number of what Wide adds
 }
 
 // Cells returns the number of cells.

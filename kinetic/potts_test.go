@@ -37,7 +37,12 @@ func pottsSpec(t testing.TB, q int, beta float64, size ...int) Spec {
 // meanEnergy returns the mean energy with its standard error.
 func meanEnergy(t *testing.T, s Spec, start Start, settle, step float64, blocks, each int) (mean, se float64) {
 	t.Helper()
-	e, err := NewClasses(compiled(t, s), [32]byte{6}, 1, start)
+	g := compiled(t, s)
+	engine := NewClasses
+	if g.Wide != nil {
+		engine = NewComposition
+	}
+	e, err := engine(g, [32]byte{6}, 1, start)
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -132,7 +137,8 @@ func TestTorusOfLevels(t *testing.T) {
 		clock         bool
 		width, length int
 		beta          float64
-	}{{3, false, 4, 5, 1.0}, {8, false, 2, 4, 1.3}, {5, true, 3, 4, 0.9}, {6, true, 2, 5, 0.7}} {
+	}{{3, false, 4, 5, 1.0}, {8, false, 2, 4, 1.3}, {5, true, 3, 4, 0.9}, {6, true, 2, 5, 0.7},
+		{12, false, 2, 3, 1.5}, {16, true, 2, 4, 0.8}, {9, true, 2, 5, 1.2}} {
 		s := pottsSpec(t, c.q, c.beta, c.width, c.length)
 		if c.clock {
 			for i := range s.Families {

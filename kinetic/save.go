@@ -209,6 +209,17 @@ func (g *Generator) digest() [32]byte {
 	for _, levels := range g.Reference {
 		buf = append(buf, levels...)
 	}
+	if g.Wide != nil {
+		for _, l := range g.Wide.rates {
+			for i, r := range l.rate {
+				buf = le.AppendUint64(buf, uint64(l.keys[i]))
+				buf = le.AppendUint64(buf, math.Float64bits(r))
+			}
+		}
+		for _, s := range g.Wide.slots {
+			buf = append(buf, s.shift, s.change)
+		}
+	}
 	if g.Couplings != nil {
 		buf = le.AppendUint64(buf, math.Float64bits(g.Spec.Beta))
 		for _, b := range g.Spec.Bath {

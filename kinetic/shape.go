@@ -40,6 +40,15 @@ func (k *compiler) shapeOf(c lattice.Offset, seat int) (int, error) {
 			s.LineHits[m] = append(s.LineHits[m], len(l))
 		}
 	}
+	id := len(g.Shapes)
+	if id > math.MaxUint16 {
+		return 0, fmt.Errorf("the lattice has more than %d different surroundings of a site", math.MaxUint16)
+	}
+	k.shapes[key] = id
+	if k.wide {
+		g.Shapes = append(g.Shapes, s)
+		return id, k.addWideShape(&g.Shapes[id])
+	}
 	patterns := 1 << g.Bits
 	s.Rate = make([][]float64, moves)
 	for m := range s.Rate {
@@ -57,12 +66,7 @@ func (k *compiler) shapeOf(c lattice.Offset, seat int) (int, error) {
 			}
 		}
 	}
-	id := len(g.Shapes)
-	if id > math.MaxUint16 {
-		return 0, fmt.Errorf("the lattice has more than %d different surroundings of a site", math.MaxUint16)
-	}
 	g.Shapes = append(g.Shapes, s)
-	k.shapes[key] = id
 	return id, nil
 }
 
@@ -154,6 +158,9 @@ func actingMoves(n *neighbourhood, lines [][][]uint8) []bool {
 // classify numbers the distinct total rates in increasing order, 0 first, and
 // gives each pattern of each shape its class and the shares of its moves.
 func (k *compiler) classify() error {
+	if k.wide {
+		return k.finishWide()
+	}
 	g := k.g
 	distinct := map[float64]bool{0: true}
 	totals := make([][]float64, len(g.Shapes))
@@ -222,11 +229,8 @@ func (s *Shape) lastSplit(p int) {
 // slots of a shape.
 func (k *compiler) table(shape int, change []int) (uint32, error) {
 	g := k.g
-	key := binary.AppendUvarint(nil, uint64(shape))
-	for _, d := range change {
-		key = binary.AppendUvarint(key, uint64(d))
-	}
-	if t, ok := k.tables[string(key)]; ok {
+	key := tableKey(shape, change)
+	if t, ok := k.tables[key]; ok {
 		return t, nil
 	}
 	if len(g.Tables)>>g.Bits >= 1<<(31-g.Bits) {
@@ -238,9 +242,28 @@ func (k *compiler) table(shape int, change []int) (uint32, error) {
 		to := addLevels(p, change, g.SlotBits, g.Levels)
 		g.Tables = append(g.Tables, uint32(to)|uint32(class[p])<<16|uint32(class[to])<<24)
 	}
-	k.tables[string(key)] = t
+	k.tables[key] = t
 	g.tableShape = append(g.tableShape, uint16(shape))
 	return t, nil
+}
+
+// wideTable returns what table returns, for patterns without tables.
+func (k *compiler) wideTable(shape int, change []int) uint32 {
+	key := tableKey(shape, change)
+	t, ok := k.tables[key]
+	if !ok {
+		t = k.g.Wide.add(shape, change)
+		k.tables[key] = t
+	}
+	return t
+}
+
+func tableKey(shape int, change []int) string {
+	key := binary.AppendUvarint(nil, uint64(shape))
+	for _, d := range change {
+		key = binary.AppendUvarint(key, uint64(d))
+	}
+	return string(key)
 }
 
 // addLevels adds change to the slots of a pattern, mod q.

@@ -155,6 +155,10 @@ func (s *stateOf[P]) apply(g *Generator, a, m int) {
 	mv := &g.Moves[g.Places[g.PlaceOf(a)].First+uint32(m)]
 	for _, t := range g.Touch[mv.First:mv.Last] {
 		p := &s.patterns[a+int(t.Delta)]
+		if g.Wide != nil {
+			*p = P(g.Wide.after(uint64(*p), t.Table))
+			continue
+		}
 		*p = P(g.Tables[t.Table+uint32(*p)])
 	}
 	row, col := a/len(g.Col), a%len(g.Col)

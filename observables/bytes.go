@@ -62,7 +62,11 @@ func Bytes(g *kinetic.Generator, obs []Observable, pairs [][2]int, plan Plan, la
 	total += segments * int64(2*unsafe.Sizeof(pairSums{})+unsafe.Sizeof(AutocorrelationRow{}))
 	total += int64(MomentSegments*len(obs)) * int64(unsafe.Sizeof(powerSums{})+unsafe.Sizeof(MomentRow{}))
 	total += int64(len(TransientTimes(plan.Settle, plan.Span, plan.Step))*len(obs)) * int64(16+unsafe.Sizeof(TransientRow{}))
-	total += int64(len(g.Shapes)<<g.Bits) * 12
+	if g.Wide == nil {
+		total += int64(len(g.Shapes)<<g.Bits) * 12
+	} else {
+		total += 10*seats + wideRoom*int64(48+8*len(pairs))
+	}
 	if g.Couplings != nil {
 		total += 16 * seats
 	}

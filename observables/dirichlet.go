@@ -12,7 +12,8 @@ import (
 // seat's rates and increments depend on its shape and pattern alone, so the
 // form of a state is its census contracted with a weight for each shape and
 // pattern, computed when that entry is first seen. Where couplings vary in size
-// rates depend on the place, and the form is summed over the seats.
+// rates depend on the place, and the form is summed over the seats; so it is where
+// patterns are too wide to be counted.
 //
 // On a lattice with open edges a Local observable reads chosen terms only, and
 // so does its form: it is summed over the seats that show them, in one lane in
@@ -31,6 +32,7 @@ type dirichlet struct {
 	steps   []float64          // place, move, observable; with them
 	rates   *kinetic.MoveRates // nil without
 	shapes  []uint16           // by address, with varying couplings
+	wide    *wideForms         // nil with tables
 	open    []openLocal
 	lane    int // the next of the rotation
 
@@ -56,10 +58,14 @@ type shown struct {
 func newDirichlet(e kinetic.Engine, g *kinetic.Generator, r *reading, pairs [][2]int) *dirichlet {
 	d := &dirichlet{
 		e: e, g: g, r: r, pairs: pairs, jumps: newIncrements(g, r),
-		census: make([]int64, len(g.Shapes)<<g.Bits),
-		index:  make([]int32, len(g.Shapes)<<g.Bits),
-		apart:  make([]bool, len(pairs)),
-		sums:   make([]float64, PairSegments*len(pairs)),
+		apart: make([]bool, len(pairs)),
+		sums:  make([]float64, PairSegments*len(pairs)),
+	}
+	if g.Wide == nil {
+		d.census = make([]int64, len(g.Shapes)<<g.Bits)
+		d.index = make([]int32, len(g.Shapes)<<g.Bits)
+	} else {
+		d.wide = newWideForms(g)
 	}
 	for p, pair := range pairs {
 		s := &r.layout[pair[0]]
@@ -68,7 +74,7 @@ func newDirichlet(e kinetic.Engine, g *kinetic.Generator, r *reading, pairs [][2
 			d.open = append(d.open, newOpenLocal(g, p, r.tracks[s.track].chosen))
 		}
 	}
-	if d.open != nil || g.Couplings != nil {
+	if g.Wide == nil && (d.open != nil || g.Couplings != nil) {
 		d.patterns = make([]uint16, g.Addresses())
 	}
 	if g.Couplings != nil {
@@ -99,16 +105,25 @@ func (d *dirichlet) add(segment int) {
 		return
 	}
 	sums := d.sums[segment*n:][:n]
-	if d.rates == nil {
+	switch {
+	case d.wide != nil:
+		for lane := range d.r.lanes {
+			d.addWide(sums, lane)
+		}
+	case d.rates == nil:
 		d.addCensus(sums)
-	} else {
+	default:
 		for lane := range d.r.lanes {
 			d.e.Patterns(lane, d.patterns)
 			d.addSeats(sums)
 		}
 	}
 	if d.open != nil {
-		d.e.Patterns(d.lane, d.patterns)
+		if d.wide != nil {
+			d.e.(kinetic.WidePatterns).WidePatterns(d.lane, d.wide.patterns)
+		} else {
+			d.e.Patterns(d.lane, d.patterns)
+		}
 		d.lane = (d.lane + 1) % d.r.lanes
 		for i := range d.open {
 			sums[d.open[i].pair] += float64(d.r.lanes) * d.form(&d.open[i])
@@ -203,15 +218,25 @@ func (d *dirichlet) form(o *openLocal) float64 {
 	sum := 0.0
 	for _, at := range o.shown {
 		shape := &d.g.Shapes[at.shape]
-		p := d.patterns[at.address]
-		for m := range shape.Rate {
+		var p uint64
+		if d.wide != nil {
+			p = d.wide.patterns[at.address]
+		} else {
+			p = uint64(d.patterns[at.address])
+		}
+		for m := range shape.Change {
 			step := d.jumps.slot(int(at.shape), m, int(at.slot), int(p))
 			if step == 0 {
 				continue
 			}
-			rate := shape.Rate[m][p]
-			if d.rates != nil {
-				rate, _ = d.rates.Rate(int(at.address), at.shape, m, p)
+			var rate float64
+			switch {
+			case d.wide != nil:
+				rate = d.g.Wide.Rate(int(at.shape), m, p)
+			case d.rates != nil:
+				rate, _ = d.rates.Rate(int(at.address), at.shape, m, uint16(p))
+			default:
+				rate = shape.Rate[m][p]
 			}
 			sum += rate / 2 * squared(step)
 		}

@@ -108,31 +108,42 @@ func (in *increments) square(shape, m, pattern int, o *slot) float64 {
 // sum returns the change of an energy or a sum of terms by a move.
 func (in *increments) sum(shape, m, pattern int, o *slot) complex128 {
 	g := in.g
-	width := g.SumWidth()
-	delta := g.Shapes[shape].Delta[(m<<g.Bits|pattern)*len(g.Families)*width:][:len(g.Families)*width]
-	var change, imaginary float64
+	if g.Levels > 2 {
+		return in.levelSum(shape, m, pattern, o)
+	}
+	delta := g.Shapes[shape].Delta[(m<<g.Bits|pattern)*len(g.Families):][:len(g.Families)]
+	change := 0.0
 	for f := range g.Families {
 		energy := g.Families[f].Energy
-		if o.Kind == Energy && energy == nil || o.Kind != Energy && !slices.Contains(o.Families, f) {
-			continue
-		}
-		of := delta[f*width:][:width]
 		switch {
-		case g.Levels == 2 && o.Kind == Energy:
+		case o.Kind == Energy && energy != nil:
 			// A term that goes from -1 to +1 adds 2 to the sum.
-			change += float64(of[0]) / 2 * (energy[0] - energy[1])
-		case g.Levels == 2:
-			change += float64(of[0])
-		case o.Kind == Energy:
-			for s, n := range of {
-				change += float64(n) * energy[s]
-			}
-		default:
-			for s, n := range of {
-				change += float64(n) * real(in.r.value[f][s])
-				imaginary += float64(n) * imag(in.r.value[f][s])
-			}
+			change += float64(delta[f]) / 2 * (energy[0] - energy[1])
+		case o.Kind != Energy && slices.Contains(o.Families, f):
+			change += float64(delta[f])
 		}
 	}
-	return complex(change, imaginary)
+	return complex(change, 0)
+}
+
+// levelSum is sum for more than two levels.
+func (in *increments) levelSum(shape, m, pattern int, o *slot) complex128 {
+	g := in.g
+	of := &g.Shapes[shape]
+	var change complex128
+	for b, d := range of.Change[m] {
+		family := g.Seats[of.Seat].Slots[b].Family
+		energy := g.Families[family].Energy
+		switch {
+		case d == 0:
+		case o.Kind != Energy:
+			if slices.Contains(o.Families, family) {
+				change += in.slot(shape, m, b, pattern)
+			}
+		case energy != nil:
+			s := pattern >> (b * g.SlotBits) & (1<<g.SlotBits - 1)
+			change += complex(energy[(s+int(d))%g.Levels]-energy[s], 0)
+		}
+	}
+	return change
 }

@@ -28,7 +28,7 @@ func newBundle(t testing.TB, g *kinetic.Generator, lanes int, seed byte) kinetic
 	switch {
 	case lanes == 64:
 		start = kinetic.NewLanes
-	case g.Couplings != nil:
+	case g.Couplings != nil, g.Wide != nil:
 		start = kinetic.NewComposition
 	}
 	for i := range lanes {
@@ -76,10 +76,13 @@ func (b *bundle) Census(dst []int64) {
 	}
 }
 func (b *bundle) Terms(family, lane int, dst []uint8) { b.lanes[lane].Terms(family, 0, dst) }
-func (b *bundle) Patterns(lane int, dst []uint16)     { b.lanes[lane].Patterns(0, dst) }
-func (b *bundle) Save(dst []byte) []byte              { panic("not needed") }
-func (b *bundle) Restore([]byte) error                { panic("not needed") }
-func (b *bundle) Audit() error                        { panic("not needed") }
+func (b *bundle) WidePatterns(lane int, dst []uint64) {
+	b.lanes[lane].(kinetic.WidePatterns).WidePatterns(0, dst)
+}
+func (b *bundle) Patterns(lane int, dst []uint16) { b.lanes[lane].Patterns(0, dst) }
+func (b *bundle) Save(dst []byte) []byte          { panic("not needed") }
+func (b *bundle) Restore([]byte) error            { panic("not needed") }
+func (b *bundle) Audit() error                    { panic("not needed") }
 
 func compile(t testing.TB, spec kinetic.Spec) *kinetic.Generator {
 	t.Helper()
@@ -354,6 +357,14 @@ func cases(t testing.TB) map[string]*kinetic.Generator {
 		q := 3 + int(i)%3
 		specs[fmt.Sprintf("random %d, %d levels", i, q)] = kinetictest.RandomLevels(i+1, q, kinetictest.Larger)
 	}
+	// Patterns beyond tables.
+	specs["Potts 9, 4 x 3"] = kinetictest.Potts(9, kinetictest.Lattice(4, 3), 0.9, law)
+	specs["Potts 9, square 3 x 4"] = kinetictest.Potts(9, opened(kinetictest.Lattice(3, 4), 0, 1), 0.9, law)
+	clock := kinetictest.Potts(9, kinetictest.Lattice(4, 3), 0.9, law)
+	for i := range clock.Families {
+		clock.Families[i].Shape = kinetic.ClockShape(9)
+	}
+	specs["clock 9, 4 x 3"] = clock
 	signs := kinetictest.Ising(kinetictest.Lattice(6, 5), 0.5, law)
 	signs.Families[0].Signs = make([]uint8, 30)
 	sizes := kinetictest.Ising(opened(kinetictest.Lattice(6, 5), 1), 0.5, law)

@@ -215,7 +215,7 @@ func (r *recorder) dirichletStride() int64 {
 	// lanes jumps are quicker, and one time gives many states.
 	wait, least := 0.5, int64(64)
 	switch {
-	case r.g.Couplings != nil:
+	case r.g.Couplings != nil, r.g.Wide != nil:
 		wait *= 8
 	case r.lanes > 1:
 		wait *= 16

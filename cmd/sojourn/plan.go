@@ -84,6 +84,9 @@ func (q *prepared) why() string {
 	if q.generator.Couplings != nil {
 		rates = "couplings of many sizes"
 	}
+	if q.generator.Wide != nil {
+		rates = "more levels than tables hold"
+	}
 	if t.Engine != kinetic.AutoEngine {
 		return rates + "; as asked for"
 	}

@@ -19,7 +19,7 @@ import (
 // families, or (for prime q) of families that mix X and Z; with energies of
 // Potts or clock form or out of a table; every bath operator with its inverse.
 // Lattices, cuts, couplings, laws and tracked operators are as in RandomSpec.
-// Models that do not fit the tables of the compiler are passed over.
+// Models that do not fit tables are passed over.
 func RandomLevels(seed uint64, q int, size Size) kinetic.Spec {
 	r := &random{rand.New(rand.NewPCG(seed, 0x5eed00+uint64(q)))}
 	for {
@@ -33,8 +33,7 @@ func RandomLevels(seed uint64, q int, size Size) kinetic.Spec {
 		}
 		r.tabulateLevels(&s, sys)
 		var terms *kinetic.TooManyTerms
-		var rates *kinetic.TooManyRates
-		if _, err := kinetic.Compile(s); errors.As(err, &terms) || errors.As(err, &rates) {
+		if g, err := kinetic.Compile(s); errors.As(err, &terms) || err == nil && g.Wide != nil {
 			continue
 		}
 		return s

@@ -1,7 +1,6 @@
 package models
 
 import (
-	"errors"
 	"fmt"
 	"math"
 	"testing"
@@ -40,28 +39,24 @@ func TestEncodedLevels(t *testing.T) {
 	}
 }
 
-// The tables hold the models up to the levels that README and errors name: with
-// 16 bits for a pattern, Potts and clock up to 8 levels on two axes and 4 on
-// three; and say so beyond.
+// Every model compiles with up to 16 levels: with tables, as README says, for
+// Potts and clock models of up to 8 levels on two axes and 4 on three.
 func TestMostLevels(t *testing.T) {
 	for _, c := range []struct {
-		name string
-		size []int
-		most int
+		name   string
+		size   []int
+		tables int // the most levels with tables
 	}{
 		{"potts", []int{4}, 16}, {"potts", []int{3, 3}, 8}, {"potts", []int{3, 3, 3}, 4},
 		{"clock", []int{3, 3}, 8}, {"clock", []int{3, 3, 3}, 4},
+		{"toric-code", []int{3, 3}, 0}, {"toric-code", []int{2, 2, 2}, 0}, {"toric-code", []int{2, 2, 1, 2}, 0},
 	} {
-		for _, q := range []int{c.most, c.most + 1} {
-			if q > 16 {
+		for _, q := range []int{c.tables, c.tables + 1, 16} {
+			if q < 3 || q > 16 {
 				continue
 			}
-			_, err := kinetic.Compile(specOf(t, c.name, c.size, nil, Values{"levels": float64(q)}))
-			var terms *kinetic.TooManyTerms
-			switch {
-			case q == c.most && err != nil:
-				t.Errorf("%s %v with %d levels: %v", c.name, c.size, q, err)
-			case q > c.most && (!errors.As(err, &terms) || terms.Bits <= kinetic.MaxBits):
+			g, err := kinetic.Compile(specOf(t, c.name, c.size, nil, Values{"levels": float64(q)}))
+			if err != nil || c.tables > 0 && (g.Wide == nil) != (q <= c.tables) {
 				t.Errorf("%s %v with %d levels: %v", c.name, c.size, q, err)
 			}
 		}
