@@ -33,6 +33,14 @@ func FuzzDecode(f *testing.F) {
 			f.Add(text)
 		}
 	}
+	f.Add(glass)
+	for _, w := range wrongDisorder {
+		if w.from == "" {
+			w.from = glass
+		}
+		text, _ := unmark(strings.Replace(w.from, w.old, w.new, 1))
+		f.Add(text)
+	}
 	f.Fuzz(func(t *testing.T, text string) {
 		watch := time.AfterFunc(patience, func() { panic("decoding takes too long") })
 		s, err := Decode("shelf", "shelf.toml", []byte(text))
