@@ -127,24 +127,39 @@ func writeOverview(b *strings.Builder, f *findings) {
 		if r.SlowMode.Tau.OK {
 			slow = estimate(r.SlowMode.Tau)
 		}
-		t.add(strconv.Itoa(p.point), shortest(p.beta), sizeText(p.size), strings.Join(others, ", "), name, tau, slow, gapBound(r), xi, mark)
+		t.add(strconv.Itoa(p.point), shortest(p.beta), sizeText(p.size), strings.Join(others, ", "), name, tau, slow, gapBound(r, slowest), xi, mark)
 	}
 	t.write(b, "  ")
 }
 
-// gapBound is the best lower bound on 1/gap that a point gives.
-func gapBound(r *analysis.Result) string {
+// inSlowMode reports whether the observable took part in the slow mode.
+func inSlowMode(r *analysis.Result, name string) bool {
+	for _, s := range r.SlowMode.Shares {
+		if s.Name == name {
+			return true
+		}
+	}
+	return false
+}
+
+// gapBound is the best lower bound on 1/gap that a point gives; slowest is the
+// observable with the longest tau_int, -1 for none.
+func gapBound(r *analysis.Result, slowest int) string {
 	best := analysis.Bound{}
 	consider := func(x analysis.Bound) {
 		if x.OK && (!best.OK || x.Value > best.Value) {
 			best = x
 		}
 	}
-	// Only the bounds of the slow mode: the largest of several bounds at 95 %
-	// would not have that confidence.
+	// Not the largest of all bounds, which would lack their confidence: that of
+	// the slow mode, and that of the observable with the longest tau_int where it
+	// is no scalar, and so has no part in the slow mode.
 	consider(r.SlowMode.Bound)
 	if !best.OK {
 		consider(r.SlowMode.RayleighBound)
+	}
+	if slowest >= 0 && !inSlowMode(r, r.Observables[slowest].Name) {
+		consider(r.Observables[slowest].SlowestBound)
 	}
 	if !best.OK {
 		return ""
