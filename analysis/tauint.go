@@ -69,15 +69,18 @@ func wolffError(tau, windowTime, step, samples float64) float64 {
 // integrated is tau_int of one observable with everything that later steps need
 // of it.
 type integrated struct {
-	o, k     int // observable, its pair with itself
-	pool     *pool
-	times    []float64
-	c        []float64   // C, corrected for the variance of the mean
-	without  [][]float64 // the same without each block
-	win      window
-	tau      float64
-	logs     []float64 // ln tau without each block
-	constant bool
+	o, k    int // observable, its pair with itself
+	pool    *pool
+	times   []float64
+	c       []float64   // C, corrected for the variance of the mean
+	without [][]float64 // the same without each block
+	win     window
+	// tailShare is the share of tau that lies beyond the last lag summed, in a
+	// slow tail.
+	tailShare float64
+	tau       float64
+	logs      []float64 // ln tau without each block
+	constant  bool
 }
 
 // corrected returns C(t) of pair k without block out, plus the variance of the
@@ -161,6 +164,17 @@ func integrate(p *Point, o int, pools func(split int) *pool) (in integrated, est
 		c, w := q.corrected(k, b, in.win.last, make([]float64, 0, len(in.c)))
 		in.without[b], sums[b] = c, w.tau
 	}
+	if last, slow := in.slowTail(); slow {
+		in.c, in.win = q.corrected(k, all, last, nil)
+		in.c = in.c[:len(in.times)]
+		in.tailShare = beyond(in.times, in.c, last)
+		in.tau = in.win.tau + in.tailShare
+		in.tailShare /= in.tau
+		for b := range sums {
+			c, w := q.corrected(k, b, last, make([]float64, 0, len(in.c)))
+			in.without[b], sums[b] = c, w.tau+beyond(in.times, c, last)
+		}
+	}
 	logs, ok := resampled(q.blocks, func(b int) (float64, bool) { return math.Log(sums[b]), sums[b] > 0 })
 	if !ok {
 		return in, missing(codeNoise, "the sum of the autocorrelation is not positive without one of the blocks: noise")
@@ -221,6 +235,9 @@ func (in *integrated) warnings(p *Point, est Estimate) []Warning {
 	}
 	if e, ok := in.pool.dirichlet(in.k, all); ok && p.Step > stepDoubt*in.c[0]/e {
 		w = append(w, warn(codeCoarseStep, "the step is %.2g tau_initial, above %.1f: the sum depends on how the first step is interpolated", p.Step*e/in.c[0], stepDoubt))
+	}
+	if in.tailShare > 0 {
+		w = append(w, warn(codeExtrapolated, "%.0f %% of tau_int lie beyond lag %.4g, in a slow tail that was continued as an exponential", 100*in.tailShare, in.times[in.win.last]))
 	}
 	if est.Units < 8 {
 		w = append(w, warn(codeFewUnits, "errors rest on %d blocks only", est.Units))
