@@ -3,6 +3,7 @@ package main
 import (
 	"errors"
 	"fmt"
+	"io/fs"
 	"os"
 
 	"sojourn/observables/archive"
@@ -10,8 +11,8 @@ import (
 
 // fit infers from a results directory alone.
 func (c *console) fit(o *options, args []string) error {
-	if _, err := os.Stat(args[0]); err != nil {
-		return badRequest("fit: %w", err)
+	if _, err := os.Stat(args[0]); errors.Is(err, fs.ErrNotExist) {
+		return badRequest("%s: there is no such directory; sojourn run STUDY -o DIR makes one", args[0])
 	}
 	d, err := archive.Open(args[0])
 	if err != nil {
