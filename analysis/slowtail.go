@@ -10,7 +10,7 @@ import "math"
 
 // clearly is how many standard errors make the sum from a window to its double
 // clearly positive. A single exponential is far below one of them there.
-const clearly = 2
+const clearly = 3
 
 // slowTail returns the lag up to which the sum goes on, if that is beyond the
 // window: from window to its double, as long as what lies between is clearly
