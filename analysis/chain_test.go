@@ -125,13 +125,20 @@ func (c *spinChain) process(name string, f func(s int) float64) process {
 	for s := range values {
 		values[s] = f(s)
 	}
-	p.sample = c.sampler(unit, pi, values)
+	forms := make([]float64, n) // in units of the slowest rate
+	for s := range forms {
+		for i := range c.neighbours {
+			d := f(s^1<<i) - f(s)
+			forms[s] += c.flip(s, i) * d * d / 2 / unit
+		}
+	}
+	p.form = c.sampler(unit, pi, values, forms)
 	return p
 }
 
 // sampler draws the chain from equilibrium by uniformisation; time is in units
 // of 1/unit.
-func (c *spinChain) sampler(unit float64, pi, values []float64) func(rng *rand.Rand, x []float64, step float64) {
+func (c *spinChain) sampler(unit float64, pi, values, forms []float64) func(rng *rand.Rand, x, e []float64, step float64) {
 	n := len(c.neighbours)
 	cumulative := make([]float64, len(pi))
 	sum := 0.0
@@ -145,7 +152,7 @@ func (c *spinChain) sampler(unit float64, pi, values []float64) func(rng *rand.R
 			rates[s*n+i] = c.flip(s, i)
 		}
 	}
-	return func(rng *rand.Rand, x []float64, step float64) {
+	return func(rng *rand.Rand, x, e []float64, step float64) {
 		s := sort.SearchFloat64s(cumulative, rng.Float64())
 		s = min(s, len(pi)-1)
 		next := rng.ExpFloat64() / float64(n)
@@ -155,7 +162,7 @@ func (c *spinChain) sampler(unit float64, pi, values []float64) func(rng *rand.R
 					s ^= 1 << k
 				}
 			}
-			x[i] = values[s]
+			x[i], e[i] = values[s], forms[s]
 		}
 	}
 }

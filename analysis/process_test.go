@@ -12,6 +12,9 @@ type process struct {
 	name   string
 	terms  []exponential
 	sample func(rng *rand.Rand, x []float64, step float64) // fills x
+	// form, if not nil, is sample that also gives the Dirichlet form in the state
+	// at each time; else it is a constant of the path.
+	form func(rng *rand.Rand, x, e []float64, step float64)
 }
 
 // ou is a sum of independent Ornstein-Uhlenbeck processes with variances c.
@@ -184,11 +187,27 @@ func (p *process) point(seed uint64, units int, span, step float64) Point {
 	rng := rand.New(rand.NewPCG(seed, 0x50a7))
 	n := int(math.Round(span / step))
 	x := make([][][]float64, units)
+	forms := make([][]Sum, units)
+	e := make([]float64, n)
 	for u := range x {
 		x[u] = [][]float64{make([]float64, n)}
-		p.sample(rng, x[u][0], step)
+		if p.form == nil {
+			p.sample(rng, x[u][0], step)
+			continue
+		}
+		p.form(rng, x[u][0], e, step)
+		forms[u] = make([]Sum, 4)
+		for i, v := range e {
+			s := &forms[u][i*4/n]
+			s.N++
+			s.S += v
+		}
 	}
-	return record(x, step, [][]float64{{p.dirichlet()}})
+	point := record(x, step, [][]float64{{p.dirichlet()}})
+	if p.form != nil {
+		point.Pairs[0].Dirichlet = forms
+	}
+	return point
 }
 
 // The processes of the coverage tables.

@@ -8,9 +8,11 @@ import "math"
 // the window, the sum goes on as long as it is, and the rest is added as the
 // exponential that the second half of the sum shows.
 
-// clearly is how many standard errors make the sum from a window to its double
-// clearly positive. A single exponential is far below one of them there.
-const clearly = 3
+// falseTail is the probability with which noise alone makes the sum from a
+// window to its double clearly positive, by Student's t. A single exponential is
+// far below one standard error there. With 0.025 the outliers that false tails
+// make raise the error of tau_int by up to a half where there is no slow mode.
+const falseTail = 0.001
 
 // slowTail returns the lag up to which the sum goes on, if that is beyond the
 // window: from window to its double, as long as what lies between is clearly
@@ -20,6 +22,7 @@ func (in *integrated) slowTail() (last int, ok bool) {
 		return 0, false
 	}
 	last = in.win.last
+	clearly := studentT(falseTail, len(in.without)-1)
 	for {
 		next := last
 		for next < len(in.c)-1 && in.times[next] < 2*in.times[last] {
